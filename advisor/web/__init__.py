@@ -1,0 +1,1 @@
+"""Pages and paper: text in, a call to the domain, text out."""
