@@ -1,0 +1,279 @@
+"""The ``twolight`` command: it checks what was typed, calls the domain and prints. Imports wait until they are needed."""
+
+import json
+import os
+import sys
+from collections.abc import Callable, Iterable, Iterator
+from pathlib import Path
+from typing import TYPE_CHECKING, Any
+
+import click
+
+from advisor import __version__
+from advisor.errors import TwolightError
+
+if TYPE_CHECKING:
+    from advisor.counsel.comparison import Comparison
+    from advisor.counsel.stock import Range
+    from advisor.counsel.visit import Visit
+
+MANY_FILES = 5  # from here on a progress bar is shown
+
+
+class _Sentence(click.ClickException):
+    """A problem told in its own words, without a traceback."""
+
+    def show(self, file: Any = None) -> None:  # noqa: ARG002  # click's signature
+        click.echo(self.format_message(), err=True)
+
+
+class _Group(click.Group):
+    """Turns every error that has a sentence of its own into that sentence and exit status 1."""
+
+    def invoke(self, ctx: click.Context) -> Any:
+        try:
+            return super().invoke(ctx)
+        except TwolightError as error:
+            raise _Sentence(str(error)) from error
+
+
+@click.group(cls=_Group, invoke_without_command=True, context_settings={"help_option_names": ["-h", "--help"]})
+@click.option("--data", type=click.Path(path_type=Path, file_okay=False), help="Folder of visits and the shop's range.")
+@click.option("--port", type=click.IntRange(1, 65535), default=8642, show_default=True, help="Port to serve on.")
+@click.option("--no-browser", is_flag=True, help="Do not open the browser.")
+@click.version_option(__version__, prog_name="twolight")
+@click.pass_context
+def main(ctx: click.Context, data: Path | None, port: int, no_browser: bool) -> None:
+    """Which lens, which coating, which ghost image: worked out for one wearer.
+
+    Without a command, serve the pages and open the browser.
+    """
+    ctx.obj = data
+    if ctx.invoked_subcommand is None:
+        _serve(data, port=port, open_browser=not no_browser)
+
+
+def _serve(data: Path | None, *, port: int, open_browser: bool) -> None:
+    from advisor.records.location import data_folder
+    from advisor.web.app import create_app
+    from advisor.web.server import run
+
+    sys.exit(run(create_app(data_dir=data_folder(data)), port=port, open_browser=open_browser))
+
+
+def _stock(data: Path | None, file: Path | None = None) -> "Range":
+    """Return the range of a file, else the shop's own, else the built-in one."""
+    from advisor.counsel.stock import builtin_range, parse_range, read_range
+
+    if file is not None:
+        return read_range(file)
+    from advisor.records.location import data_folder, database_file
+
+    folder = data_folder(data)
+    if not database_file(folder).exists():
+        return builtin_range()
+    from advisor.records.store import Store
+
+    with Store.open(folder) as store:
+        current = store.current_range()
+    return builtin_range() if current is None else parse_range(current.toml)
+
+
+def _bar(files: list[Path]) -> Iterable[Path]:
+    """Yield the files, with a progress bar on the error stream if there are many and somebody watches."""
+    if len(files) < MANY_FILES or not sys.stderr.isatty():
+        return files
+    from tqdm import tqdm
+
+    return tqdm(files, unit="visit", file=sys.stderr)
+
+
+def _each(files: Iterable[Path], stock: "Range", *, with_advice: bool) -> Iterator[tuple[Path, "Visit", "Comparison"]]:
+    """Yield each readable visit with its comparison; report the others and end with status 1 if there were any."""
+    from advisor.counsel.compare import compare
+    from advisor.counsel.visit import read_visit
+    from advisor.web.language import language
+
+    failed = 0
+    for file in files:
+        try:
+            visit = read_visit(file)
+            answer = compare(visit, stock, translator=language("en"), with_advice=with_advice, file=str(file))
+        except TwolightError as error:
+            failed += 1
+            click.echo(str(error), err=True)
+        else:
+            yield file, visit, answer
+    if failed:
+        raise click.exceptions.Exit(1)
+
+
+@main.command()
+@click.argument("files", nargs=-1, required=True, type=click.Path(path_type=Path))
+@click.option("--json", "as_json", is_flag=True, help="One JSON object a line.")
+@click.option("--csv", "as_csv", is_flag=True, help="One row a figure.")
+@click.option("--range", "range_file", type=click.Path(path_type=Path), help="Range file to use.")
+@click.option("--no-advice", is_flag=True, help="Leave the advice out.")
+@click.pass_obj
+def compare(
+    data: Path | None, files: tuple[Path, ...], as_json: bool, as_csv: bool, range_file: Path | None, no_advice: bool
+) -> None:
+    """Compare the options of each visit file."""
+    if as_json and as_csv:
+        raise click.UsageError("Choose one of --json and --csv.")
+    stock = _stock(data, range_file)
+    write = _as_json if as_json else _as_csv() if as_csv else _as_table
+    for file, visit, answer in _each(_bar(list(files)), stock, with_advice=not no_advice):
+        click.echo(write(file, visit, answer, stock), nl=False)
+
+
+def _as_json(_file: Path, _visit: "Visit", answer: "Comparison", _stock: "Range") -> str:
+    return answer.model_dump_json(exclude_unset=True) + "\n"
+
+
+def _as_csv() -> Callable[[Path, "Visit", "Comparison", "Range"], str]:
+    from advisor.web.table import csv_rows, csv_text
+
+    head = [True]
+
+    def write(file: Path, _visit: "Visit", answer: "Comparison", _stock: "Range") -> str:
+        text = csv_text(csv_rows(answer, file=str(file)), head=head[0])
+        head[0] = False
+        return text
+
+    return write
+
+
+def _as_table(file: Path, visit: "Visit", answer: "Comparison", stock: "Range") -> str:
+    from advisor.web.language import language
+    from advisor.web.table import text_table
+
+    name = visit.wearer.name if visit.wearer and visit.wearer.name else file.name
+    return text_table(answer, title=name, currency=stock.shop.currency or "EUR", language=language("en")) + "\n"
+
+
+def _write(out: Path, content: bytes) -> None:
+    """Write a file whole or not at all."""
+    part = out.with_name(f".{out.name}.{os.getpid()}.part")
+    try:
+        part.write_bytes(content)
+        part.replace(out)
+    except OSError as error:
+        part.unlink(missing_ok=True)
+        raise _Sentence(f"{out} cannot be written: {error.strerror}.") from error
+
+
+@main.command()
+@click.argument("file", type=click.Path(path_type=Path))
+@click.option("-o", "--out", required=True, type=click.Path(path_type=Path), help="OUT.pdf or OUT.html")
+@click.option("--option", "number", type=click.IntRange(1), help="Which option, counted from 1.")
+@click.option("--language", "code", help="Language of the sheet; the wearer's own if left out.")
+@click.option("--range", "range_file", type=click.Path(path_type=Path), help="Range file to use.")
+@click.pass_obj
+def sheet(
+    data: Path | None, file: Path, out: Path, number: int | None, code: str | None, range_file: Path | None
+) -> None:
+    """Write the wearer's sheet for a visit file."""
+    from advisor.web.documents import wearer_sheet
+
+    _paper(data, file, out, range_file, lambda visit, stock: wearer_sheet(visit, stock, number=number, code=code))
+
+
+@main.command()
+@click.argument("file", type=click.Path(path_type=Path))
+@click.option("-o", "--out", required=True, type=click.Path(path_type=Path), help="OUT.pdf or OUT.html")
+@click.option("--option", "number", type=click.IntRange(1), help="Which option, counted from 1.")
+@click.option("--range", "range_file", type=click.Path(path_type=Path), help="Range file to use.")
+@click.pass_obj
+def order(data: Path | None, file: Path, out: Path, number: int | None, range_file: Path | None) -> None:
+    """Write the order slip for a visit file; refused, with reasons, while something needed is missing."""
+    from advisor.web.documents import order_slip
+
+    _paper(data, file, out, range_file, lambda visit, stock: order_slip(visit, stock, number=number))
+
+
+def _paper(
+    data: Path | None, file: Path, out: Path, range_file: Path | None, make: Callable[["Visit", "Range"], str]
+) -> None:
+    from advisor.counsel.visit import read_visit
+
+    if out.suffix.lower() not in (".pdf", ".html"):
+        raise click.UsageError("The file to write ends in .pdf or .html.")
+    html = make(read_visit(file), _stock(data, range_file))
+    if out.suffix.lower() == ".html":
+        from advisor.web.documents import standing_alone
+
+        _write(out, standing_alone(html).encode())
+    else:
+        from advisor.web.pdf import write_pdf
+
+        _write(out, write_pdf(html))
+    click.echo(f"{out}")
+
+
+@main.command()
+@click.argument("which", type=click.Choice(["visit", "range", "comparison"]), default="visit")
+def schema(which: str) -> None:
+    """Print the JSON Schema of a format."""
+    from advisor.counsel.schemas import schema_text
+
+    click.echo(schema_text(which), nl=False)
+
+
+@main.group("range", cls=_Group)
+def range_() -> None:
+    """Export or import what the shop sells."""
+
+
+@range_.command("export")
+@click.argument("file", type=click.Path(path_type=Path))
+@click.pass_obj
+def range_export(data: Path | None, file: Path) -> None:
+    """Write the shop's range as one TOML file."""
+    from advisor.counsel.stock import range_to_toml
+
+    _write(file, range_to_toml(_stock(data)).encode())
+    click.echo(f"{file}")
+
+
+@range_.command("import")
+@click.argument("file", type=click.Path(path_type=Path))
+@click.pass_obj
+def range_import(data: Path | None, file: Path) -> None:
+    """Take a TOML file as the shop's range."""
+    from advisor.counsel.stock import range_to_toml, read_range
+    from advisor.records.location import data_folder
+    from advisor.records.store import Store
+
+    stock = read_range(file)
+    with Store.open(data_folder(data)) as store:
+        store.set_range(range_to_toml(stock))
+    click.echo(f"{file}: {len(stock.material)} materials, {len(stock.coating)} coatings, {len(stock.offer)} offers.")
+
+
+@main.command()
+@click.option("--no-serve", is_flag=True, help="Write the sheets and stop.")
+@click.option("--out", type=click.Path(path_type=Path, file_okay=False), default=Path("twolight-demo"), show_default=True)
+@click.pass_context
+def demo(ctx: click.Context, no_serve: bool, out: Path) -> None:
+    """Do the whole job for the demo wearers: compare, write their sheets, say where, serve."""
+    from advisor.counsel.stock import builtin_range
+    from advisor.resources import resource_dir
+    from advisor.web.documents import standing_alone, wearer_sheet
+    from advisor.web.pdf import is_available, write_pdf
+
+    out.mkdir(parents=True, exist_ok=True)
+    files = sorted(resource_dir("demo_patients").glob("*.json"))
+    stock, paper = builtin_range(), is_available()
+    for file, visit, answer in _each(files, stock, with_advice=True):
+        click.echo(_as_table(file, visit, answer, stock))
+        html = wearer_sheet(visit, stock)
+        if paper:
+            _write(out / f"{file.stem}.pdf", write_pdf(html))
+        else:
+            _write(out / f"{file.stem}.html", standing_alone(html).encode())
+        _write(out / f"{file.stem}.json", json.dumps(answer.model_dump(mode="json", exclude_unset=True)).encode())
+    kind = "PDF" if paper else "HTML (no PDF here: the Pango libraries are missing, see the README)"
+    click.echo(f"{len(files)} wearers compared; their sheets are in {out.resolve()} as {kind}.")
+    if not no_serve:
+        _serve(ctx.obj, port=8642, open_browser=True)

@@ -1,0 +1,287 @@
+"""Which cautions apply to a wearer and a lens: one short function a caution, its words in ``caution_texts.py``.
+
+A question that was not asked never counts as "never": where a blow can do harm the caution is shown unless the wearer
+said it does not happen.
+"""
+
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass
+
+from advisor.counsel.case import OLDER_FROM, VERTEX_MATTERS_FROM_D, Case
+from advisor.counsel.faces import blue_turned_away
+from advisor.counsel.laid_out import Laid
+from advisor.counsel.phrases import Figure
+from advisor.counsel.prescription import EYES, SphereCylinder, power_along_d
+
+NIGHT_DRIVING_LEAST = 0.75  # ISO 12312-1 as quoted in public guidance
+DRIVING_LEAST = 0.08
+IMBALANCE_FROM_PRISM_D = 1.0
+LARGE_CHANGE_D, LARGE_CHANGE_OLDER_D, LARGE_TURN_DEG = 1.0, 0.75, 10.0
+BLUE_FROM = 0.08  # mean reflectance of one face from 400 to 440 nm; a modelling choice
+UV_CUT_ENOUGH_NM = 380.0
+MULTIFOCAL = ("bifocal", "progressive")
+NEAR_ONLY = ("reading", "occupational")
+
+Figures = Mapping[str, Figure]
+Applies = Callable[[Case, Laid, "LensLight"], Figures | None]
+NOTHING: Figures = {}
+
+
+@dataclass(frozen=True)
+class LensLight:
+    """What a caution needs to know of the finished lens: luminous transmittance clear and dark, imbalance."""
+
+    transmittance: float
+    transmittance_dark: float
+    imbalance_prism_d: float
+
+
+@dataclass(frozen=True)
+class Applied:
+    """A caution that applies, with its figures."""
+
+    key: str
+    figures: Figures
+
+
+def _when(condition: bool, figures: Figures = NOTHING) -> Figures | None:
+    return figures if condition else None
+
+
+def is_glass(option: Laid) -> bool:
+    """Whether a material is glass, told by its density: no lens resin reaches 2 g/cm3."""
+    return option.material.density_g_cm3 >= 2.0
+
+
+def _has_film(option: Laid) -> bool:
+    return option.front_face.has_film or option.back_face.has_film
+
+
+def _is_tinted(option: Laid) -> bool:
+    return option.tint is not None
+
+
+def _kind(option: Laid) -> str:
+    return "" if option.tint is None else option.tint.kind
+
+
+def _not_eye_protection(_case: Case, _option: Laid, _light: LensLight) -> Figures | None:
+    return NOTHING
+
+
+def _coating_adds_no_strength(_case: Case, option: Laid, _light: LensLight) -> Figures | None:
+    return _when(_has_film(option))
+
+
+def _child(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
+    return _when(case.is_child)
+
+
+def _one_eye(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
+    return _when(case.life("one_good_eye") == "yes")
+
+
+def _impact(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
+    return _when(case.life("impact") == "often")
+
+
+def _glass_breaks(_case: Case, option: Laid, _light: LensLight) -> Figures | None:
+    return _when(is_glass(option))
+
+
+def _not_for_night_driving_tint(_case: Case, option: Laid, light: LensLight) -> Figures | None:
+    dark = DRIVING_LEAST <= light.transmittance < NIGHT_DRIVING_LEAST
+    return _when(_is_tinted(option) and dark, {"luminous_percent": 100 * light.transmittance})
+
+
+def _not_for_driving_tint(_case: Case, option: Laid, light: LensLight) -> Figures | None:
+    darkest = min(light.transmittance, light.transmittance_dark)
+    return _when(_is_tinted(option) and darkest < DRIVING_LEAST, {"luminous_percent": 100 * darkest})
+
+
+def _tint_colour_unknown(_case: Case, option: Laid, _light: LensLight) -> Figures | None:
+    return _when(_is_tinted(option))
+
+
+def _uv_not_darkness(_case: Case, option: Laid, _light: LensLight) -> Figures | None:
+    cut = option.material.uv_cut_nm
+    stated = option.tint is not None and option.tint.uv_filter is True
+    return _when(
+        _is_tinted(option) and not stated and (cut is None or cut < UV_CUT_ENOUGH_NM),
+        {"uv_cut_nm": cut},
+    )
+
+
+def _night_tint_no_benefit(case: Case, option: Laid, _light: LensLight) -> Figures | None:
+    return _when(_is_tinted(option) and case.says("night_driving"))
+
+
+def _photochromic(_case: Case, option: Laid, _light: LensLight) -> Figures | None:
+    return _when(_kind(option) == "photochromic")
+
+
+def _polarising(_case: Case, option: Laid, _light: LensLight) -> Figures | None:
+    return _when(_kind(option) == "polarising")
+
+
+def _not_for_driving_design(_case: Case, option: Laid, _light: LensLight) -> Figures | None:
+    return _when(option.design.kind in NEAR_ONLY)
+
+
+def _no_near(case: Case, option: Laid, _light: LensLight) -> Figures | None:
+    wanted = case.visit.prescription.for_ in (None, "all", "distance")
+    return _when(case.has_add and wanted and option.design.kind == "single-vision")
+
+
+def _near_imbalance(case: Case, option: Laid, light: LensLight) -> Figures | None:
+    reads = case.has_add or case.life("first_multifocal") == "yes" or case.life("one_good_eye") == "yes"
+    return _when(
+        reads and light.imbalance_prism_d >= IMBALANCE_FROM_PRISM_D and option.design.kind not in NEAR_ONLY,
+        {"imbalance_prism_d": light.imbalance_prism_d},
+    )
+
+
+def _height_too_low(case: Case, option: Laid, _light: LensLight) -> Figures | None:
+    least, height = option.design.least_height_mm, float(case.height_mm.min())
+    return _when(least is not None and height < least, {"height_mm": height, "least_height_mm": least})
+
+
+def _decentred_outwards(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
+    outward = float((case.pd_mm - (case.a_mm + case.dbl_mm) / 2).max())
+    return _when(outward > 0.0, {"outward_mm": outward})
+
+
+def _drilled(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
+    return _when(case.rim == "drilled")
+
+
+def _heat_soft(_case: Case, option: Laid, _light: LensLight) -> Figures | None:
+    return _when(option.material.index >= 1.70 and not is_glass(option))
+
+
+def _vertex_missing(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
+    return _when(case.visit.prescription.vertex_mm is None and case.strongest_d >= VERTEX_MATTERS_FROM_D)
+
+
+def _vertex_differs(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
+    differs = case.tested_vertex_mm != case.fitted_vertex_mm and case.strongest_d >= VERTEX_MATTERS_FROM_D
+    return _when(differs, {"fitted_mm": case.fitted_vertex_mm, "tested_mm": case.tested_vertex_mm})
+
+
+def _rx_old(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
+    written = case.visit.prescription.written
+    if written is None:
+        return None
+    limit = (case.date.year - 2, case.date.month, case.date.day)
+    return _when((written.year, written.month, written.day) < limit)
+
+
+def _unequal_add(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
+    right, left = (case.eye(eye).add or 0.0 for eye in EYES)
+    balanced = any(case.eye(eye).balance for eye in EYES)
+    return _when(right != left and not balanced)
+
+
+def _add_for_age(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
+    if "wearer.birth_year" in case.defaults_used:
+        return None
+    early = case.has_add and case.age_years < 35
+    late = not case.has_add and case.age_years > 45 and case.visit.prescription.for_ in (None, "all")
+    return _when(early or late)
+
+
+def power_change(case: Case) -> tuple[float, float] | None:
+    """Return the greatest change of power along any meridian (D) and of axis (degrees) against the worn pair."""
+    worn = case.visit.worn_now
+    if worn is None or worn.prescription is None:
+        return None
+    change, turn = 0.0, 0.0
+    for eye in EYES:
+        now = case.eye(eye).power
+        then = (worn.prescription.right if eye == "right" else worn.prescription.left).power
+        along = range(0, 180, 5)
+        change = max(change, *(abs(_along(now, angle) - _along(then, angle)) for angle in along))
+        if min(abs(now.cylinder_d), abs(then.cylinder_d)) >= 0.5:
+            apart = abs(now.axis_deg - then.axis_deg) % 180
+            turn = max(turn, min(apart, 180 - apart))
+    return change, turn
+
+
+def _along(power: SphereCylinder, angle: int) -> float:
+    return power_along_d(power, meridian_deg=float(angle))
+
+
+def is_unsteady(case: Case) -> bool:
+    """Whether the wearer is older or has said that falls happen."""
+    older = case.youngest_age is not None and case.youngest_age >= OLDER_FROM
+    return older or case.life("falls") == "yes"
+
+
+def _large_change(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
+    changed = power_change(case)
+    if changed is None:
+        return None
+    limit = LARGE_CHANGE_OLDER_D if is_unsteady(case) else LARGE_CHANGE_D
+    return _when(changed[0] > limit or changed[1] > LARGE_TURN_DEG, {"change_d": changed[0], "turn_deg": changed[1]})
+
+
+def _restricted_supply(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
+    return _when(case.stock.shop.region == "uk" and case.youngest_age is not None and case.youngest_age < 16)
+
+
+def _steps(case: Case, option: Laid, _light: LensLight) -> Figures | None:
+    return _when(is_unsteady(case) or option.design.kind in MULTIFOCAL)
+
+
+def _not_promise_none(_case: Case, option: Laid, _light: LensLight) -> Figures | None:
+    return _when(_has_film(option))
+
+
+def _new_glare(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
+    return _when(case.life("new_glare") == "yes")
+
+
+def _blue_film(_case: Case, option: Laid, _light: LensLight) -> Figures | None:
+    most = max(blue_turned_away(face) for face in (option.front_face, option.back_face))
+    return _when(_has_film(option) and most >= BLUE_FROM, {"blue_percent": 100 * most})
+
+
+CAUTIONS: Mapping[str, Applies] = {
+    "new-glare-exam": _new_glare,
+    "child": _child,
+    "one-eye": _one_eye,
+    "impact": _impact,
+    "glass-breaks": _glass_breaks,
+    "not-for-driving-tint": _not_for_driving_tint,
+    "not-for-night-driving-tint": _not_for_night_driving_tint,
+    "not-for-driving-design": _not_for_driving_design,
+    "no-near": _no_near,
+    "rx-old": _rx_old,
+    "vertex-missing": _vertex_missing,
+    "vertex-differs": _vertex_differs,
+    "add-for-age": _add_for_age,
+    "unequal-add": _unequal_add,
+    "large-change": _large_change,
+    "near-vertical-imbalance": _near_imbalance,
+    "fitting-height-too-low": _height_too_low,
+    "decentred-outwards": _decentred_outwards,
+    "steps": _steps,
+    "drilled-caution": _drilled,
+    "heat-soft-material": _heat_soft,
+    "uv-not-darkness": _uv_not_darkness,
+    "night-tint-no-benefit": _night_tint_no_benefit,
+    "photochromic-windscreen": _photochromic,
+    "polarising": _polarising,
+    "tint-colour-unknown": _tint_colour_unknown,
+    "blue-film-no-relief": _blue_film,
+    "not-promise-none": _not_promise_none,
+    "coating-adds-no-strength": _coating_adds_no_strength,
+    "restricted-supply": _restricted_supply,
+    "not-eye-protection": _not_eye_protection,
+}
+
+
+def cautions_for(case: Case, option: Laid, *, light: LensLight) -> list[Applied]:
+    """Return the cautions that apply to this wearer in this lens, the gravest first."""
+    found = ((key, applies(case, option, light)) for key, applies in CAUTIONS.items())
+    return [Applied(key, figures) for key, figures in found if figures is not None]

@@ -1,0 +1,168 @@
+"""The comparison: arrays with named axes until the edge, where the answer is made."""
+
+import datetime as dt
+from collections.abc import Sequence
+from dataclasses import dataclass, replace
+from typing import Any
+
+from advisor import __version__
+from advisor.counsel.answer import notice, option_answer
+from advisor.counsel.case import Case, build_case
+from advisor.counsel.caution_texts import CAUTION_TEXTS
+from advisor.counsel.cautions import LensLight, cautions_for
+from advisor.counsel.comparison import Comparison
+from advisor.counsel.faults import Faults
+from advisor.counsel.laid_out import Laid, Refused, lay_out, options_of
+from advisor.counsel.light import Light, light_of
+from advisor.counsel.phrases import Phrase, Translator, mark, say
+from advisor.counsel.prescription import power_along_d
+from advisor.counsel.stock import Range
+from advisor.counsel.visit import DailyLife, Visit
+from advisor.counsel.visit_checks import WARNING_TEXTS, prescription_warnings, visit_faults
+
+Content = dict[str, Any]
+
+OWN_WARNINGS: dict[str, str] = {
+    "not-asked": mark("Not asked, and not taken as “never”: %(questions)s."),
+    "defaults-used": mark("%(count)s figures are defaults, not measurements."),
+}
+
+
+@dataclass(frozen=True)
+class Computed:
+    """Everything computed for a visit, before it becomes the answer: the case, its options and their arrays."""
+
+    case: Case
+    laid: tuple[Laid, ...]
+    light: Light
+    vertical_imbalance_prism_d: float
+
+
+def compute(visit: Visit, stock: Range, *, today: dt.date | None = None, file: str = "") -> Computed:
+    """Work out a visit as arrays.
+
+    Raises
+    ------
+    Faults
+        If the visit names what the range does not hold.
+    """
+    faults = visit_faults(visit, stock=stock, file=file)
+    if faults:
+        raise Faults(faults)
+    case = build_case(visit, stock, today=today or dt.date.today())
+    laid = lay_out(case)
+    light = light_of(laid, case.scenes)
+    return Computed(
+        case=case,
+        laid=tuple(_with_tint_refusals(laid, light)),
+        light=light,
+        vertical_imbalance_prism_d=vertical_imbalance(case),
+    )
+
+
+def vertical_imbalance(case: Case) -> float:
+    """Return the prism between the eyes 10 mm below the centres: difference of vertical powers x 1 cm (Prentice)."""
+    right, left = (power_along_d(case.compensated(eye), meridian_deg=90.0) for eye in ("right", "left"))
+    return abs(right - left)
+
+
+def _with_tint_refusals(laid: Sequence[Laid], light: Light) -> list[Laid]:
+    found = []
+    for option, fits in zip(laid, light.tint_fits, strict=True):
+        if fits or option.tint is None:
+            found.append(option)
+            continue
+        figures = {"luminous_percent": 100 * option.tint.luminous_transmittance}
+        found.append(replace(option, refused=(*option.refused, Refused(Phrase("tint-out-of-reach", figures)))))
+    return found
+
+
+def warnings_of(case: Case) -> list[Phrase]:
+    """Return what should be looked at again: slips of the pen, questions not asked, defaults used."""
+    found = prescription_warnings(case.visit)
+    asked = case.visit.daily_life
+    not_asked = asked.not_asked() if asked is not None else tuple(_all_questions())
+    if not_asked:
+        found.append(Phrase("not-asked", {"questions": ", ".join(not_asked)}))
+    if case.defaults_used:
+        found.append(Phrase("defaults-used", {"count": len(case.defaults_used)}))
+    return found
+
+
+def _all_questions() -> Sequence[str]:
+    return tuple(DailyLife.model_fields)
+
+
+def lens_light(computed: Computed, index: int) -> LensLight:
+    """Return what the cautions need to know of one option's finished lens."""
+    return LensLight(
+        transmittance=float(computed.light.transmittance[index]),
+        transmittance_dark=float(computed.light.transmittance_dark[index]),
+        imbalance_prism_d=computed.vertical_imbalance_prism_d,
+    )
+
+
+def _cautions(computed: Computed, translator: Translator) -> list[Content]:
+    """Return every caution that applies to some option, the gravest first, with the options it applies to."""
+    found: dict[str, Content] = {}
+    order = list(CAUTION_TEXTS)
+    for option in computed.laid:
+        for applied in cautions_for(computed.case, option, light=lens_light(computed, option.index)):
+            words = CAUTION_TEXTS[applied.key]
+            entry = found.setdefault(
+                applied.key,
+                {
+                    "key": applied.key,
+                    "text": say(Phrase(applied.key, applied.figures), {applied.key: words.text}, translator),
+                    "rule": translator.gettext(words.rule),
+                    "source": translator.gettext(words.source),
+                    "figures": dict(applied.figures),
+                    "options": [],
+                },
+            )
+            entry["options"].append(option.index)
+    return sorted(found.values(), key=lambda entry: order.index(entry["key"]))
+
+
+def answer_of(computed: Computed, *, translator: Translator, with_advice: bool = True) -> Comparison:
+    """Turn computed arrays into the answer, in the translator's language."""
+    case = computed.case
+    texts = WARNING_TEXTS | OWN_WARNINGS
+    used = [*case.defaults_used, *(name for option in computed.laid for name in option.defaults_used)]
+    if options_of(case)[1]:
+        used.append("options")
+    content: Content = {
+        "format": "twolight-comparison-1",
+        "twolight": __version__,
+        "defaults_used": used,
+        "warnings": [notice(phrase, texts, translator) for phrase in warnings_of(case)],
+        "options": [
+            option_answer(option, light=computed.light, scenes=case.scenes, translator=translator)
+            for option in computed.laid
+        ],
+        "vertical_imbalance_prism_d": computed.vertical_imbalance_prism_d,
+    }
+    if case.visit.reference is not None:
+        content["reference"] = case.visit.reference
+    if with_advice:
+        content["advice"] = {"cautions": _cautions(computed, translator)}
+    return Comparison.model_validate(content)
+
+
+def compare(
+    visit: Visit,
+    stock: Range,
+    *,
+    translator: Translator,
+    with_advice: bool = True,
+    today: dt.date | None = None,
+    file: str = "",
+) -> Comparison:
+    """Compare the options of a visit: the call behind the page, the command and the sheets.
+
+    Raises
+    ------
+    Faults
+        If the visit names what the range does not hold.
+    """
+    return answer_of(compute(visit, stock, today=today, file=file), translator=translator, with_advice=with_advice)

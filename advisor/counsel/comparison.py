@@ -1,0 +1,204 @@
+"""The answer, ``twolight-comparison-1``: names that other programs may rely on.
+
+A key whose part is not built is absent, never 0: dump with ``exclude_unset=True``. A figure that does not exist for this
+lens (no separation for a light behind the wearer) is null. Reflectances and transmittances are fractions. Pairs by
+meridian run from the more positive power to the other.
+"""
+
+from typing import Literal
+
+from pydantic import BaseModel, ConfigDict, Field
+
+from advisor.counsel.phrases import Figure
+
+FORMAT: Literal["twolight-comparison-1"] = "twolight-comparison-1"
+
+Pair = tuple[float | None, float | None]
+Spread = tuple[float, float, float]
+Verdict = Literal["not noticed", "at the limit", "only if looked for", "noticeable", "plain"]
+Path = Literal["ahead-inner", "behind-back", "behind-front", "cornea-back", "cornea-front"]
+
+
+class _Part(BaseModel):
+    model_config = ConfigDict(extra="forbid", allow_inf_nan=False, frozen=True)
+
+
+class Notice(_Part):
+    """A warning or reason: a code, its text in the language asked for, and the figures in the text."""
+
+    code: str
+    text: str
+    figures: dict[str, Figure] = Field(default_factory=dict)
+
+
+class Refusal(_Part):
+    """Why an option cannot be made or is not sold, and the nearest that can."""
+
+    code: str
+    text: str
+    nearest: dict[str, Figure] | None = None
+
+
+class Faces(_Part):
+    """Something named for each of the two faces."""
+
+    front: str
+    back: str
+
+
+class AsMade(_Part):
+    """The 5, 50 and 95 % points of the luminous reflectance a coating plant delivers; null for a face without layers."""
+
+    front: Spread | None = None
+    back: Spread | None = None
+    first_pass_loss: Spread | None = None
+
+
+class LuminousReflectance(_Part):
+    """Luminous reflectance under D65 near normal incidence, as designed."""
+
+    front: float
+    back: float
+    first_pass_loss: float = Field(description="1 - (1 - front)(1 - back), the figure trade tables print")
+    whole_lens: float = Field(description="all bounces, with the tint's absorption")
+    as_made: AsMade = Field(default_factory=AsMade)
+    estimated: bool = Field(default=False, description="true if a face is a supplier's declared figure")
+
+
+class Colour(_Part):
+    """Residual colour of a face: the hue word, a patch raised to a stated lightness, and the true chromaticity."""
+
+    hue: str
+    srgb: str
+    xy: tuple[float, float]
+
+
+class ResidualColour(_Part):
+    """Residual colour of both faces."""
+
+    front: Colour
+    back: Colour
+
+
+class Accommodated(_Part):
+    """The same ghost when the eye focuses for it as far as it can."""
+
+    defocus_d: Pair | None = None
+    size_deg: Pair | None = None
+    luminance_cd_m2: float | None = None
+    threshold_cd_m2: float | None = None
+    visibility_level: float | None = None
+    verdict: Verdict | None = None
+
+
+class Ghost(_Part):
+    """One ghost image: one path in one scene."""
+
+    path: Path
+    scene: str
+    strength: float = Field(description="relative to direct light for ahead and cornea paths, else of the light behind")
+    strength_range: tuple[float, float] | None = Field(default=None, description="over the built-in shapes, if estimated")
+    vergence_d: Pair | None = Field(default=None, description="at the back vertex")
+    defocus_d: Pair | None = Field(default=None, description="at the pupil, relaxed")
+    pupil_mm: float | None = None
+    size_deg: Pair | None = None
+    separation_deg: float | None = Field(default=None, description="a length; null for light from behind")
+    spread: bool | None = Field(default=None, description="spread over the lens: there is no place to state")
+    luminance_cd_m2: float | None = None
+    background_cd_m2: float | None = None
+    threshold_cd_m2: float | None = None
+    visibility_level: float | None = None
+    contrast: float | None = None
+    verdict: Verdict | None = None
+    verdict_range: tuple[Verdict, Verdict] | None = None
+    haze: bool | None = None
+    past_range: bool | None = Field(default=None, description="outside the luminances the threshold was measured for")
+    accommodated: Accommodated | None = None
+
+
+class Place(_Part):
+    """Where on the rim, seen from the front: degrees from the nose side, anticlockwise for the right eye, and a word."""
+
+    angle_deg: float
+    word: Literal["nose", "nose up", "up", "temple up", "temple", "temple down", "down", "nose down"]
+
+
+class EyeFigures(_Part):
+    """Every figure of one lens."""
+
+    front_power_d: float | None = None
+    back_power_d: Pair | None = None
+    centre_mm: float | None = None
+    edge_thickest_mm: float | None = None
+    edge_thinnest_mm: float | None = None
+    edge_thickest_at: Place | None = None
+    edge_thinnest_at: Place | None = None
+    weight_g: float | None = None
+    blank_mm: float | None = None
+    luminous_reflectance: LuminousReflectance
+    luminous_transmittance: float
+    luminous_transmittance_dark: float | None = None
+    residual_colour: ResidualColour
+    observer_contrast: float | None = None
+    colour_fringe_prism_d: float | None = None
+    magnification_percent: float | None = None
+    smaller_frame: dict[str, float | None] | None = Field(
+        default=None, description="the same lens in a frame 4 mm smaller: edge_thickest_mm and weight_g"
+    )
+    ghosts: list[Ghost] = Field(default_factory=list)
+
+
+class OptionFigures(_Part):
+    """One option laid out; an option that cannot be made keeps its place and has no eyes."""
+
+    index: int
+    label: str
+    design: str
+    material: str
+    coating: Faces
+    tint: str | float | None = None
+    price: float | None
+    refused: list[Refusal] = Field(default_factory=list)
+    notes: list[Notice] = Field(default_factory=list)
+    right: EyeFigures | None = None
+    left: EyeFigures | None = None
+
+
+class Caution(_Part):
+    """A caution that applies to this wearer: always deferring to local rules and licensed practice."""
+
+    key: str
+    text: str
+    rule: str
+    source: str
+    figures: dict[str, Figure] = Field(default_factory=dict)
+    options: list[int] = Field(default_factory=list, description="the options it applies to")
+
+
+class Advice(_Part):
+    """Advice; its parts appear as they are built."""
+
+    recommended: dict[str, object] | None = None
+    next_best: dict[str, object] | None = None
+    cheapest_that_meets_every_must: dict[str, object] | None = None
+    ranking: list[int] | None = None
+    excluded: list[dict[str, object]] | None = None
+    because: list[Notice] | None = None
+    gives_up: list[Notice] | None = None
+    would_change: list[Notice] | None = None
+    robust: str | None = None
+    cautions: list[Caution] = Field(default_factory=list)
+    greatest_reflectance_per_surface: float | None = None
+
+
+class Comparison(_Part):
+    """The whole answer for one visit."""
+
+    format: Literal["twolight-comparison-1"] = FORMAT
+    twolight: str
+    reference: str | None = None
+    defaults_used: list[str]
+    warnings: list[Notice]
+    options: list[OptionFigures]
+    vertical_imbalance_prism_d: float | None = None
+    advice: Advice | None = None

@@ -1,0 +1,191 @@
+"""The options of a visit laid out: keys resolved to items, gaps filled, prices found, what is not sold refused."""
+
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass
+
+from advisor.counsel.case import Case
+from advisor.counsel.choices import Option
+from advisor.counsel.faces import Face, face_of, sold_coating
+from advisor.counsel.phrases import Figure, Phrase, mark
+from advisor.counsel.prescription import EYES, SphereCylinder, power_for_design
+from advisor.counsel.pricing import best_offer, matching_offers, outside_limits, parts_price
+from advisor.counsel.stock import BARE, Range
+from advisor.counsel.stock_items import Coating, Design, Material, Offer, Tint
+
+
+@dataclass(frozen=True)
+class Refused:
+    """Why an option is refused, and the nearest thing that is not."""
+
+    phrase: Phrase
+    nearest: Mapping[str, Figure] | None = None
+
+
+@dataclass(frozen=True)
+class Laid:
+    """One option with everything looked up."""
+
+    index: int
+    option: Option
+    design: Design
+    material: Material
+    front: Coating
+    back: Coating
+    tint: Tint | None
+    offer: Offer | None
+    price: float | None
+    powers: tuple[SphereCylinder, SphereCylinder]
+    refused: tuple[Refused, ...] = ()
+    notes: tuple[Phrase, ...] = ()
+    defaults_used: tuple[str, ...] = ()
+
+    @property
+    def front_face(self) -> Face:
+        """What the front is made of."""
+        return face_of(self.material, self.front)
+
+    @property
+    def back_face(self) -> Face:
+        """What the back is made of."""
+        return face_of(self.material, self.back)
+
+    @property
+    def made(self) -> str:
+        """Whether it is cut from a round stock blank or surfaced for the frame."""
+        return (self.offer.made if self.offer else None) or "surfaced"
+
+
+NOTE_TEXTS: dict[str, str] = {
+    "hard-coat-assumed": mark("This material is never sold without a hard coat: bare faces are computed as hard coat only."),
+    "estimated-spectrum": mark("Estimated spectrum: a supplier's declared figure on the shape of the nearest built-in film."),
+    "price-unknown": mark("The price of a part is unknown, so the pair has none."),
+    "not-an-offer": mark("The shop lists offers and this pair is none of them."),
+    "finished-tint": mark("The tint's figure is the supplier's for the finished lens."),
+}
+REFUSAL_TEXTS: dict[str, str] = {
+    "sphere-not-made": mark("%(material)s is made from %(low_d)s to %(high_d)s D; this lens needs %(sphere_d)s D."),
+    "cylinder-not-made": mark("%(material)s is made up to a cylinder of %(most_d)s D; this lens needs %(cylinder_d)s D."),
+    "not-tintable": mark("%(material)s is not sold with a tint."),
+    "not-drillable": mark("%(material)s is not sold for a drilled rim."),
+    "tint-out-of-reach": mark("No tint gives a finished lens of %(luminous_percent)s %% with these faces."),
+}
+
+
+def options_of(case: Case) -> tuple[tuple[Option, ...], bool]:
+    """Return the options to lay out, and whether they are the range's default ones."""
+    if case.visit.options:
+        return case.visit.options, False
+    return case.stock.shop.default_options or (), True
+
+
+def lay_out(case: Case) -> list[Laid]:
+    """Return every option of the visit, resolved; what an option leaves out it takes from the first one."""
+    options, _ = options_of(case)
+    laid: list[Laid] = []
+    for index, option in enumerate(options):
+        laid.append(_one(case, option, index, laid[0] if laid else None))
+    return laid
+
+
+def _one(case: Case, option: Option, index: int, first: Laid | None) -> Laid:
+    stock, defaults = case.stock, []
+    design, material = first and first.design, first and first.material
+    if option.design is not None:
+        design = stock.design_of(option.design)
+    else:
+        defaults.append(f"options[{index}].design")
+    if option.material is not None:
+        material = stock.material_of(option.material)
+    else:
+        defaults.append(f"options[{index}].material")
+    design, material = design or stock.design[0], material or stock.material[0]
+    asked = (BARE, BARE) if option.coating is None else stock.faces_of(option.coating)
+    if option.coating is None:
+        defaults.append(f"options[{index}].coating")
+    front, back = (sold_coating(material, coating, stock) for coating in asked)
+    tint = stock.tint_of(option.tint)
+    right, left = (
+        power_for_design(
+            case.compensated(eye), add_d=case.eye(eye).add or 0.0, kind=design.kind, near_share=design.near_share
+        )
+        for eye in EYES
+    )
+    powers = (right, left)
+    offers = matching_offers(
+        stock, design=design.key, material=material.key, front=front, back=back, tint=tint
+    )
+    offer = best_offer(offers, powers)
+    price = parts_price(design, material=material, front=front, back=back, tint=tint) if offer is None else offer.price
+    notes = list(_notes(stock, offer, price, (front, back), asked, tint))
+    return Laid(
+        index=index,
+        option=option,
+        design=design,
+        material=material,
+        front=front,
+        back=back,
+        tint=tint,
+        offer=offer,
+        price=price,
+        powers=powers,
+        refused=tuple(_refusals(case, stock, material, tint, powers)),
+        notes=tuple(notes),
+        defaults_used=tuple(defaults),
+    )
+
+
+def _notes(
+    stock: Range,
+    offer: Offer | None,
+    price: float | None,
+    faces: tuple[Coating, Coating],
+    asked: tuple[Coating, Coating],
+    tint: Tint | None,
+) -> list[Phrase]:
+    found = []
+    if faces != asked:
+        found.append(Phrase("hard-coat-assumed"))
+    if any(face.declared is not None for face in faces):
+        found.append(Phrase("estimated-spectrum"))
+    if price is None:
+        found.append(Phrase("price-unknown"))
+    if stock.offer and offer is None:
+        found.append(Phrase("not-an-offer"))
+    if tint is not None and tint.finished:
+        found.append(Phrase("finished-tint"))
+    return found
+
+
+def _refusals(
+    case: Case, stock: Range, material: Material, tint: Tint | None, powers: tuple[SphereCylinder, SphereCylinder]
+) -> list[Refused]:
+    """Say what of the material's limits this pair breaks, each with the nearest material that does not."""
+    found = []
+    name = material.label or material.key
+    broken = outside_limits(material, powers)
+    if broken is not None:
+        worst = max(powers, key=lambda p: max(abs(p.sphere_d), abs(p.sphere_d + p.cylinder_d)))
+        nearest = _nearest(stock, material, lambda other: outside_limits(other, powers) is None)
+        if broken == "sphere_range_d" and material.sphere_range_d is not None:
+            low, high = material.sphere_range_d
+            figures: dict[str, Figure] = {"material": name, "low_d": low, "high_d": high, "sphere_d": worst.sphere_d}
+            found.append(Refused(Phrase("sphere-not-made", figures), nearest))
+        else:
+            figures = {"material": name, "most_d": material.cylinder_max_d, "cylinder_d": worst.cylinder_d}
+            found.append(Refused(Phrase("cylinder-not-made", figures), nearest))
+    if tint is not None and material.tintable is False:
+        nearest = _nearest(stock, material, lambda other: other.tintable is not False)
+        found.append(Refused(Phrase("not-tintable", {"material": name}), nearest))
+    if case.rim == "drilled" and material.drillable is False:
+        nearest = _nearest(stock, material, lambda other: other.drillable is not False)
+        found.append(Refused(Phrase("not-drillable", {"material": name}), nearest))
+    return found
+
+
+def _nearest(stock: Range, material: Material, fits: Callable[[Material], bool]) -> dict[str, Figure] | None:
+    """Return the material nearest in index for which a condition holds."""
+    fitting = [other for other in stock.material if fits(other)]
+    if not fitting:
+        return None
+    best = min(fitting, key=lambda other: abs(other.index - material.index))
+    return {"material": best.key}

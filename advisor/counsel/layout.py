@@ -1,0 +1,88 @@
+"""Rows of a comparison for people: what the text table, the CSV file and the page show, in the same order."""
+
+from collections.abc import Callable
+from dataclasses import dataclass
+
+from advisor.counsel.comparison import Comparison, EyeFigures, OptionFigures
+from advisor.counsel.phrases import Translator, mark
+
+Value = float | None
+
+
+@dataclass(frozen=True)
+class Row:
+    """One row: a stable key, its words, how the figure is read from an eye, and how it is written."""
+
+    key: str
+    label: str
+    value: Callable[[EyeFigures], Value]
+    digits: int = 1
+    unit: str = ""
+    scale: float = 1.0
+    open: bool = False
+
+    def text(self, value: Value, translator: Translator) -> str:
+        """Return the figure with its unit, or a dash where there is none."""
+        if value is None:
+            return "–"
+        shown = translator.number(value * self.scale, digits=self.digits)
+        return f"{shown} {self.unit}".rstrip()
+
+
+def ghost_strength(path: str) -> Callable[[EyeFigures], Value]:
+    """Return a reader of the greatest strength of one path over the scenes laid out."""
+
+    def read(eye: EyeFigures) -> Value:
+        found = [ghost.strength for ghost in eye.ghosts if ghost.path == path]
+        return max(found) if found else None
+
+    return read
+
+
+def _as_made(face: str, place: int) -> Callable[[EyeFigures], Value]:
+    def read(eye: EyeFigures) -> Value:
+        spread = getattr(eye.luminous_reflectance.as_made, face)
+        return None if spread is None else float(spread[place])
+
+    return read
+
+
+ROWS: tuple[Row, ...] = (
+    Row("edge_thickest_mm", mark("thickest edge"), lambda eye: eye.edge_thickest_mm, 1, "mm", open=True),
+    Row("centre_mm", mark("centre"), lambda eye: eye.centre_mm, 1, "mm", open=True),
+    Row("weight_g", mark("weight of the lens"), lambda eye: eye.weight_g, 1, "g", open=True),
+    Row("edge_thinnest_mm", mark("thinnest edge"), lambda eye: eye.edge_thinnest_mm, 1, "mm"),
+    Row("front_power_d", mark("front curve"), lambda eye: eye.front_power_d, 2, "D"),
+    Row("blank_mm", mark("smallest blank"), lambda eye: eye.blank_mm, 0, "mm"),
+    Row("reflectance_front", mark("front mirrors, as designed"), lambda eye: eye.luminous_reflectance.front, 2, "%", 100),
+    Row("reflectance_front_low", mark("front mirrors, as made, least"), _as_made("front", 0), 2, "%", 100),
+    Row("reflectance_front_high", mark("front mirrors, as made, most"), _as_made("front", 2), 2, "%", 100),
+    Row("reflectance_back", mark("back mirrors, as designed"), lambda eye: eye.luminous_reflectance.back, 2, "%", 100),
+    Row("reflectance_back_low", mark("back mirrors, as made, least"), _as_made("back", 0), 2, "%", 100),
+    Row("reflectance_back_high", mark("back mirrors, as made, most"), _as_made("back", 2), 2, "%", 100),
+    Row("first_pass_loss", mark("first-pass loss"), lambda eye: eye.luminous_reflectance.first_pass_loss, 2, "%", 100),
+    Row("whole_lens", mark("whole lens mirrors"), lambda eye: eye.luminous_reflectance.whole_lens, 2, "%", 100),
+    Row("luminous_transmittance", mark("light passed"), lambda eye: eye.luminous_transmittance, 1, "%", 100),
+    Row("ahead-inner", mark("mirrored twice inside, from ahead"), ghost_strength("ahead-inner"), 3, "%", 100),
+    Row("behind-back", mark("off the back, from behind"), ghost_strength("behind-back"), 2, "%", 100),
+    Row("behind-front", mark("off the front, from behind"), ghost_strength("behind-front"), 2, "%", 100),
+    Row("cornea-back", mark("off the eye, then the back"), ghost_strength("cornea-back"), 3, "%", 100),
+    Row("cornea-front", mark("off the eye, then the front"), ghost_strength("cornea-front"), 3, "%", 100),
+    Row("observer_contrast", mark("window seen over the eye"), lambda eye: eye.observer_contrast, 2, ""),
+    Row("colour_fringe_prism_d", mark("colour fringe at the side"), lambda eye: eye.colour_fringe_prism_d, 2, "Δ"),
+    Row("magnification_percent", mark("size of what is seen"), lambda eye: eye.magnification_percent, 1, "%"),
+)
+
+
+def rows_present(comparison: Comparison) -> list[Row]:
+    """Return the rows for which at least one eye of one option has a figure."""
+    eyes = [eye for option in comparison.options for eye in (option.right, option.left) if eye is not None]
+    return [row for row in ROWS if any(row.value(eye) is not None for eye in eyes)]
+
+
+def two_eyes(row: Row, option: OptionFigures, translator: Translator) -> str:
+    """Return the figure of both eyes: one where they are shown alike, else right and left parted by a stroke."""
+    texts = [row.text(row.value(eye), translator) for eye in (option.right, option.left) if eye is not None]
+    if not texts:
+        return "–"
+    return texts[0] if len(set(texts)) == 1 else " / ".join(texts)

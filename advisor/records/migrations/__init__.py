@@ -1,0 +1,1 @@
+"""The migrations, oldest first in ``versions``; ``advisor.records.schema`` runs them."""

@@ -1,0 +1,184 @@
+"""The records of a shop: the one door through which the rest of the program reads and writes them."""
+
+import zlib
+from collections.abc import Iterator
+from contextlib import contextmanager
+from pathlib import Path
+from types import TracebackType
+
+from sqlalchemy import Connection, Engine, make_url
+
+from advisor.records import drafts, ranges, visits
+from advisor.records.drafts import SavedDraft
+from advisor.records.engine import make_private, server_engine, sqlite_engine
+from advisor.records.location import database_file
+from advisor.records.ranges import RangeVersion
+from advisor.records.schema import bring_up_to_date
+from advisor.records.trouble import StoreUnreadable, explained
+from advisor.records.visits import PageKey, SavedVisit, VisitLine
+
+
+class Store:
+    """Visits, drafts, ranges and settings; safe to share between threads.
+
+    Errors are subclasses of :class:`advisor.records.trouble.StoreError`, one for each reason.
+    """
+
+    def __init__(self, engine: Engine, place: str) -> None:
+        self._engine = engine
+        self._writer = engine.execution_options(writing=True)
+        self.place = place
+
+    @classmethod
+    def open(cls, place: Path | str) -> "Store":
+        """Open the records in a data folder or at a database URL, making or upgrading the tables first."""
+        if isinstance(place, str) and "://" in place:
+            name, engine = make_url(place).render_as_string(hide_password=True), server_engine(place)
+        else:
+            file = database_file(Path(place).absolute())
+            name, engine = str(file), sqlite_engine(file)
+            with explained(name):
+                make_private(file)
+        try:
+            with explained(name):
+                bring_up_to_date(engine, place=name)
+        except BaseException:
+            engine.dispose()
+            raise
+        return cls(engine, name)
+
+    def close(self) -> None:
+        """Close every connection; whatever was saved stays saved."""
+        self._engine.dispose()
+
+    def __enter__(self) -> "Store":
+        return self
+
+    def __exit__(
+        self, kind: type[BaseException] | None, error: BaseException | None, trace: TracebackType | None
+    ) -> None:
+        self.close()
+
+    @contextmanager
+    def _reading(self) -> Iterator[Connection]:
+        with explained(self.place), self._engine.begin() as connection:
+            try:
+                yield connection
+            except zlib.error as error:
+                raise StoreUnreadable(self.place) from error
+
+    @contextmanager
+    def _writing(self) -> Iterator[Connection]:
+        with explained(self.place), self._writer.begin() as connection:
+            yield connection
+
+    def save_visit(
+        self,
+        visit_json: str,
+        *,
+        range_toml: str,
+        version: str,
+        answer_json: str,
+        visit_id: str | None = None,
+        edit_seen: int | None = None,
+    ) -> SavedVisit:
+        """Save a new visit, or save over the edit of ``visit_id`` that the editor saw.
+
+        Raises
+        ------
+        VisitChanged
+            If it has been saved since; it carries the stored visit.
+        VisitMissing
+            If it has been erased since.
+        """
+        if (visit_id is None) != (edit_seen is None):
+            raise ValueError("visit_id and edit_seen go together: give both or neither")
+        with self._writing() as connection:
+            key = ranges.keep(connection, range_toml)
+            if visit_id is None or edit_seen is None:
+                return visits.add(connection, visit_json, range_hash=key, version=version, answer_json=answer_json)
+            return visits.change(
+                connection,
+                visit_json,
+                range_hash=key,
+                version=version,
+                answer_json=answer_json,
+                visit_id=visit_id,
+                edit_seen=edit_seen,
+            )
+
+    def get_visit(self, visit_id: str) -> SavedVisit:
+        """Return a visit, or raise VisitMissing."""
+        with self._reading() as connection:
+            return visits.find(connection, visit_id)
+
+    def list_visits(self, search: str = "", *, limit: int = 50, after: PageKey | None = None) -> list[VisitLine]:
+        """Return visits, the last changed first, in which every word of the search begins some word.
+
+        Name, reference, note and date are searched without case or accents. The next page is asked for with the
+        ``key`` of the last line.
+        """
+        with self._reading() as connection:
+            return visits.page(connection, search, limit=limit, after=after)
+
+    def erase_visit(self, visit_id: str) -> None:
+        """Erase a visit and the drafts that began from it, or raise VisitMissing."""
+        with self._writing() as connection:
+            visits.erase(connection, visit_id)
+
+    def save_draft(
+        self,
+        fields_json: str,
+        *,
+        draft_id: str | None = None,
+        edit_seen: int | None = None,
+        visit_id: str | None = None,
+        visit_edit: int | None = None,
+    ) -> SavedDraft:
+        """Save a new draft, or save over ``draft_id``.
+
+        ``visit_id`` and ``visit_edit`` are taken when the draft is new. With ``edit_seen`` a draft that was changed
+        elsewhere raises DraftChanged; without it the last save counts. One that is gone raises DraftMissing.
+        """
+        with self._writing() as connection:
+            if draft_id is None:
+                return drafts.add(connection, fields_json, visit_id=visit_id, visit_edit=visit_edit)
+            return drafts.change(connection, fields_json, draft_id=draft_id, edit_seen=edit_seen)
+
+    def get_draft(self, draft_id: str) -> SavedDraft:
+        """Return a draft, or raise DraftMissing."""
+        with self._reading() as connection:
+            return drafts.find(connection, draft_id)
+
+    def delete_draft(self, draft_id: str) -> None:
+        """Remove a draft; one that is not there is no error."""
+        with self._writing() as connection:
+            drafts.erase(connection, draft_id)
+
+    def set_range(self, toml: str) -> str:
+        """Make this text the shop's range from now on; return its hash. Visits keep the range they were made with."""
+        with self._writing() as connection:
+            key = ranges.keep(connection, toml)
+            ranges.set_setting(connection, ranges.CURRENT, key)
+            return key
+
+    def current_range(self) -> RangeVersion | None:
+        """Return the shop's range, or None where it has saved none."""
+        with self._reading() as connection:
+            key = ranges.setting(connection, ranges.CURRENT)
+            return ranges.find(connection, key) if key else None
+
+    def get_range(self, key: str) -> RangeVersion | None:
+        """Return the range of this hash."""
+        with self._reading() as connection:
+            return ranges.find(connection, key)
+
+    def get_setting(self, key: str) -> str | None:
+        """Return a setting."""
+        with self._reading() as connection:
+            return ranges.setting(connection, key)
+
+    def set_setting(self, key: str, value: str) -> None:
+        """Store a setting over the one before."""
+        with self._writing() as connection:
+            ranges.set_setting(connection, key, value)

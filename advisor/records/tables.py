@@ -1,0 +1,68 @@
+"""The tables, written once for SQLite and PostgreSQL alike.
+
+Times are ISO-8601 text in UTC with microseconds, so they sort as text. Identifiers are random: nothing about a wearer
+can be guessed from an address. Search columns hold folded text (see ``folding``) and are never shown.
+"""
+
+import datetime
+import secrets
+
+from sqlalchemy import Column, ForeignKey, Index, Integer, LargeBinary, MetaData, String, Table, Text
+
+metadata = MetaData()
+
+range_version = Table(
+    "range_version",
+    metadata,
+    Column("hash", String(64), primary_key=True),  # SHA-256 of the text, hexadecimal
+    Column("toml", Text, nullable=False),
+    Column("saved_at", String(32), nullable=False),
+)
+
+visit = Table(
+    "visit",
+    metadata,
+    Column("id", String(32), primary_key=True),
+    Column("created_at", String(32), nullable=False),
+    Column("changed_at", String(32), nullable=False),
+    Column("edit", Integer, nullable=False),
+    Column("name_folded", Text, nullable=False),
+    Column("reference_folded", Text, nullable=False),
+    Column("date", String(10), nullable=False),
+    Column("note_folded", Text, nullable=False),
+    Column("visit", Text, nullable=False),  # JSON, twolight-visit-1
+    Column("range_hash", String(64), ForeignKey("range_version.hash"), nullable=False),
+    Column("version", String(40), nullable=False),  # of the program that computed the answer
+    Column("answer", LargeBinary, nullable=False),  # JSON, twolight-comparison-1, compressed by zlib
+    Index("ix_visit_changed", "changed_at", "id"),
+    Index("ix_visit_range", "range_hash"),
+)
+
+draft = Table(
+    "draft",
+    metadata,
+    Column("id", String(32), primary_key=True),
+    Column("changed_at", String(32), nullable=False),
+    Column("edit", Integer, nullable=False),
+    Column("fields", Text, nullable=False),  # JSON, the form as typed
+    Column("visit_id", String(32), ForeignKey("visit.id", ondelete="CASCADE")),
+    Column("visit_edit", Integer),  # the edit of that visit the draft began from
+    Index("ix_draft_visit", "visit_id"),
+)
+
+setting = Table(
+    "setting",
+    metadata,
+    Column("key", String(64), primary_key=True),
+    Column("value", Text, nullable=False),
+)
+
+
+def new_id() -> str:
+    """Return a random identifier of 22 characters (128 bits) that may stand in an address."""
+    return secrets.token_urlsafe(16)
+
+
+def now() -> str:
+    """Return the present moment as stored."""
+    return datetime.datetime.now(datetime.UTC).isoformat(timespec="microseconds")

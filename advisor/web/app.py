@@ -1,0 +1,92 @@
+"""Make the Flask app: policy, records, error pages, then one blueprint for each noun."""
+
+import mimetypes
+import traceback
+from pathlib import Path
+from types import TracebackType
+from typing import Any
+
+from flask import Flask, Response, jsonify, request, send_from_directory
+from flask.testing import FlaskClient
+from jinja2 import StrictUndefined
+
+from advisor.resources import resource_dir
+from advisor.web import error_pages, policy
+from advisor.web.desk import EXTENSION, Desk, current_desk
+from advisor.web.language import SOURCE_LANGUAGE, language
+
+# Some Windows registries serve these as text/plain, which nosniff then refuses.
+MEDIA_TYPES = {
+    ".js": "text/javascript",
+    ".css": "text/css",
+    ".svg": "image/svg+xml",
+    ".woff2": "font/woff2",
+    ".ttf": "font/ttf",
+}
+
+
+class _App(Flask):
+    def log_exception(
+        self, exc_info: tuple[type[BaseException], BaseException, TracebackType | None] | tuple[None, None, None]
+    ) -> None:
+        """Log the kind of an error and where it arose; its message may quote a wearer's data."""
+        kind, _, trace = exc_info
+        name = kind.__name__ if kind else "error"
+        rule = request.url_rule.rule if request.url_rule else "an unknown address"
+        self.logger.error("%s in %s %s\n%s", name, request.method, rule, "".join(traceback.format_tb(trace)))
+
+
+class _OwnPageClient(FlaskClient):
+    """A test client that sends what a browser sends from our own pages; a header given in a call wins."""
+
+    def __init__(self, app: Flask, *args: Any, **options: Any) -> None:
+        super().__init__(app, *args, **options)
+        self.environ_base["HTTP_SEC_FETCH_SITE"] = "same-origin"
+
+
+def create_app(*, data_dir: Path, testing: bool = False) -> Flask:
+    """Make the app for the records in a data folder; the folder is made when something is first read or saved."""
+    for ending, kind in MEDIA_TYPES.items():
+        mimetypes.add_type(kind, ending)
+    app = _App(
+        "advisor",
+        template_folder=str(resource_dir("templates")),
+        static_folder=str(resource_dir("static")),
+        static_url_path="/static",
+    )
+    app.testing = testing
+    if testing:
+        app.test_client_class = _OwnPageClient
+    policy.apply(app)
+    app.extensions[EXTENSION] = Desk(data_dir)
+    _prepare_templates(app)
+    error_pages.register(app)
+    app.add_url_rule("/health", view_func=health)
+    app.add_url_rule("/favicon.ico", view_func=favicon)
+    _register_blueprints(app)
+    return app
+
+
+def _prepare_templates(app: Flask) -> None:
+    app.jinja_env.autoescape = True
+    app.jinja_env.undefined = StrictUndefined
+    app.jinja_env.trim_blocks = app.jinja_env.lstrip_blocks = True
+    speaker = language(SOURCE_LANGUAGE)
+    app.jinja_env.globals.update(_=speaker.gettext, ngettext=speaker.ngettext)
+    app.jinja_env.globals.update(screen_language=speaker.language, screen_direction=speaker.direction)
+
+
+def _register_blueprints(app: Flask) -> None:
+    """Register the blueprints, one for each noun."""
+    # BLUEPRINTS HERE: counter, visits, range, paper.
+    _ = app
+
+
+def health() -> Response:
+    """Say which program answers on this port."""
+    return jsonify(current_desk().health())
+
+
+def favicon() -> Response:
+    """Serve the icon where browsers look for it unasked."""
+    return send_from_directory(resource_dir("static"), "favicon.svg", mimetype="image/svg+xml")

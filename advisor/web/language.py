@@ -1,0 +1,101 @@
+"""One language: its texts, and how it writes numbers, money and dates.
+
+Everything shown to a person passes through here: the screen, the sheets and the text table. The sheet's language may
+differ from the screen's, so a language is an object that is handed on, never a global.
+"""
+
+import datetime
+from functools import cache
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from advisor.errors import TwolightError
+
+if TYPE_CHECKING:
+    from babel.support import NullTranslations
+
+TRANSLATIONS = Path(__file__).resolve().parent.parent / "translations"
+SOURCE_LANGUAGE = "en"
+MINUS = "\N{MINUS SIGN}"
+
+
+class UnknownLanguage(TwolightError):
+    """The program has no texts in the language asked for."""
+
+
+def languages() -> list[str]:
+    """Return the codes of the languages that have a catalogue, the source language first."""
+    found = sorted(folder.name for folder in TRANSLATIONS.iterdir() if (folder / "LC_MESSAGES").is_dir())
+    return [SOURCE_LANGUAGE, *(code for code in found if code != SOURCE_LANGUAGE)]
+
+
+class Language:
+    """Texts and number formats of one language; satisfies ``advisor.counsel.phrases.Translator``."""
+
+    def __init__(self, code: str) -> None:
+        from babel import Locale
+        from babel.support import NullTranslations, Translations
+
+        self.language = code
+        self.locale = Locale.parse(code)
+        self.catalogue: NullTranslations = (
+            NullTranslations() if code == SOURCE_LANGUAGE else Translations.load(str(TRANSLATIONS), [code], "messages")
+        )
+
+    @property
+    def direction(self) -> str:
+        """``ltr`` or ``rtl``."""
+        return str(self.locale.text_direction)
+
+    def gettext(self, message: str, /) -> str:
+        """Return the text in this language."""
+        return str(self.catalogue.gettext(message)) if message else ""
+
+    def ngettext(self, singular: str, plural: str, number: int, /) -> str:
+        """Return the form of a text for this number."""
+        return str(self.catalogue.ngettext(singular, plural, number))
+
+    def number(self, value: float, *, digits: int, signed: bool = False) -> str:
+        """Return a number with a fixed count of decimals; a signed one shows plus too, and zero has no sign."""
+        rounded = round(float(value), digits)
+        sign = MINUS if rounded < 0 else "+" if signed and rounded > 0 else ""
+        text = f"{abs(rounded):,.{digits}f}" if self.language == SOURCE_LANGUAGE else self._local(abs(rounded), digits)
+        return sign + text
+
+    def _local(self, value: float, digits: int) -> str:
+        from babel.numbers import format_decimal
+
+        pattern = "#,##0" + ("." + "0" * digits if digits else "")
+        return format_decimal(value, format=pattern, locale=self.locale)
+
+    def percent(self, fraction: float, *, digits: int = 1) -> str:
+        """Return a fraction as a percentage."""
+        return f"{self.number(100 * fraction, digits=digits)} %"
+
+    def money(self, amount: float | None, *, currency: str) -> str:
+        """Return a price, or a dash where none is known."""
+        if amount is None:
+            return "–"
+        from babel.numbers import format_currency
+
+        return format_currency(amount, currency, locale=self.locale)
+
+    def date(self, day: datetime.date) -> str:
+        """Return a date with the month as a word, which no reader can take for the day."""
+        from babel.dates import format_date
+
+        return format_date(day, format="long", locale=self.locale)
+
+
+@cache
+def language(code: str) -> Language:
+    """Return the language of this code.
+
+    Raises
+    ------
+    UnknownLanguage
+        If there is no catalogue for it.
+    """
+    if code not in languages():
+        raise UnknownLanguage(f"There are no texts in “{code}”; known languages are {', '.join(languages())}.")
+    return Language(code)

@@ -1,0 +1,48 @@
+"""Sheets and slips as HTML: a plain Jinja environment for each language, usable without the web application."""
+
+from collections.abc import Mapping
+from functools import cache
+from typing import Any
+
+from jinja2 import Environment, FileSystemLoader, StrictUndefined
+
+from advisor.resources import resource_dir
+from advisor.web.language import Language, language
+
+
+@cache
+def environment(code: str) -> Environment:
+    """Return the environment of one language; overlays would leak texts from one language into another."""
+    chosen = language(code)
+    made = Environment(
+        loader=FileSystemLoader(resource_dir("templates")),
+        autoescape=True,
+        undefined=StrictUndefined,
+        trim_blocks=True,
+        lstrip_blocks=True,
+        extensions=["jinja2.ext.i18n"],
+    )
+    install(made, chosen)
+    return made
+
+
+def install(made: Environment, chosen: Language) -> None:
+    """Give an environment the texts and the number formats of a language."""
+    made.install_gettext_callables(chosen.gettext, chosen.ngettext, newstyle=True)  # type: ignore[attr-defined]  # added by the i18n extension
+    made.globals["language"] = chosen
+    made.filters["number"] = lambda value, digits=0, signed=False: number_text(
+        chosen, value, digits=digits, signed=signed
+    )
+    made.filters["percent"] = lambda value, digits=1: "–" if value is None else chosen.percent(value, digits=digits)
+    made.filters["money"] = lambda value, currency: chosen.money(value, currency=currency)
+    made.filters["day"] = lambda value: "–" if value is None else chosen.date(value)
+
+
+def number_text(chosen: Language, value: float | None, *, digits: int, signed: bool) -> str:
+    """Return a number as text, or a dash where there is none."""
+    return "–" if value is None else chosen.number(value, digits=digits, signed=signed)
+
+
+def page(template: str, values: Mapping[str, Any], *, code: str) -> str:
+    """Render one template in one language."""
+    return environment(code).get_template(template).render(**values)

@@ -1,0 +1,95 @@
+"""A comparison as a text table for a terminal and as rows of a CSV file."""
+
+import csv
+import io
+import unicodedata
+from collections.abc import Iterable
+
+from advisor.counsel.comparison import Comparison, EyeFigures
+from advisor.counsel.layout import ROWS, rows_present, two_eyes
+from advisor.web.language import Language
+
+WIDTH = 26
+CSV_HEAD = ["file", "reference", "option", "eye", "row", "value"]
+
+
+def shown_width(text: str) -> int:
+    """Return how many columns a text takes in a terminal."""
+    return sum(2 if unicodedata.east_asian_width(c) in "WF" else not unicodedata.combining(c) for c in text)
+
+
+def _padded(text: str, width: int, *, right: bool = False) -> str:
+    room = " " * max(0, width - shown_width(text))
+    return room + text if right else text + room
+
+
+def _wrapped(text: str, width: int) -> list[str]:
+    lines = [""]
+    for word in text.split():
+        if lines[-1] and shown_width(lines[-1]) + 1 + shown_width(word) > width:
+            lines.append("")
+        lines[-1] = f"{lines[-1]} {word}".strip()
+    return lines
+
+
+def text_table(comparison: Comparison, *, title: str, currency: str, language: Language) -> str:
+    """Return the comparison as text: one column an option, one row a figure, then warnings and cautions."""
+    _ = language.gettext
+    options = comparison.options
+    heads = [_wrapped(f"{option.index + 1}  {option.label}", WIDTH) for option in options]
+    rows = rows_present(comparison)
+    first = max([shown_width(_(row.label)) for row in rows] + [shown_width(_("price of the pair"))]) + 2
+
+    def line(label: str, cells: Iterable[str]) -> str:
+        return (_padded(label, first) + "  ".join(_padded(cell, WIDTH, right=True) for cell in cells)).rstrip()
+
+    lines = [title, "=" * shown_width(title)]
+    for k in range(max(len(head) for head in heads)):
+        lines.append(line("", [head[k] if k < len(head) else "" for head in heads]))
+    lines.append("-" * (first + (WIDTH + 2) * len(options) - 2))
+    lines.append(line(_("price of the pair"), [language.money(option.price, currency=currency) for option in options]))
+    lines += [line(_(row.label), [two_eyes(row, option, language) for option in options]) for row in rows]
+    lines.append("")
+    for option in options:
+        lines += [f"{_('Option')} {option.index + 1}: {refusal.text}" for refusal in option.refused]
+        lines += [f"{_('Option')} {option.index + 1}: {note.text}" for note in option.notes]
+    lines += [f"{_('Warning')}: {warning.text}" for warning in comparison.warnings]
+    if comparison.advice is not None:
+        lines += [f"{_('Caution')}: {caution.text}" for caution in comparison.advice.cautions]
+    if comparison.defaults_used:
+        lines.append(f"{_('Defaults used')}: {', '.join(comparison.defaults_used)}")
+    return "\n".join(lines).rstrip() + "\n"
+
+
+def harmless(cell: str) -> str:
+    """Return a text cell that no spreadsheet takes for a formula (OWASP, CSV injection)."""
+    return "'" + cell if cell[:1] in ("=", "+", "-", "@", "\t", "\r") else cell
+
+
+def csv_rows(comparison: Comparison, *, file: str) -> list[list[str | float]]:
+    """Return one row for each figure; numbers stay bare numbers in the units of the comparison."""
+    found: list[list[str | float]] = []
+    reference = harmless(comparison.reference or "")
+    for option in comparison.options:
+        if option.price is not None:
+            found.append([harmless(file), reference, option.index + 1, "both", "price", option.price])
+        eyes: tuple[tuple[str, EyeFigures | None], ...] = (("right", option.right), ("left", option.left))
+        for name, eye in eyes:
+            if eye is not None:
+                values = [(row.key, row.value(eye)) for row in ROWS]
+                found += [
+                    [harmless(file), reference, option.index + 1, name, key, value]
+                    for key, value in values
+                    if value is not None
+                ]
+    return found
+
+
+def csv_text(rows: Iterable[list[str | float]], *, head: bool = True) -> str:
+    """Return rows as CSV text (RFC 4180)."""
+    target = io.StringIO()
+    writer = csv.writer(target)
+    if head:
+        writer.writerow(CSV_HEAD)
+    writer.writerows(rows)
+    return target.getvalue()

@@ -1,0 +1,81 @@
+"""Writers killed at any moment: whatever was acknowledged is there, and whole."""
+
+import json
+import os
+import random
+import select
+import signal
+import sqlite3
+import time
+from pathlib import Path
+
+import pytest
+
+from advisor.records.engine import FILE_NAME
+from advisor.records.store import Store
+
+KILLS = 20
+
+pytestmark = [
+    pytest.mark.skipif(not hasattr(os, "fork"), reason="the writer is forked"),
+    # the child makes its own records and locks, and ends by being killed
+    pytest.mark.filterwarnings("ignore:.*multi-threaded, use of fork.*:DeprecationWarning"),
+]
+
+
+def text(run: int, number: int) -> str:
+    return json.dumps({"reference": f"{run}-{number}", "note": f"{run}-{number} " * 400})
+
+
+def write_until_killed(folder: Path, run: int, pipe: int) -> None:
+    store = Store.open(folder)
+    number = 0
+    while True:
+        saved = store.save_visit(
+            text(run, number), range_toml=f"run {run}", version="0", answer_json=json.dumps([run, number] * 3000)
+        )
+        os.write(pipe, f"{saved.id} {number}\n".encode())
+        number += 1
+
+
+def kill_a_writer(folder: Path, run: int, wait_s: float) -> dict[str, int]:
+    """Start a writer, kill it some moment after its first save, and return what it acknowledged."""
+    ours, theirs = os.pipe()
+    child = os.fork()
+    if child == 0:
+        try:
+            write_until_killed(folder, run, theirs)
+        finally:
+            os._exit(1)
+    os.close(theirs)
+    assert select.select([ours], [], [], 30)[0], "the writer never saved anything"
+    time.sleep(wait_s)
+    os.kill(child, signal.SIGKILL)
+    os.waitpid(child, 0)
+    with os.fdopen(ours) as pipe:
+        lines = [line.split() for line in pipe.read().split("\n") if line]
+    return {visit_id: int(number) for visit_id, number in lines}
+
+
+def test_every_acknowledged_save_survives_twenty_kills(tmp_path: Path) -> None:
+    moments = random.Random(20)  # noqa: S311 - moments, not secrets
+    Store.open(tmp_path).close()
+    acknowledged: dict[str, tuple[int, int]] = {}
+    for run in range(KILLS):
+        acks = kill_a_writer(tmp_path, run, moments.uniform(0.0, 0.03))
+        acknowledged |= {visit_id: (run, number) for visit_id, number in acks.items()}
+    assert len(acknowledged) >= KILLS
+    with Store.open(tmp_path) as store:
+        for visit_id, (run, number) in acknowledged.items():
+            saved = store.get_visit(visit_id)
+            assert saved.visit_json == text(run, number)
+            assert json.loads(saved.answer_json) == [run, number] * 3000
+    connection = sqlite3.connect(tmp_path / FILE_NAME)
+    try:
+        assert connection.execute("PRAGMA integrity_check").fetchall() == [("ok",)]
+        assert connection.execute("PRAGMA foreign_key_check").fetchall() == []
+        (stored,) = connection.execute("SELECT count(*) FROM visit").fetchone()
+    finally:
+        connection.close()
+    # A kill between the save and its acknowledgement may leave one more row each time, never fewer.
+    assert len(acknowledged) <= stored <= len(acknowledged) + KILLS
