@@ -38,7 +38,7 @@ def label_of(option: Laid, translator: Translator) -> str:
 
 
 def option_answer(
-    option: Laid, *, light: Light, scenes: Sequence[Scene], translator: Translator
+    option: Laid, *, light: Light, uncoated: Light, scenes: Sequence[Scene], translator: Translator
 ) -> Content:
     """Return one option; a refused one keeps its place and has no eyes."""
     refused = [
@@ -65,11 +65,24 @@ def option_answer(
     }
     if not refused:
         for eye in EYES:
-            content[eye] = _eye(option, eye, light=light, scenes=scenes)
+            content[eye] = _eye(option, eye, light=light, uncoated=uncoated, scenes=scenes)
     return content
 
 
-def _eye(option: Laid, _eye: Eye, *, light: Light, scenes: Sequence[Scene]) -> Content:
+def _uncoated(option: Laid, *, uncoated: Light, scenes: Sequence[Scene]) -> Content:
+    """Return what the same lens would mirror without a film."""
+    k = option.index
+    ahead = [s for s, scene in enumerate(scenes) if scene.where == "ahead"]
+    strengths = uncoated.strengths[k, ahead, PATHS.index("ahead-inner")]
+    return {
+        "hard_coat_only": option.material.hard_coat == "always",
+        "first_pass_loss": float(uncoated.first_pass_loss[k]),
+        "whole_lens": float(uncoated.whole_lens[k]),
+        "second_image": float(strengths.max()) if ahead else None,
+    }
+
+
+def _eye(option: Laid, _eye: Eye, *, light: Light, uncoated: Light, scenes: Sequence[Scene]) -> Content:
     k = option.index
     fronts, backs, both = as_made_spreads(option)
     front, back = option.front_face, option.back_face
@@ -85,6 +98,7 @@ def _eye(option: Laid, _eye: Eye, *, light: Light, scenes: Sequence[Scene]) -> C
             },
             "estimated": front.is_estimated or back.is_estimated,
         },
+        "uncoated": _uncoated(option, uncoated=uncoated, scenes=scenes),
         "luminous_transmittance": float(light.transmittance[k]),
         "residual_colour": {
             name: dict(zip(("hue", "srgb", "xy"), residual_colour(face), strict=True))

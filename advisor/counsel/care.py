@@ -23,10 +23,10 @@ class CareLine:
 
 
 CARE: tuple[CareLine, ...] = (
-    CareLine("rinse-first", "do", mark("Rinse the lenses with lukewarm water before you wipe them."), ("dust",)),
+    CareLine("rinse-first", "do", mark("Rinse the lenses with lukewarm water before you wipe them.")),
     CareLine("soap", "do", mark("Add one drop of mild liquid soap without hand cream. Then rinse again.")),
-    CareLine("soft-cloth", "do", mark("Dry them with a clean soft cloth."), ("bothered_smears",)),
-    CareLine("wash-cloth", "do", mark("Wash the cloth often. Use no softener."), ("bothered_smears",)),
+    CareLine("soft-cloth", "do", mark("Dry them with a clean soft cloth.")),
+    CareLine("wash-cloth", "do", mark("Wash the cloth often. Use no softener.")),
     CareLine("own-cleaner", "do", mark("For a spray or wipe, use only a cleaner your optician supplies.")),
     CareLine("put-down", "do", mark("Put them down with the lenses up. Use both hands to take them off. Keep them in the case.")),
     CareLine(
@@ -59,7 +59,10 @@ CARE: tuple[CareLine, ...] = (
 
 
 def care_lines(answered: Iterable[str], *, kind: Literal["do", "dont"]) -> list[Phrase]:
-    """Return the lines of one kind: those that an answer brings to the front come first, else the order of the list."""
+    """Return the lines of one kind: those that an answer brings to the front come first, else the order of the list.
+
+    The steps of cleaning (rinse, soap, dry) always keep their order.
+    """
     yes = set(answered)
     chosen = [line for line in CARE if line.kind == kind and (not line.only_for or yes & set(line.only_for))]
     chosen.sort(key=lambda line: not (yes & set(line.first_for)))

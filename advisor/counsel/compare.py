@@ -12,7 +12,7 @@ from advisor.counsel.caution_texts import CAUTION_TEXTS
 from advisor.counsel.cautions import LensLight, cautions_for
 from advisor.counsel.comparison import Comparison
 from advisor.counsel.faults import Faults
-from advisor.counsel.laid_out import Laid, Refused, lay_out, options_of
+from advisor.counsel.laid_out import Laid, Refused, lay_out, options_of, without_film
 from advisor.counsel.light import Light, light_of
 from advisor.counsel.phrases import Phrase, Translator, mark, say
 from advisor.counsel.prescription import power_along_d
@@ -35,6 +35,7 @@ class Computed:
     case: Case
     laid: tuple[Laid, ...]
     light: Light
+    uncoated: Light
     vertical_imbalance_prism_d: float
 
 
@@ -56,6 +57,7 @@ def compute(visit: Visit, stock: Range, *, today: dt.date | None = None, file: s
         case=case,
         laid=tuple(_with_tint_refusals(laid, light)),
         light=light,
+        uncoated=light_of([without_film(option, stock) for option in laid], case.scenes),
         vertical_imbalance_prism_d=vertical_imbalance(case),
     )
 
@@ -137,7 +139,9 @@ def answer_of(computed: Computed, *, translator: Translator, with_advice: bool =
         "defaults_used": used,
         "warnings": [notice(phrase, texts, translator) for phrase in warnings_of(case)],
         "options": [
-            option_answer(option, light=computed.light, scenes=case.scenes, translator=translator)
+            option_answer(
+                option, light=computed.light, uncoated=computed.uncoated, scenes=case.scenes, translator=translator
+            )
             for option in computed.laid
         ],
         "vertical_imbalance_prism_d": computed.vertical_imbalance_prism_d,

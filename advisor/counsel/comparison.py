@@ -65,6 +65,15 @@ class LuminousReflectance(_Part):
     estimated: bool = Field(default=False, description="true if a face is a supplier's declared figure")
 
 
+class Uncoated(_Part):
+    """The same lens without a film: bare, or hard coat only where the material is never sold without."""
+
+    hard_coat_only: bool
+    first_pass_loss: float
+    whole_lens: float
+    second_image: float | None = Field(default=None, description="greatest strength of ahead-inner over the scenes")
+
+
 class Colour(_Part):
     """Residual colour of a face: the hue word, a patch raised to a stated lightness, and the true chromaticity."""
 
@@ -136,6 +145,7 @@ class EyeFigures(_Part):
     weight_g: float | None = None
     blank_mm: float | None = None
     luminous_reflectance: LuminousReflectance
+    uncoated: Uncoated
     luminous_transmittance: float
     luminous_transmittance_dark: float | None = None
     residual_colour: ResidualColour

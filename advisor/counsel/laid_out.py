@@ -1,7 +1,7 @@
 """The options of a visit laid out: keys resolved to items, gaps filled, prices found, what is not sold refused."""
 
 from collections.abc import Callable, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from advisor.counsel.case import Case
 from advisor.counsel.choices import Option
@@ -53,6 +53,12 @@ class Laid:
     def made(self) -> str:
         """Whether it is cut from a round stock blank or surfaced for the frame."""
         return (self.offer.made if self.offer else None) or "surfaced"
+
+
+def without_film(option: Laid, stock: Range) -> Laid:
+    """Return the same lens without a film on either face: bare, or hard coat only where it is never sold without."""
+    plain = sold_coating(option.material, BARE, stock)
+    return replace(option, front=plain, back=plain)
 
 
 NOTE_TEXTS: dict[str, str] = {

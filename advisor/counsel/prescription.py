@@ -62,9 +62,7 @@ def normal_axis(axis_deg: float) -> float:
 
 def transposed(power: SphereCylinder) -> SphereCylinder:
     """Write the same power with the cylinder's other sign."""
-    return SphereCylinder(
-        power.sphere_d + power.cylinder_d, -power.cylinder_d, normal_axis(power.axis_deg + 90.0)
-    )
+    return SphereCylinder(power.sphere_d + power.cylinder_d, -power.cylinder_d, normal_axis(power.axis_deg + 90.0))
 
 
 def in_minus_cylinder(power: SphereCylinder) -> SphereCylinder:
@@ -96,9 +94,7 @@ def principal_meridians(power: SphereCylinder) -> tuple[MeridianPower, MeridianP
     powers, directions = optics_meridians.principal_meridians(
         power.sphere_d, cylinder_d=power.cylinder_d, axis_deg=power.axis_deg
     )
-    first, second = (
-        MeridianPower(float(p), normal_axis(float(d))) for p, d in zip(powers, directions, strict=True)
-    )
+    first, second = (MeridianPower(float(p), normal_axis(float(d))) for p, d in zip(powers, directions, strict=True))
     return first, second
 
 

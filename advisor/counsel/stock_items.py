@@ -23,6 +23,7 @@ from advisor.counsel.fields import (
 from advisor.counsel.prescription import DesignKind
 from advisor.counsel.spectrum_file import read_spectrum_file
 from advisor.optics.media import FILM_NAMES, UnknownFilm
+from advisor.optics.spectrum_input import SpectrumFault, measured_spectrum
 
 IN_PLACE = "in-place"  # the key of an item that a visit gives in place; items of a range carry their own
 
@@ -119,7 +120,8 @@ def _known_film(name: str) -> str:
 
 
 FILM_OR_INDEX = Annotated[
-    Annotated[Key, AfterValidator(_known_film), tagged("film")] | Annotated[Number[Annotated[float, Field(ge=1, le=5)]], tagged("index")],
+    Annotated[Key, AfterValidator(_known_film), tagged("film")]
+    | Annotated[Number[Annotated[float, Field(ge=1, le=5)]], tagged("index")],
     alternatives(lambda v: {"key": "film", "number": "index"}.get(by_shape(v) or ""), code="film-or-index"),
 ]
 Layer = tuple[FILM_OR_INDEX, Number[Annotated[float, Field(ge=0, le=20_000)]]]
@@ -149,6 +151,16 @@ class Coating(Item):
         Annotated[tuple[SpectrumRow, ...], Field(max_length=20_000)] | None,
         BeforeValidator(_spectrum_rows, json_schema_input_type=str | list[tuple[float, float]] | None),
     ] = None
+
+    @field_validator("spectrum")
+    @classmethod
+    def _usable(cls, rows: tuple[SpectrumRow, ...] | None) -> tuple[SpectrumRow, ...] | None:
+        if rows is not None:
+            try:
+                measured_spectrum(rows)
+            except SpectrumFault as error:
+                raise refusal("spectrum-refused", {"detail": str(error)}) from error
+        return rows
 
     @model_validator(mode="after")
     def _one_description(self) -> Self:

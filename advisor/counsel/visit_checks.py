@@ -79,7 +79,9 @@ def visit_faults(visit: Visit, *, stock: Range, file: str = "") -> list[Fault]:
     named += [(f"scenes[{place}]", key, keys_of(stock.scene)) for place, key in enumerate(visit.scenes or ())]
     words = visit.daily_life.cleaning if visit.daily_life else None
     if words and stock.shop.cleaning is not None:
-        named += [(f"daily_life.cleaning[{place}]", word, list(stock.shop.cleaning)) for place, word in enumerate(words)]
+        named += [
+            (f"daily_life.cleaning[{place}]", word, list(stock.shop.cleaning)) for place, word in enumerate(words)
+        ]
     faults += [
         unknown_key(ref, keys=keys, file=file, field=place)
         for place, ref, keys in named

@@ -19,21 +19,21 @@ HUE_WORDS: tuple[HueWord, ...] = get_args(HueWord)
 DISPLAYED_Y = 0.4  # a modelling choice: light enough to tell hues apart, dark enough for a dark ink border
 NEUTRAL_BELOW_CHROMA = 8.0  # CIELAB chroma at the displayed lightness; a modelling choice
 
-# CIELAB hue angle at which each word begins; it holds up to the next. A modelling choice, laid so that the primary and
-# secondary colours of sRGB carry their own names. "pink" runs through 0.
+# CIELAB hue angle, of the patch as shown, at which each word begins; it holds up to the next, and "pink" runs through
+# 0. A modelling choice, laid by how named colours look at that lightness. It is taken of the patch and not of the raw
+# chromaticity because CIELAB bends in the blue: there a deep blue and a pale lavender share one angle.
 HUE_BANDS_DEG: tuple[tuple[float, HueWord], ...] = (
     (15.0, "red"),
     (55.0, "gold"),
     (105.0, "green"),
     (165.0, "teal"),
     (225.0, "blue"),
-    (307.0, "purple"),
+    (300.0, "purple"),
     (340.0, "pink"),
 )
 
-# IEC 61966-2-1: linear sRGB from XYZ of D65 white (Y = 1), and the white point the standard states.
+# IEC 61966-2-1: linear sRGB from XYZ of D65 white (Y = 1).
 _SRGB_FROM_XYZ = np.array([[3.2406, -1.5372, -0.4986], [-0.9689, 1.8758, 0.0415], [0.0557, -0.2040, 1.0570]])
-_SRGB_WHITE_XY = np.array([0.3127, 0.3290])
 
 
 def xyz(spectrum: ArrayLike, *, illuminant: IlluminantName = "D65") -> NDArray[np.float64]:
@@ -138,6 +138,31 @@ def displayed_xyz(xyz_values: ArrayLike) -> NDArray[np.float64]:
     return result
 
 
+def shown_xyz(xyz_values: ArrayLike) -> NDArray[np.float64]:
+    """The displayed colour brought inside what a screen can show.
+
+    A colour outside sRGB is moved along the straight line towards white of the same luminance, just far enough; its hue
+    stays nearly, its saturation falls.
+
+    Parameters
+    ----------
+    xyz_values
+        (..., 3) under D65.
+
+    Returns
+    -------
+    (..., 3) with Y = 100 `DISPLAYED_Y`.
+    """
+    displayed, grey = displayed_xyz(xyz_values), white() * DISPLAYED_Y
+    level = _linear_srgb(grey)
+    step = _linear_srgb(displayed) - level
+    away = np.where(step == 0.0, 1.0, step)
+    room = np.where(step > 0.0, (1.0 - level) / away, np.where(step < 0.0, -level / away, np.inf))
+    share = np.minimum(1.0, room.min(axis=-1, keepdims=True))
+    shown: NDArray[np.float64] = grey + share * (displayed - grey)
+    return shown
+
+
 def hue_words(xyz_values: ArrayLike) -> NDArray[np.str_]:
     """Plain hue words of many reflections, by the one table `HUE_BANDS_DEG`.
 
@@ -148,10 +173,10 @@ def hue_words(xyz_values: ArrayLike) -> NDArray[np.str_]:
 
     Returns
     -------
-    Array of words in the leading shape. "neutral" where the CIELAB chroma at the displayed lightness is below
+    Array of words in the leading shape: of the colour as the patch shows it. "neutral" where its CIELAB chroma is below
     `NEUTRAL_BELOW_CHROMA`, and where there is no light.
     """
-    lab = cielab(displayed_xyz(xyz_values))
+    lab = cielab(shown_xyz(xyz_values))
     chroma = np.hypot(lab[..., 1], lab[..., 2])
     hue_deg = np.degrees(np.arctan2(lab[..., 2], lab[..., 1])) % 360.0
     starts = np.array([start for start, _ in HUE_BANDS_DEG])
@@ -168,10 +193,7 @@ def hue_word(xyz_values: ArrayLike) -> HueWord:
 
 
 def displayed_srgb(xyz_values: ArrayLike) -> NDArray[np.float64]:
-    """Encoded sRGB of the chromaticity at the displayed lightness, brought inside what a screen can show.
-
-    A colour outside sRGB is moved along the straight line towards white of the same luminance, just far enough; its hue
-    stays nearly, its saturation falls.
+    """Encoded sRGB of the colour as shown, see :func:`shown_xyz`.
 
     Parameters
     ----------
@@ -186,13 +208,7 @@ def displayed_srgb(xyz_values: ArrayLike) -> NDArray[np.float64]:
     ----------
     IEC 61966-2-1:1999, with the matrix as the standard prints it (four decimals).
     """
-    linear = displayed_xyz(xyz_values) / 100.0 @ _SRGB_FROM_XYZ.T
-    grey = white() * DISPLAYED_Y / 100.0 @ _SRGB_FROM_XYZ.T
-    step = linear - grey
-    away = np.where(step == 0.0, 1.0, step)
-    room = np.where(step > 0.0, (1.0 - grey) / away, np.where(step < 0.0, -grey / away, np.inf))
-    share = np.minimum(1.0, room.min(axis=-1, keepdims=True))
-    return _encode_srgb(np.clip(grey + share * step, 0.0, 1.0))
+    return _encode_srgb(np.clip(_linear_srgb(shown_xyz(xyz_values)), 0.0, 1.0))
 
 
 def display_srgb(xyz_values: ArrayLike) -> str:
@@ -205,7 +221,7 @@ def display_srgb(xyz_values: ArrayLike) -> str:
 
 
 def hue_shift(spectra: ArrayLike) -> NDArray[np.float64]:
-    """Distance in the CIELAB a*b* plane of each spectrum from the first, both at the displayed lightness.
+    """Distance in the CIELAB a*b* plane of each spectrum from the first, both as the patch shows them.
 
     Parameters
     ----------
@@ -216,10 +232,16 @@ def hue_shift(spectra: ArrayLike) -> NDArray[np.float64]:
     -------
     (angles,), 0 for the first. Below about 10 the shift is hard to name (a modelling choice).
     """
-    lab = cielab(displayed_xyz(xyz(spectra)))
+    lab = cielab(shown_xyz(xyz(spectra)))
     plane = lab[..., 1:]
     shift: NDArray[np.float64] = np.hypot(plane[..., 0] - plane[0, 0], plane[..., 1] - plane[0, 1])
     return shift
+
+
+def _linear_srgb(xyz_values: NDArray[np.float64]) -> NDArray[np.float64]:
+    """Linear sRGB of XYZ with Y = 100 for white; outside 0 to 1 where the screen cannot show it."""
+    linear: NDArray[np.float64] = xyz_values / 100.0 @ _SRGB_FROM_XYZ.T
+    return linear
 
 
 def _encode_srgb(linear: NDArray[np.float64]) -> NDArray[np.float64]:

@@ -37,7 +37,8 @@ class Language:
         from babel.support import NullTranslations, Translations
 
         self.language = code
-        self.locale = Locale.parse(code)
+        # English dates and money are written the British way; the month is always a word, so no date can be misread.
+        self.locale = Locale.parse("en_GB" if code == SOURCE_LANGUAGE else code, sep="_")
         self.catalogue: NullTranslations = (
             NullTranslations() if code == SOURCE_LANGUAGE else Translations.load(str(TRANSLATIONS), [code], "messages")
         )

@@ -87,7 +87,7 @@ def test_spread_keeps_the_axes_behind_the_samples() -> None:
 
 
 def test_hue_shares_count_the_words() -> None:
-    rgb = [(255, 0, 0), (0, 0, 255), (0, 0, 255), (128, 128, 128)]  # CSS red, blue, blue, gray
+    rgb = [(255, 0, 0), (65, 105, 225), (65, 105, 225), (128, 128, 128)]  # CSS red, royalblue twice, gray
     shares = hue_shares(np.stack([colour.sRGB_to_XYZ(np.array(one) / 255.0) for one in rgb]))
     assert shares == {"blue": 0.5, "neutral": 0.25, "red": 0.25}
     assert next(iter(shares)) == "blue"

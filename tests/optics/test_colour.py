@@ -113,8 +113,8 @@ NAMED = {
     "gold": (255, 215, 0),
     "green": (0, 128, 0),
     "teal": (0, 128, 128),
-    "blue": (0, 0, 255),
-    "purple": (128, 0, 128),
+    "blue": (65, 105, 225),  # royalblue
+    "purple": (147, 112, 219),  # mediumpurple
     "pink": (255, 105, 180),  # hotpink
     "neutral": (128, 128, 128),  # gray
 }
@@ -126,11 +126,25 @@ def test_a_colour_that_has_a_name_gets_it(word: str) -> None:
 
 
 @pytest.mark.parametrize(
-    ("rgb", "word"), [((135, 206, 235), "blue"), ((255, 165, 0), "gold"), ((34, 139, 34), "green")]
+    ("name", "rgb", "word"),
+    [
+        ("blue", (0, 0, 255), "blue"),
+        ("cornflowerblue", (100, 149, 237), "blue"),
+        ("skyblue", (135, 206, 235), "blue"),
+        ("purple", (128, 0, 128), "purple"),
+        ("blueviolet", (138, 43, 226), "purple"),
+        ("plum", (221, 160, 221), "purple"),
+        ("deeppink", (255, 20, 147), "pink"),
+        ("crimson", (220, 20, 60), "red"),
+        ("orange", (255, 165, 0), "gold"),
+        ("yellow", (255, 255, 0), "gold"),
+        ("forestgreen", (34, 139, 34), "green"),
+        ("cyan", (0, 255, 255), "teal"),
+    ],
 )
-def test_more_names_fall_where_people_put_them(rgb: tuple[int, int, int], word: str) -> None:
-    # skyblue, orange, forestgreen of CSS Color 4
-    assert ours.hue_word(100.0 * colour.sRGB_to_XYZ(np.array(rgb) / 255.0)) == word
+def test_more_names_fall_where_people_put_them(name: str, rgb: tuple[int, int, int], word: str) -> None:
+    # CSS Color 4
+    assert ours.hue_word(100.0 * colour.sRGB_to_XYZ(np.array(rgb) / 255.0)) == word, name
 
 
 @given(st.floats(0.001, 1.0), st.floats(0.0, 6.28))
@@ -165,10 +179,12 @@ def test_no_light_is_neutral_grey_and_never_nan() -> None:
 
 
 def test_the_shift_with_the_angle_is_measured_from_the_first() -> None:
-    spectra = np.stack([film_like(), film_like(), film_like(1.5)])
+    pale = 0.02 + np.stack([film_like(), film_like(), film_like(1.5)])  # inside sRGB, so shown as it is
+    spectra = pale * np.array([[1.0], [0.5], [1.0]])
     shift = ours.hue_shift(spectra)
     np.testing.assert_allclose(shift[:2], 0.0, atol=1e-12)
-    lab = colour.XYZ_to_Lab(ours.displayed_xyz(ours.xyz(spectra)) / 100.0, ours.chromaticity(ours.white()))
+    values = ours.xyz(spectra)
+    lab = colour.XYZ_to_Lab(values / values[:, 1:2] * ours.DISPLAYED_Y, ours.chromaticity(ours.white()))
     np.testing.assert_allclose(shift[2], np.hypot(*(lab[2] - lab[0])[1:]), rtol=1e-10)
 
 

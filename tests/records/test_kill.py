@@ -11,10 +11,8 @@ from pathlib import Path
 
 import pytest
 
-from advisor.records.engine import FILE_NAME
+from advisor.records.location import FILE_NAME
 from advisor.records.store import Store
-
-KILLS = 20
 
 pytestmark = [
     pytest.mark.skipif(not hasattr(os, "fork"), reason="the writer is forked"),
@@ -24,7 +22,8 @@ pytestmark = [
 
 
 def text(run: int, number: int) -> str:
-    return json.dumps({"reference": f"{run}-{number}", "note": f"{run}-{number} " * 400})
+    """Return a visit of many pages, so that a kill finds many moments inside a write."""
+    return json.dumps({"reference": f"{run}-{number}", "note": f"{run}-{number} " * 60_000})
 
 
 def write_until_killed(folder: Path, run: int, pipe: int) -> None:
@@ -57,14 +56,15 @@ def kill_a_writer(folder: Path, run: int, wait_s: float) -> dict[str, int]:
     return {visit_id: int(number) for visit_id, number in lines}
 
 
-def test_every_acknowledged_save_survives_twenty_kills(tmp_path: Path) -> None:
+@pytest.mark.parametrize("kills", [20, pytest.param(600, marks=pytest.mark.soak)])
+def test_every_acknowledged_save_survives_the_kills(tmp_path: Path, kills: int) -> None:
     moments = random.Random(20)  # noqa: S311 - moments, not secrets
     Store.open(tmp_path).close()
     acknowledged: dict[str, tuple[int, int]] = {}
-    for run in range(KILLS):
+    for run in range(kills):
         acks = kill_a_writer(tmp_path, run, moments.uniform(0.0, 0.03))
         acknowledged |= {visit_id: (run, number) for visit_id, number in acks.items()}
-    assert len(acknowledged) >= KILLS
+    assert len(acknowledged) >= kills
     with Store.open(tmp_path) as store:
         for visit_id, (run, number) in acknowledged.items():
             saved = store.get_visit(visit_id)
@@ -78,4 +78,4 @@ def test_every_acknowledged_save_survives_twenty_kills(tmp_path: Path) -> None:
     finally:
         connection.close()
     # A kill between the save and its acknowledgement may leave one more row each time, never fewer.
-    assert len(acknowledged) <= stored <= len(acknowledged) + KILLS
+    assert len(acknowledged) <= stored <= len(acknowledged) + kills

@@ -11,8 +11,8 @@ from sqlalchemy.dialects import postgresql
 from sqlalchemy.schema import CreateIndex, CreateTable
 
 from advisor.records import tables
-from advisor.records.engine import FILE_NAME, make_private, sqlite_engine
-from advisor.records.location import data_folder
+from advisor.records.engine import make_private, sqlite_engine
+from advisor.records.location import FILE_NAME, data_folder
 from advisor.records.schema import MIGRATIONS, REVISIONS, stored_revision, upgrade
 from advisor.records.store import Store
 from advisor.records.trouble import StoreNewer

@@ -15,7 +15,7 @@ import pytest
 
 from advisor.records import engine, trouble
 from advisor.records.drafts import DraftChanged, DraftMissing
-from advisor.records.engine import FILE_NAME
+from advisor.records.location import FILE_NAME
 from advisor.records.store import Store
 from advisor.records.visits import SavedVisit, VisitChanged, VisitMissing
 

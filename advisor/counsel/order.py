@@ -1,0 +1,141 @@
+"""The order: what the supplier must know, and why it is not ready while something is missing.
+
+Nothing on an order may be a guess: a figure that a default stands in for, or a safety question that was never asked,
+holds it back.
+"""
+
+from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import dataclass
+
+from advisor.counsel.case import VERTEX_MATTERS_FROM_D, Case
+from advisor.counsel.compare import Computed
+from advisor.counsel.phrases import Phrase, Translator, mark, say
+from advisor.counsel.prescription import EYES, Eye, SphereCylinder, written_prism
+from advisor.errors import TwolightError
+
+SAFETY_QUESTIONS = ("impact", "one_good_eye", "driving")
+
+REASONS: dict[str, str] = {
+    "missing-pd": mark("The PD of the %(eye)s eye is a default; measure it."),
+    "missing-height": mark("The fitting height of the %(eye)s eye is a default; measure it."),
+    "missing-rim": mark("The kind of rim is not given."),
+    "missing-box": mark("The box of the frame (a, b, DBL) is not given in full."),
+    "missing-tested-vertex": mark("The power reaches 5.00 and the tested vertex distance is not given; ask the prescriber."),
+    "missing-fitted-vertex": mark("The power reaches 5.00 and the fitted vertex distance is not measured."),
+    "not-asked-impact": mark("Nobody asked whether anything could knock the glasses."),
+    "not-asked-one_good_eye": mark("Nobody asked whether one eye is much weaker."),
+    "not-asked-driving": mark("Nobody asked whether the wearer drives."),
+    "not-asked-child": mark("Neither the age nor whether the wearer is a child is known."),
+    "refused": mark("This option cannot be made: %(reason)s"),
+}
+EYE_WORDS: Mapping[Eye, str] = {"right": mark("right"), "left": mark("left")}
+
+
+class NotReady(TwolightError):
+    """An order that must wait, with every reason."""
+
+    def __init__(self, reasons: Sequence[Phrase], *, translator: Translator) -> None:
+        self.reasons = tuple(reasons)
+        self.lines = [say(reason, REASONS, translator) for reason in reasons]
+        head = translator.gettext(mark("Not ready to order:"))
+        super().__init__("\n".join([head, *(f"- {line}" for line in self.lines)]))
+
+
+@dataclass(frozen=True)
+class EyeOrder:
+    """One lens as ordered. Powers in D, lengths in mm; ``least_thickness_mm`` is the material's least centre."""
+
+    eye: Eye
+    written: SphereCylinder
+    add_d: float | None
+    made: SphereCylinder
+    prism: tuple[tuple[float, str], ...]
+    balance: bool
+    pd_mm: float
+    near_pd_mm: float | None
+    height_mm: float
+    centre_mm: float | None
+
+
+@dataclass(frozen=True)
+class Order:
+    """Everything on the slip."""
+
+    eyes: tuple[EyeOrder, EyeOrder]
+    least_centre_mm: float | None
+    least_edge_mm: float
+
+
+def missing(computed: Computed) -> list[Phrase]:
+    """Return every reason why nothing of this visit can be ordered yet."""
+    return list(_missing_figures(computed.case)) + list(_missing_answers(computed.case))
+
+
+def _missing_figures(case: Case) -> Iterable[Phrase]:
+    used = case.defaults_used
+    for eye in EYES:
+        if f"fitting.{eye}.pd_mm" in used:
+            yield Phrase("missing-pd", {"eye": EYE_WORDS[eye]})
+    for eye in EYES:
+        if f"fitting.{eye}.height_mm" in used:
+            yield Phrase("missing-height", {"eye": EYE_WORDS[eye]})
+    if "frame.rim" in used:
+        yield Phrase("missing-rim")
+    if {"frame.a_mm", "frame.b_mm", "frame.dbl_mm"} & set(used):
+        yield Phrase("missing-box")
+    if case.strongest_d >= VERTEX_MATTERS_FROM_D:
+        if "prescription.vertex_mm" in used:
+            yield Phrase("missing-tested-vertex")
+        if "fitting.vertex_mm" in used:
+            yield Phrase("missing-fitted-vertex")
+
+
+def _missing_answers(case: Case) -> Iterable[Phrase]:
+    for question in SAFETY_QUESTIONS:
+        if case.life(question) == "not-asked":
+            yield Phrase(f"not-asked-{question}")
+    if case.life("child") == "not-asked" and case.youngest_age is None:
+        yield Phrase("not-asked-child")
+
+
+def order_of(computed: Computed, *, index: int, translator: Translator) -> Order:
+    """Return the order of one option.
+
+    Raises
+    ------
+    NotReady
+        With every reason, while something needed is missing or the option cannot be made.
+    """
+    from advisor.counsel.laid_out import REFUSAL_TEXTS
+
+    laid = computed.laid[index]
+    reasons = missing(computed)
+    reasons += [Phrase("refused", {"reason": say(r.phrase, REFUSAL_TEXTS, translator)}) for r in laid.refused]
+    if reasons:
+        raise NotReady(reasons, translator=translator)
+    case = computed.case
+    right, left = (_eye_order(case, eye, made=laid.powers[k], k=k) for k, eye in enumerate(EYES))
+    child = case.is_child and laid.material.least_centre_child_mm is not None
+    least = laid.material.least_centre_child_mm if child else laid.material.least_centre_mm
+    return Order(eyes=(right, left), least_centre_mm=least, least_edge_mm=LEAST_EDGE_MM[case.rim])
+
+
+LEAST_EDGE_MM: Mapping[str, float] = {"full": 1.0, "grooved": 1.8, "drilled": 1.8}  # common practice, no source
+
+
+def _eye_order(case: Case, eye: Eye, *, made: SphereCylinder, k: int) -> EyeOrder:
+    written = case.eye(eye)
+    fitting = case.visit.fitting
+    side = None if fitting is None else (fitting.right if eye == "right" else fitting.left)
+    return EyeOrder(
+        eye=eye,
+        written=written.power,
+        add_d=written.add,
+        made=made,
+        prism=tuple(written_prism(written.prism_vector)),
+        balance=bool(written.balance),
+        pd_mm=float(case.pd_mm[k]),
+        near_pd_mm=None if side is None else side.near_pd_mm,
+        height_mm=float(case.height_mm[k]),
+        centre_mm=None,
+    )

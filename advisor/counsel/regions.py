@@ -1,0 +1,31 @@
+"""What differs by region: paper, the emergency wording. Local rules always come before anything said here.
+
+The keys are the words a range file may give as ``shop.region``; an unknown one is read as international.
+"""
+
+from dataclasses import dataclass
+from typing import Literal
+
+from advisor.counsel.phrases import mark
+
+
+@dataclass(frozen=True)
+class Region:
+    """One region's paper and the words for urgent help."""
+
+    key: str
+    paper: Literal["A4", "Letter"]
+    urgent_help: str
+
+
+REGIONS: dict[str, Region] = {
+    "international": Region("international", "A4", mark("Call an eye doctor or your local emergency number.")),
+    "eu": Region("eu", "A4", mark("Call an eye doctor or 112.")),
+    "uk": Region("uk", "A4", mark("Call your optician, 111, or 999 in an emergency.")),
+    "us": Region("us", "Letter", mark("Call an eye doctor, or 911 in an emergency.")),
+}
+
+
+def region_of(key: str | None) -> Region:
+    """Return the region of a key; none or an unknown one is international."""
+    return REGIONS.get(key or "", REGIONS["international"])

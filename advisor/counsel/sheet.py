@@ -1,0 +1,241 @@
+"""What a wearer's sheet says: blocks of phrases with figures, every figure taken from the comparison."""
+
+from collections.abc import Iterable, Mapping
+from dataclasses import dataclass
+from typing import Literal
+
+from advisor.counsel.care import CARE_TEXTS, care_lines
+from advisor.counsel.caution_texts import CAUTION_TEXTS
+from advisor.counsel.cautions import cautions_for
+from advisor.counsel.comparison import Comparison, EyeFigures, OptionFigures
+from advisor.counsel.compare import Computed, lens_light
+from advisor.counsel.laid_out import Laid
+from advisor.counsel.phrases import Figure, Phrase, mark
+from advisor.counsel.sheet_texts import HEADINGS, LINES
+from advisor.errors import TwolightError
+
+Kind = Literal["lines", "do", "dont", "urgent"]
+LEAST_COLOURED = 0.004  # luminous reflectance of a face below which its colour is too faint to name
+NOT_FOR = (
+    "not-for-driving-tint",
+    "not-for-night-driving-tint",
+    "not-for-driving-design",
+    "no-near",
+    "not-eye-protection",
+)
+SAID_ELSEWHERE = ("coating-adds-no-strength", "not-promise-none")
+
+SHEET_TEXTS: Mapping[str, str] = LINES | CARE_TEXTS | {key: words.sheet for key, words in CAUTION_TEXTS.items()}
+
+
+class NoSuchOption(TwolightError):
+    """An option that is not laid out, or cannot be made, was asked for on paper."""
+
+
+@dataclass(frozen=True)
+class Block:
+    """One part of a sheet: a heading and its lines."""
+
+    key: str
+    kind: Kind
+    lines: tuple[Phrase, ...]
+
+    @property
+    def heading(self) -> str:
+        """The heading, in English, marked for translation."""
+        return HEADINGS[self.key]
+
+
+@dataclass(frozen=True)
+class Sheet:
+    """Everything a wearer's sheet says; the template only lays it out."""
+
+    name: str | None
+    reference: str | None
+    option: OptionFigures
+    before: tuple[Block, ...]
+    urgent: Block
+    bars: tuple[tuple[str, float], ...]
+
+
+def choose(computed: Computed, *, number: int | None) -> int:
+    """Return the index of the option a sheet or slip is about.
+
+    ``number`` counts from 1. Left out: what was ordered, else the first option that can be made and is not the
+    baseline, else the first that can be made.
+
+    Raises
+    ------
+    NoSuchOption
+        If it is not laid out or cannot be made.
+    """
+    laid, visit = computed.laid, computed.case.visit
+    if number is not None:
+        if number > len(laid):
+            raise NoSuchOption(f"There is no option {number}; {len(laid)} are laid out.")
+        index: int | None = number - 1
+    else:
+        index = visit.ordered
+    makeable = [option.index for option in laid if not option.refused]
+    if index is None:
+        others = [k for k in makeable if k != (visit.baseline or 0)]
+        index = (others or makeable or [None])[0]
+    if index is None or index not in makeable:
+        raise NoSuchOption("This option cannot be made, so there is nothing to print; choose another one.")
+    return index
+
+
+def one_part_in(strength: float) -> int:
+    """Return n for "1 part in n", to two figures: nobody can use more."""
+    if strength <= 0.0:
+        return 10**9
+    parts = 1.0 / strength
+    step = 10 ** max(0, len(str(int(parts))) - 2)
+    return int(round(parts / step) * step)
+
+
+def wearer_sheet(computed: Computed, answer: Comparison, *, index: int, price: str | None) -> Sheet:
+    """Return the sheet of one option; ``price`` is the pair's price as the language writes it."""
+    laid, option = computed.laid[index], answer.options[index]
+    if option.right is None or option.left is None:
+        raise NoSuchOption("This option cannot be made, so there is nothing to print; choose another one.")
+    visit = computed.case.visit
+    applied = cautions_for(computed.case, laid, light=lens_light(computed, index))
+    cautions = [Phrase(a.key, a.figures) for a in applied if CAUTION_TEXTS[a.key].sheet]
+    blocks = [
+        Block("for", "lines", tuple(_purpose(computed, laid))),
+        Block("not-for", "dont", tuple(c for c in cautions if c.code in NOT_FOR)),
+        Block("chosen", "lines", tuple(_chosen(laid, price))),
+        Block("why", "lines", tuple(_facts(option.right, laid))),
+        Block("coating", "lines", tuple(_coating(option.right, laid))),
+        Block("do", "do", tuple(care_lines(computed.case.yes_answers(), kind="do"))),
+        Block("dont", "dont", tuple(care_lines(computed.case.yes_answers(), kind="dont"))),
+        Block("first-days", "lines", tuple(_first_days(computed, laid))),
+        Block("come-back", "lines", _phrases("back-fit", "back-unclear", "back-second", "back-damage", "back-soon")),
+        Block("notes", "lines", tuple(c for c in cautions if c.code not in (*NOT_FOR, *SAID_ELSEWHERE))),
+    ]
+    return Sheet(
+        name=visit.wearer.name if visit.wearer else None,
+        reference=visit.reference,
+        option=option,
+        before=tuple(block for block in blocks if block.lines),
+        urgent=Block("today", "urgent", _phrases(*(key for key in LINES if key.startswith("today-")))),
+        bars=tuple(_bars(option.right)),
+    )
+
+
+def _phrases(*keys: str) -> tuple[Phrase, ...]:
+    return tuple(Phrase(key) for key in keys)
+
+
+def _purpose(computed: Computed, laid: Laid) -> Iterable[Phrase]:
+    kind, wanted = laid.design.kind, computed.case.visit.prescription.for_
+    if kind == "single-vision":
+        if wanted == "near":
+            yield Phrase("for-near")
+        elif wanted == "intermediate":
+            yield Phrase("for-desk")
+        else:
+            yield Phrase("for-far" if computed.case.has_add or wanted == "distance" else "for-all")
+    else:
+        keys = {
+            "reading": "for-near",
+            "occupational": "for-desk",
+            "bifocal": "for-far-and-near-line",
+            "progressive": "for-far-to-near",
+        }
+        yield Phrase(keys[kind])
+    yield Phrase("for-wear")
+
+
+def _chosen(laid: Laid, price: str | None) -> Iterable[Phrase]:
+    yield Phrase("chosen-lens", {"material": laid.material.label or laid.material.key})
+    front, back = (coating.label or coating.key for coating in (laid.front, laid.back))
+    if front == back:
+        yield Phrase("chosen-coating", {"coating": front})
+    else:
+        yield Phrase("chosen-coating-front", {"coating": front})
+        yield Phrase("chosen-coating-back", {"coating": back})
+    if laid.tint is not None:
+        yield Phrase("chosen-tint", {"tint": laid.tint.label or f"{100 * laid.tint.luminous_transmittance:.0f} %"})
+    if price is not None:
+        yield Phrase("chosen-price", {"price": price})
+
+
+def _facts(eye: EyeFigures, laid: Laid) -> Iterable[Phrase]:
+    """Tell the figures of the right lens; both lenses of a pair have the same faces."""
+    mirrors = eye.luminous_reflectance
+    coated = laid.front_face.has_film or laid.back_face.has_film
+    if not coated:
+        yield Phrase("mirrors-uncoated", {"percent": 100 * mirrors.first_pass_loss})
+    else:
+        key = "mirrors-hard-coat" if eye.uncoated.hard_coat_only else "mirrors-bare"
+        yield Phrase(key, {"bare_percent": 100 * eye.uncoated.first_pass_loss})
+        spread = mirrors.as_made.first_pass_loss
+        if spread is None:
+            yield Phrase("mirrors-coated-stated", {"percent": 100 * mirrors.first_pass_loss})
+        else:
+            yield Phrase("mirrors-coated", {"low_percent": 100 * spread[0], "high_percent": 100 * spread[2]})
+    if laid.tint is not None:
+        yield Phrase("passes", {"luminous_percent": 100 * eye.luminous_transmittance})
+    strengths = [ghost.strength for ghost in eye.ghosts if ghost.path == "ahead-inner"]
+    if strengths:
+        yield Phrase("second-image")
+        yield Phrase("second-image-now", {"parts": one_part_in(max(strengths))})
+        if coated and eye.uncoated.second_image is not None:
+            yield Phrase("second-image-bare", {"bare_parts": one_part_in(eye.uncoated.second_image)})
+
+
+def _coating(eye: EyeFigures, laid: Laid) -> Iterable[Phrase]:
+    if not (laid.front_face.has_film or laid.back_face.has_film):
+        yield Phrase("coating-none")
+        return
+    yield from _phrases("coating-does", "coating-does-not", "coating-glare", "coating-smears")
+    hue = eye.residual_colour.front.hue
+    if laid.front_face.has_film and eye.luminous_reflectance.front >= LEAST_COLOURED and hue != "neutral":
+        yield Phrase("coating-colour", {"hue": HUE_WORDS[hue]})
+    else:
+        yield Phrase("coating-colour-varies")
+
+
+HUE_WORDS: Mapping[str, str] = {
+    "neutral": mark("neutral"),
+    "red": mark("red"),
+    "gold": mark("gold"),
+    "green": mark("green"),
+    "teal": mark("teal"),
+    "blue": mark("blue"),
+    "purple": mark("purple"),
+    "pink": mark("pink"),
+}
+
+
+def _first_days(computed: Computed, laid: Laid) -> Iterable[Phrase]:
+    yield Phrase("first-wear")
+    yield Phrase("first-size")
+    if laid.design.kind in ("bifocal", "progressive"):
+        yield Phrase("first-multifocal")
+    if computed.case.life("driving") != "never" and laid.design.kind not in ("reading", "occupational"):
+        yield Phrase("first-drive")
+    yield Phrase("first-keep-old")
+
+
+def _bars(eye: EyeFigures) -> Iterable[tuple[str, float]]:
+    """Return the shares of light mirrored away that are drawn as bars of one scale."""
+    spread = eye.luminous_reflectance.as_made.first_pass_loss
+    yield (BAR_WITHOUT, eye.uncoated.first_pass_loss)
+    yield (BAR_WITH, eye.luminous_reflectance.first_pass_loss if spread is None else spread[2])
+
+
+BAR_WITHOUT = mark("Mirrored away without a coating")
+BAR_WITH = mark("Mirrored away with yours")
+
+
+def figures_of(sheet: Sheet) -> Mapping[str, Figure]:
+    """Return every figure the sheet prints, by ``phrase code.figure name``."""
+    return {
+        f"{line.code}.{name}": value
+        for block in sheet.before
+        for line in block.lines
+        for name, value in line.figures.items()
+    }

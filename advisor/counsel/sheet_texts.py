@@ -1,0 +1,74 @@
+"""Every line a wearer's sheet may hold: plain words, short sentences, "you may" and never "you will"."""
+
+from advisor.counsel.phrases import mark
+
+HEADINGS: dict[str, str] = {
+    "for": mark("What these glasses are for"),
+    "not-for": mark("What they are not for"),
+    "chosen": mark("What you chose"),
+    "why": mark("What that means for you"),
+    "coating": mark("What the coating does and does not do"),
+    "do": mark("How to clean and keep them"),
+    "dont": mark("What harms them"),
+    "first-days": mark("The first days"),
+    "come-back": mark("When to come back to us"),
+    "notes": mark("Please note"),
+    "today": mark("See an eye doctor today if you have"),
+}
+
+LINES: dict[str, str] = {
+    # what they are for
+    "for-all": mark("They are made for all distances."),
+    "for-far": mark("They are made for looking far away."),
+    "for-near": mark("They are made for reading and near work."),
+    "for-desk": mark("They are made for the desk and the screen."),
+    "for-far-and-near-line": mark("They are made for far and near. Look ahead for far. Look down through the lower part to read."),
+    "for-far-to-near": mark("They are made for far, screen and near. Look ahead for far. Lower your eyes, not your head, to read."),
+    "for-wear": mark("Wear them when you need to see clearly at these distances."),
+    # what was chosen
+    "chosen-lens": mark("Lens: %(material)s"),
+    "chosen-coating": mark("Coating on both sides: %(coating)s"),
+    "chosen-coating-front": mark("Front side: %(coating)s"),
+    "chosen-coating-back": mark("Side next to the eye: %(coating)s"),
+    "chosen-tint": mark("Tint: %(tint)s"),
+    "chosen-price": mark("Price of the pair of lenses: %(price)s"),
+    # why: computed figures
+    "mirrors-bare": mark("Without a coating, these lenses would mirror away about %(bare_percent)s %% of the light."),
+    "mirrors-hard-coat": mark("With a hard coat only, these lenses would mirror away about %(bare_percent)s %% of the light."),
+    "mirrors-coated": mark("With your coating it is %(low_percent)s to %(high_percent)s %%. Each pair differs a little."),
+    "mirrors-coated-stated": mark("With your coating it is about %(percent)s %%, by the maker's figure."),
+    "mirrors-uncoated": mark("These lenses mirror away about %(percent)s %% of the light."),
+    "passes": mark("The tinted lens lets about %(luminous_percent)s %% of the light through."),
+    "second-image": mark("Light mirrored twice inside a lens makes a faint second image of a lamp."),
+    "second-image-now": mark("In these lenses it has about 1 part in %(parts)s of the light itself."),
+    "second-image-bare": mark("Without a coating it would have about 1 part in %(bare_parts)s."),
+    # what a coating does
+    "coating-does": mark("It lets more light through. Others see your eyes better."),
+    "coating-does-not": mark("It does not stop all reflections. It does not make the lens stronger."),
+    "coating-glare": mark("Glare that arises inside the eye stays."),
+    "coating-smears": mark("Smears show more on a coated lens. It is not dirtier; no reflection hides them."),
+    "coating-none": mark("These lenses have no coating against reflections. You may see yourself or a window in them."),
+    "coating-colour": mark("A faint %(hue)s colour may show on the lens. That is normal."),
+    "coating-colour-varies": mark("A faint colour may show on the lens. It differs from pair to pair."),
+    # first days
+    "first-wear": mark("Wear them for a few hours on the first day, then longer."),
+    "first-size": mark("Things may look a little bigger, smaller or bent at first."),
+    "first-multifocal": mark("Turn your head to look at the side. Practise with them while you sit."),
+    "first-drive": mark("Do not drive until you see well and feel steady in them."),
+    "first-keep-old": mark("Keep your old pair as a spare."),
+    # when to come back
+    "back-fit": mark("They slide, pinch or hurt. We adjust them for free."),
+    "back-unclear": mark("Things are not clear, or you feel sick or get headaches after two weeks."),
+    "back-second": mark("You see a second light beside a lamp, or a reflection that bothers you."),
+    "back-damage": mark("The lens is loose, scratched, peeling or crazed."),
+    "back-soon": mark("Night glare slowly grows, or you see rings round lights without pain. Have your eyes tested soon."),
+    # today
+    "today-loss": mark("sudden loss of sight, or a curtain or shadow"),
+    "today-flashes": mark("new flashes or new floating spots"),
+    "today-double": mark("sudden double sight (do not drive)"),
+    "today-red": mark("a red eye that hurts"),
+    "today-rings": mark("rings round lights with pain or sickness"),
+    "today-headache": mark("a new headache with a sore scalp or jaw, if you are over 50"),
+    "today-splash": mark("a splash of a chemical (rinse with water at once) or a blow to the eye"),
+    "today-bent": mark("straight lines that suddenly look bent"),
+}

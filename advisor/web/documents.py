@@ -1,0 +1,163 @@
+"""Whole pages for paper: the wearer's sheet and the order slip, from a visit to HTML; no web application needed."""
+
+import base64
+import datetime as dt
+import re
+from collections.abc import Mapping
+from dataclasses import asdict
+from typing import Any
+
+from advisor.counsel.caution_texts import CAUTION_TEXTS
+from advisor.counsel.compare import Computed, answer_of, compute, lens_light
+from advisor.counsel.cautions import cautions_for
+from advisor.counsel.order import EYE_WORDS, order_of
+from advisor.counsel.phrases import Phrase, say
+from advisor.counsel.regions import region_of
+from advisor.counsel.sheet import SHEET_TEXTS, Sheet, choose, wearer_sheet as sheet_content
+from advisor.counsel.stock import Range
+from advisor.counsel.visit import Visit
+from advisor.resources import resource_dir
+from advisor.web.language import SOURCE_LANGUAGE, Language, language, languages
+from advisor.web.paper import page
+
+CURRENCY = "EUR"
+BAR_UNITS = 100  # length of a whole bar in drawing units
+RIM_WORDS = {"full": "full", "grooved": "grooved (nylon)", "drilled": "drilled (rimless)"}
+
+
+def sheet_language(visit: Visit, code: str | None) -> str:
+    """Return the language a sheet is printed in: the one asked for, else the wearer's own if there are texts in it."""
+    if code is not None:
+        return language(code).language
+    own = visit.wearer.language if visit.wearer else None
+    return own if own in languages() else SOURCE_LANGUAGE
+
+
+def wearer_sheet(
+    visit: Visit,
+    stock: Range,
+    *,
+    number: int | None = None,
+    code: str | None = None,
+    today: dt.date | None = None,
+    fonts: str = "print-fonts",
+) -> str:
+    """Return the wearer's sheet as HTML; ``number`` counts options from 1."""
+    chosen = language(sheet_language(visit, code))
+    computed = compute(visit, stock, today=today)
+    answer = answer_of(computed, translator=chosen)
+    index = choose(computed, number=number)
+    price = computed.laid[index].price
+    currency = stock.shop.currency or CURRENCY
+    content = sheet_content(
+        computed, answer, index=index, price=None if price is None else chosen.money(price, currency=currency)
+    )
+    return page(
+        "paper/sheet.html",
+        {
+            "sheet": content,
+            "shop": stock.shop,
+            "date": computed.case.date,
+            "fonts": fonts,
+            "say": lambda phrase: say(phrase, SHEET_TEXTS, chosen),
+            "bars": _bars(content, chosen),
+            "urgent_help": region_of(stock.shop.region).urgent_help,
+        },
+        code=chosen.language,
+    )
+
+
+def _bars(sheet: Sheet, chosen: Language) -> list[dict[str, Any]]:
+    """Return the bars of a sheet: lengths in drawing units on one scale, the longest filling three quarters."""
+    most = max(share for _, share in sheet.bars) or 1.0
+    return [
+        {
+            "label": label,
+            "text": chosen.percent(share),
+            "full": BAR_UNITS,
+            "full_mm": 50,
+            "length": round(0.75 * BAR_UNITS * share / most, 2),
+        }
+        for label, share in sheet.bars
+    ]
+
+
+def order_slip(
+    visit: Visit,
+    stock: Range,
+    *,
+    number: int | None = None,
+    today: dt.date | None = None,
+    fonts: str = "print-fonts",
+) -> str:
+    """Return the order slip as HTML, in the language of the screen.
+
+    Raises
+    ------
+    advisor.counsel.order.NotReady
+        With every reason, while something needed is missing.
+    """
+    chosen = language(SOURCE_LANGUAGE)
+    computed = compute(visit, stock, today=today)
+    index = choose(computed, number=number)
+    order = order_of(computed, index=index, translator=chosen)
+    case, laid = computed.case, computed.laid[index]
+    return page(
+        "paper/order.html",
+        {
+            "order": {**asdict(order), "eyes": [_eye_row(eye) for eye in order.eyes]},
+            "laid": laid,
+            "shop": stock.shop,
+            "date": case.date,
+            "reference": visit.reference,
+            "keeps_add": laid.design.kind in ("bifocal", "progressive"),
+            "tested_vertex_mm": case.tested_vertex_mm,
+            "fitted_vertex_mm": case.fitted_vertex_mm,
+            "tilt_deg": case.tilt_deg,
+            "wrap_deg": case.wrap_deg,
+            "a_mm": case.a_mm,
+            "b_mm": case.b_mm,
+            "dbl_mm": case.dbl_mm,
+            "ed_mm": case.ed_mm,
+            "rim_word": RIM_WORDS[case.rim],
+            "fonts": fonts,
+            "cautions": _cautions(computed, index, chosen),
+            "declined": [f"{part.key}{f' ({part.by})' if part.by else ''}" for part in visit.declined or ()],
+        },
+        code=chosen.language,
+    )
+
+
+def _eye_row(eye: Any) -> Mapping[str, Any]:
+    return {**{name: getattr(eye, name) for name in eye.__dataclass_fields__}, "word": EYE_WORDS[eye.eye]}
+
+
+ORDER_CAUTIONS = ("child", "one-eye", "impact", "vertex-differs", "heat-soft-material", "drilled-caution")
+
+
+def _cautions(computed: Computed, index: int, chosen: Language) -> list[str]:
+    """Return the cautions a maker or a workshop must know of."""
+    applied = cautions_for(computed.case, computed.laid[index], light=lens_light(computed, index))
+    return [
+        say(Phrase(a.key, a.figures), {a.key: CAUTION_TEXTS[a.key].text}, chosen)
+        for a in applied
+        if a.key in ORDER_CAUTIONS
+    ]
+
+
+_LINK = re.compile(r'<link rel="stylesheet" href="/static/([^"]+)">')
+_URL = re.compile(r'url\("\.\./([^"]+)"\)')
+
+
+def standing_alone(html: str) -> str:
+    """Return a page that needs no server: style sheets and fonts are put inside it."""
+
+    def style(match: re.Match[str]) -> str:
+        text = (resource_dir("static") / match.group(1)).read_text(encoding="utf-8")
+        return f"<style>{_URL.sub(font, text)}</style>"
+
+    def font(match: re.Match[str]) -> str:
+        content = base64.b64encode((resource_dir("static") / match.group(1)).read_bytes()).decode()
+        return f'url("data:font/ttf;base64,{content}")'
+
+    return _LINK.sub(style, html)
