@@ -1,9 +1,10 @@
-"""The ``twolight`` command: it checks what was typed, calls the domain and prints. Imports wait until they are needed."""
+"""The ``twolight`` command: check what was typed, call the domain, print. Imports wait until they are needed."""
 
 import json
 import os
 import sys
 from collections.abc import Callable, Iterable, Iterator
+from contextlib import suppress
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
@@ -14,6 +15,7 @@ from advisor.errors import TwolightError
 
 if TYPE_CHECKING:
     from advisor.counsel.comparison import Comparison
+    from advisor.counsel.schemas import SchemaName
     from advisor.counsel.stock import Range
     from advisor.counsel.visit import Visit
 
@@ -91,6 +93,7 @@ def _bar(files: list[Path]) -> Iterable[Path]:
 def _each(files: Iterable[Path], stock: "Range", *, with_advice: bool) -> Iterator[tuple[Path, "Visit", "Comparison"]]:
     """Yield each readable visit with its comparison; report the others and end with status 1 if there were any."""
     from advisor.counsel.compare import compare
+    from advisor.counsel.faults import Faults
     from advisor.counsel.visit import read_visit
     from advisor.web.language import language
 
@@ -101,7 +104,7 @@ def _each(files: Iterable[Path], stock: "Range", *, with_advice: bool) -> Iterat
             answer = compare(visit, stock, translator=language("en"), with_advice=with_advice, file=str(file))
         except TwolightError as error:
             failed += 1
-            click.echo(str(error), err=True)
+            click.echo(str(error) if isinstance(error, Faults) else f"{file}: {error}", err=True)
         else:
             yield file, visit, answer
     if failed:
@@ -154,12 +157,13 @@ def _as_table(file: Path, visit: "Visit", answer: "Comparison", stock: "Range") 
 
 def _write(out: Path, content: bytes) -> None:
     """Write a file whole or not at all."""
-    part = out.with_name(f".{out.name}.{os.getpid()}.part")
+    part = out.parent / f".{out.name}.{os.getpid()}.part"
     try:
         part.write_bytes(content)
         part.replace(out)
     except OSError as error:
-        part.unlink(missing_ok=True)
+        with suppress(OSError):
+            part.unlink(missing_ok=True)
         raise _Sentence(f"{out} cannot be written: {error.strerror}.") from error
 
 
@@ -213,7 +217,7 @@ def _paper(
 
 @main.command()
 @click.argument("which", type=click.Choice(["visit", "range", "comparison"]), default="visit")
-def schema(which: str) -> None:
+def schema(which: "SchemaName") -> None:
     """Print the JSON Schema of a format."""
     from advisor.counsel.schemas import schema_text
 
@@ -253,7 +257,9 @@ def range_import(data: Path | None, file: Path) -> None:
 
 @main.command()
 @click.option("--no-serve", is_flag=True, help="Write the sheets and stop.")
-@click.option("--out", type=click.Path(path_type=Path, file_okay=False), default=Path("twolight-demo"), show_default=True)
+@click.option(
+    "--out", type=click.Path(path_type=Path, file_okay=False), default=Path("twolight-demo"), show_default=True
+)
 @click.pass_context
 def demo(ctx: click.Context, no_serve: bool, out: Path) -> None:
     """Do the whole job for the demo wearers: compare, write their sheets, say where, serve."""
@@ -262,7 +268,10 @@ def demo(ctx: click.Context, no_serve: bool, out: Path) -> None:
     from advisor.web.documents import standing_alone, wearer_sheet
     from advisor.web.pdf import is_available, write_pdf
 
-    out.mkdir(parents=True, exist_ok=True)
+    try:
+        out.mkdir(parents=True, exist_ok=True)
+    except OSError as error:
+        raise _Sentence(f"{out} cannot be made: {error.strerror}.") from error
     files = sorted(resource_dir("demo_patients").glob("*.json"))
     stock, paper = builtin_range(), is_available()
     for file, visit, answer in _each(files, stock, with_advice=True):

@@ -2,17 +2,27 @@
 
 import math
 from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
 from typing import Any
 
 from advisor.counsel.faces import residual_colour
+from advisor.counsel.form import SMALLER_BY_MM, LensForms
+from advisor.counsel.ghosts import GhostFigures
 from advisor.counsel.laid_out import NOTE_TEXTS, REFUSAL_TEXTS, Laid
 from advisor.counsel.light import Light, as_made_spreads, estimated_ranges
 from advisor.counsel.phrases import Figure, Phrase, Translator, mark, say
 from advisor.counsel.prescription import EYES, Eye
 from advisor.counsel.stock_items import Scene
+from advisor.optics.ghost_scene import Ghosts, GhostView
 from advisor.optics.ghost_strength import PATHS
+from advisor.optics.observer import observer_contrast
+from advisor.optics.visibility import VERDICTS
 
 Content = dict[str, Any]
+
+# What others see: a window mirrored in the front against the face behind it; modelling choices for a room by day.
+WINDOW_CD_M2 = 3000.0
+FACE_CD_M2 = 60.0
 
 
 def number(value: float) -> float | None:
@@ -29,7 +39,11 @@ def label_of(option: Laid, translator: Translator) -> str:
     """Return a short name of an option: material, coatings and tint, as the shop calls them."""
     front, back = (coating.label or coating.key for coating in (option.front, option.back))
     words = [option.material.label or option.material.key]
-    words.append(front if front == back else translator.gettext(mark("%(front)s in front, %(back)s behind")) % {"front": front, "back": back})
+    words.append(
+        front
+        if front == back
+        else translator.gettext(mark("%(front)s in front, %(back)s behind")) % {"front": front, "back": back}
+    )
     if option.tint is not None:
         words.append(option.tint.label or f"{translator.number(100 * option.tint.luminous_transmittance, digits=0)} %")
     if option.design.kind != "single-vision":
@@ -37,9 +51,18 @@ def label_of(option: Laid, translator: Translator) -> str:
     return ", ".join(words)
 
 
-def option_answer(
-    option: Laid, *, light: Light, uncoated: Light, scenes: Sequence[Scene], translator: Translator
-) -> Content:
+@dataclass(frozen=True)
+class Figures:
+    """The arrays that an answer is read from, all over the same options."""
+
+    light: Light
+    uncoated: Light
+    forms: LensForms
+    ghosts: GhostFigures
+    scenes: Sequence[Scene]
+
+
+def option_answer(option: Laid, *, figures: Figures, translator: Translator) -> Content:
     """Return one option; a refused one keeps its place and has no eyes."""
     refused = [
         {
@@ -65,7 +88,7 @@ def option_answer(
     }
     if not refused:
         for eye in EYES:
-            content[eye] = _eye(option, eye, light=light, uncoated=uncoated, scenes=scenes)
+            content[eye] = _eye(option, eye, figures=figures)
     return content
 
 
@@ -82,8 +105,57 @@ def _uncoated(option: Laid, *, uncoated: Light, scenes: Sequence[Scene]) -> Cont
     }
 
 
-def _eye(option: Laid, _eye: Eye, *, light: Light, uncoated: Light, scenes: Sequence[Scene]) -> Content:
-    k = option.index
+def _eye(option: Laid, eye: Eye, *, figures: Figures) -> Content:
+    e = EYES.index(eye)
+    content = _form(option, e, figures=figures) | _light(option, figures=figures)
+    content["observer_contrast"] = number(
+        observer_contrast(
+            figures.light.whole_lens[option.index],
+            transmittance=max(float(figures.light.transmittance[option.index]), 1e-9),
+            window_luminance_cd_m2=WINDOW_CD_M2,
+            face_luminance_cd_m2=FACE_CD_M2,
+        ).item()
+    )
+    content["ghosts"] = _ghosts(option, e, figures=figures)
+    return content
+
+
+def _form(option: Laid, e: int, *, figures: Figures) -> Content:
+    """Return the figures of form and weight of one lens."""
+    k, forms, shape = option.index, figures.forms, figures.forms.shape
+    fits = bool(forms.smaller_fits[k, e])
+    return {
+        "front_power_d": number(shape.front_power_d[k, e]),
+        "back_power_d": [number(power) for power in shape.back_power_d[k, e]],
+        "centre_mm": number(shape.centre_mm[k, e]),
+        "edge_thickest_mm": number(shape.thickest_mm[k, e]),
+        "edge_thinnest_mm": number(shape.thinnest_mm[k, e]),
+        "edge_thickest_at": place(shape.thickest_deg[k, e]),
+        "edge_thinnest_at": place(shape.thinnest_deg[k, e]),
+        "weight_g": number(forms.weight_g[k, e]),
+        "blank_mm": number(forms.blank_mm[k, e]),
+        "colour_fringe_prism_d": number(forms.fringe_prism_d[k, e]),
+        "magnification_percent": number(forms.magnification_percent[k, e]),
+        "smaller_frame": {
+            "by_mm": SMALLER_BY_MM,
+            "edge_thickest_mm": number(forms.smaller_thickest_mm[k, e]) if fits else None,
+            "weight_g": number(forms.smaller_weight_g[k, e]) if fits else None,
+        },
+    }
+
+
+PLACE_WORDS = ("nose", "nose up", "up", "temple up", "temple", "temple down", "down", "nose down")
+
+
+def place(local_deg: float) -> Content:
+    """Return a place on the rim: degrees from the nose side, upwards first, and a word."""
+    angle = float(local_deg) % 360.0
+    return {"angle_deg": angle, "word": PLACE_WORDS[round(angle / 45.0) % 8]}
+
+
+def _light(option: Laid, *, figures: Figures) -> Content:
+    """Return the figures of light; both lenses of a pair have the same faces."""
+    k, light = option.index, figures.light
     fronts, backs, both = as_made_spreads(option)
     front, back = option.front_face, option.back_face
     content: Content = {
@@ -98,29 +170,63 @@ def _eye(option: Laid, _eye: Eye, *, light: Light, uncoated: Light, scenes: Sequ
             },
             "estimated": front.is_estimated or back.is_estimated,
         },
-        "uncoated": _uncoated(option, uncoated=uncoated, scenes=scenes),
+        "uncoated": _uncoated(option, uncoated=figures.uncoated, scenes=figures.scenes),
         "luminous_transmittance": float(light.transmittance[k]),
         "residual_colour": {
             name: dict(zip(("hue", "srgb", "xy"), residual_colour(face), strict=True))
             for name, face in (("front", front), ("back", back))
         },
-        "ghosts": _ghosts(option, light=light, scenes=scenes),
     }
     if option.tint is not None and option.tint.luminous_transmittance_dark is not None:
         content["luminous_transmittance_dark"] = float(light.transmittance_dark[k])
     return content
 
 
-def _ghosts(option: Laid, *, light: Light, scenes: Sequence[Scene]) -> list[Content]:
+def _ghosts(option: Laid, e: int, *, figures: Figures) -> list[Content]:
     """Return the ghosts of the paths that light of each scene can take."""
-    ranges = estimated_ranges(option, scenes)
-    found = []
-    for s, scene in enumerate(scenes):
+    ranges = estimated_ranges(option, figures.scenes)
+    seen, k, found = figures.ghosts.seen, option.index, []
+    for s, scene in enumerate(figures.scenes):
         for p, path in enumerate(PATHS):
-            if path.startswith("behind") != (scene.where == "behind"):
+            if not seen.applies[k, e, s, p]:
                 continue
-            ghost: Content = {"path": path, "scene": scene.key, "strength": float(light.strengths[option.index, s, p])}
+            at = (k, e, s, p)
+            ghost: Content = {"path": path, "scene": scene.key, "strength": float(figures.light.strengths[k, s, p])}
             if ranges is not None:
                 ghost["strength_range"] = ranges[:, s, p].tolist()
+            ghost |= _seen(seen, at, behind=scene.where == "behind")
+            ghost["verdict_range"] = [
+                VERDICTS[figures.ghosts.least_verdict[at]],
+                VERDICTS[figures.ghosts.greatest_verdict[at]],
+            ]
             found.append(ghost)
     return found
+
+
+def _seen(seen: Ghosts, at: tuple[int, int, int, int], *, behind: bool) -> Content:
+    """Return where one ghost lies and whether it is seen, relaxed and accommodated."""
+    spread = bool(seen.spread[at])
+    relaxed = _view(seen.relaxed, at)
+    return {
+        "vergence_d": seen.vergence_d[at].tolist(),
+        "pupil_mm": float(seen.pupil_mm[at]),
+        "separation_deg": None if behind or spread else float(seen.separation_deg[at]),
+        "spread": spread,
+        "background_cd_m2": float(seen.background_cd_m2[at]),
+        "contrast": float(seen.relaxed.contrast[at]),
+        "haze": bool(seen.relaxed.haze[at]),
+        "past_range": bool(seen.past_range[at]),
+        "accommodated": _view(seen.accommodated, at),
+        **relaxed,
+    }
+
+
+def _view(view: GhostView, at: tuple[int, int, int, int]) -> Content:
+    return {
+        "defocus_d": view.defocus_d[at].tolist(),
+        "size_deg": view.size_deg[at].tolist(),
+        "luminance_cd_m2": float(view.luminance_cd_m2[at]),
+        "threshold_cd_m2": float(view.threshold_cd_m2[at]),
+        "visibility_level": float(view.visibility_level[at]),
+        "verdict": VERDICTS[view.verdict[at]],
+    }

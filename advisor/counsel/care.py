@@ -1,7 +1,7 @@
 """Care of the lenses: what sources agree on, in the order that matters for this wearer.
 
-The advice is what manufacturers' and professional bodies' care pages agree on (common practice, no single source). Where
-they conflict (hot water, alcohol, dish soap) the sheet says "only a cleaner your optician supplies".
+The advice is what manufacturers' and professional bodies' care pages agree on (common practice, no single source).
+Where they conflict (hot water, alcohol, dish soap) the sheet says "only a cleaner your optician supplies".
 """
 
 from collections.abc import Iterable
@@ -28,7 +28,11 @@ CARE: tuple[CareLine, ...] = (
     CareLine("soft-cloth", "do", mark("Dry them with a clean soft cloth.")),
     CareLine("wash-cloth", "do", mark("Wash the cloth often. Use no softener.")),
     CareLine("own-cleaner", "do", mark("For a spray or wipe, use only a cleaner your optician supplies.")),
-    CareLine("put-down", "do", mark("Put them down with the lenses up. Use both hands to take them off. Keep them in the case.")),
+    CareLine(
+        "put-down",
+        "do",
+        mark("Put them down with the lenses up. Use both hands to take them off. Keep them in the case."),
+    ),
     CareLine(
         "salt-sand",
         "do",
@@ -38,16 +42,34 @@ CARE: tuple[CareLine, ...] = (
     ),
     CareLine("dry-wipe", "dont", mark("Do not wipe a dry, dusty lens. Dust scratches."), ("dust",)),
     CareLine("paper-shirt", "dont", mark("No paper and no shirt. They scratch too.")),
-    CareLine("aerosol", "dont", mark("No hair spray, perfume or other spray on the lenses. Take the glasses off first."), ("sprays_solvents",)),
+    CareLine(
+        "aerosol",
+        "dont",
+        mark("No hair spray, perfume or other spray on the lenses. Take the glasses off first."),
+        ("sprays_solvents",),
+    ),
     CareLine(
         "harsh-cleaners",
         "dont",
         mark("No window cleaner, vinegar, bleach, ammonia or nail polish remover."),
         ("sprays_solvents",),
     ),
-    CareLine("heat", "dont", mark("Keep them out of the sauna, the hot car, and the heat of an oven or grill."), ("heat_steam",)),
-    CareLine("skin-products", "dont", mark("Keep insect spray, sun cream, alcohol wipes and glue off the lenses."), ("sun",)),
-    CareLine("pool", "dont", mark("Do not wear them in the pool. Chlorine harms the coating."), ("water_salt_chlorine",), ("water_salt_chlorine",)),
+    CareLine(
+        "heat",
+        "dont",
+        mark("Keep them out of the sauna, the hot car, and the heat of an oven or grill."),
+        ("heat_steam",),
+    ),
+    CareLine(
+        "skin-products", "dont", mark("Keep insect spray, sun cream, alcohol wipes and glue off the lenses."), ("sun",)
+    ),
+    CareLine(
+        "pool",
+        "dont",
+        mark("Do not wear them in the pool. Chlorine harms the coating."),
+        ("water_salt_chlorine",),
+        ("water_salt_chlorine",),
+    ),
     CareLine(
         "child-strap",
         "do",

@@ -63,6 +63,10 @@ class Case:
         """Return what is written for one eye."""
         return self.visit.prescription.right if eye == "right" else self.visit.prescription.left
 
+    def is_default(self, name: str) -> bool:
+        """Whether a stated default stands in for a figure that was left out."""
+        return name in self.defaults_used
+
     def compensated(self, eye: Eye) -> SphereCylinder:
         """Return the distance power moved from the tested to the fitted vertex distance."""
         return at_vertex(self.eye(eye).power, from_mm=self.tested_vertex_mm, to_mm=self.fitted_vertex_mm)
@@ -127,38 +131,39 @@ def build_case(visit: Visit, stock: Range, *, today: dt.date) -> Case:
     filled = _Filled()
     wearer, fitting, frame = visit.wearer, visit.fitting, visit.frame
     age = visit.age(today=today)
-    a_mm = filled.number(frame and frame.a_mm, "frame.a_mm")
-    b_mm = filled.number(frame and frame.b_mm, "frame.b_mm")
-    eyes: list[EyeFitting | None] = [fitting and fitting.right, fitting and fitting.left]
+    a_mm = filled.number(frame.a_mm if frame else None, "frame.a_mm")
+    b_mm = filled.number(frame.b_mm if frame else None, "frame.b_mm")
+    eyes: list[EyeFitting | None] = [fitting.right if fitting else None, fitting.left if fitting else None]
     working = fitting.working_distance_cm if fitting else None
-    tested = filled.number(visit.prescription.vertex_mm, "prescription.vertex_mm")
-    fitted = fitting.vertex_mm if fitting and fitting.vertex_mm is not None else None
+    fitted = fitting.vertex_mm if fitting else None
+    # where the tested distance is not known the power stays as written, whatever the fitted one
+    tested = filled.number(visit.prescription.vertex_mm, "prescription.vertex_mm", default=fitted)
     return Case(
         visit=visit,
         stock=stock,
         date=visit.date or today,
         age_years=filled.number(age, "wearer.birth_year"),
         youngest_age=visit.youngest_age(today=today),
-        pigment=PIGMENT[filled.word(wearer and wearer.eye_colour, "wearer.eye_colour")],
+        pigment=PIGMENT[filled.word(wearer.eye_colour if wearer else None, "wearer.eye_colour")],
         tested_vertex_mm=tested,
         fitted_vertex_mm=filled.number(fitted, "fitting.vertex_mm", default=tested),
-        tilt_deg=filled.number(fitting and fitting.tilt_deg, "fitting.tilt_deg"),
-        wrap_deg=filled.number(fitting and fitting.wrap_deg, "fitting.wrap_deg"),
+        tilt_deg=filled.number(fitting.tilt_deg if fitting else None, "fitting.tilt_deg"),
+        wrap_deg=filled.number(fitting.wrap_deg if fitting else None, "fitting.wrap_deg"),
         working_distance_cm=filled.number(working[0] if working else None, "fitting.working_distance_cm"),
         pd_mm=np.array(
-            [filled.number(e and e.pd_mm, f"fitting.{name}.pd_mm") for name, e in zip(EYES, eyes, strict=True)]
+            [filled.number(e.pd_mm if e else None, f"fitting.{name}.pd_mm") for name, e in zip(EYES, eyes, strict=True)]
         ),
         height_mm=np.array(
             [
-                filled.number(e and e.height_mm, f"fitting.{name}.height_mm", default=b_mm / 2)
+                filled.number(e.height_mm if e else None, f"fitting.{name}.height_mm", default=b_mm / 2)
                 for name, e in zip(EYES, eyes, strict=True)
             ]
         ),
         a_mm=a_mm,
         b_mm=b_mm,
-        dbl_mm=filled.number(frame and frame.dbl_mm, "frame.dbl_mm"),
+        dbl_mm=filled.number(frame.dbl_mm if frame else None, "frame.dbl_mm"),
         ed_mm=frame.ed_mm if frame else None,
-        rim=filled.word(frame and frame.rim, "frame.rim"),
+        rim=filled.word(frame.rim if frame else None, "frame.rim"),
         scenes=stock.scenes_of(visit.scenes),
         defaults_used=tuple(filled.used),
     )

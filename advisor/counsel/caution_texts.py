@@ -28,7 +28,9 @@ CAUTION_TEXTS: dict[str, CautionText] = {
             "protectors, for sport sports protectors; elsewhere ask the local rules."
         ),
         mark("These are not safety glasses. For work, tools and sport, ask us for the right eye guard."),
-        mark("ANSI Z87.1 or the ISO 16321 series (EN 166 still in use); sport: ASTM F803, ISO 18527; US: 21 CFR 801.410"),
+        mark(
+            "ANSI Z87.1 or the ISO 16321 series (EN 166 still in use); sport: ASTM F803, ISO 18527; US: 21 CFR 801.410"
+        ),
         "21 CFR 801.410; ISO 16321-1:2022; ANSI Z87.1; ISO 18527",
     ),
     "coating-adds-no-strength": CautionText(
@@ -38,7 +40,9 @@ CAUTION_TEXTS: dict[str, CautionText] = {
         "Corzine et al. 1996, Optometry and Vision Science 73:8",
     ),
     "child": CautionText(
-        mark("Child: an impact material first, with a centre of 2.0 mm or more. If it is declined, record who declined it."),
+        mark(
+            "Child: an impact material first, with a centre of 2.0 mm or more. If it is declined, record who declined it."
+        ),
         mark("For a child we advise a tough lens. Have the fit checked every 3 months."),
         mark("Tough material, centre 2.0 mm or more; a refusal is recorded."),
         PRACTICE,
@@ -71,18 +75,24 @@ CAUTION_TEXTS: dict[str, CautionText] = {
         mark(
             "The finished lens passes %(luminous_percent)s %% of the light, below 75 %%: not for driving at twilight or at night."
         ),
-        mark("These lenses are tinted. Do not drive in them at dusk or at night."),
-        mark("Finished lens below 75 %: not for driving at twilight or at night; judge the finished lens, local rules decide."),
+        mark("These lenses take away some light. Do not drive in them at dusk or at night."),
+        mark(
+            "Finished lens below 75 %: not for driving at twilight or at night; judge the finished lens, local rules decide."
+        ),
         "ISO 12312-1 as quoted in public guidance",
     ),
     "not-for-driving-tint": CautionText(
-        mark("The finished lens passes %(luminous_percent)s %% of the light, below 8 %%: never for driving."),
+        mark(
+            "At its darkest the finished lens passes %(luminous_percent)s %% of the light, below 8 %%: never for driving."
+        ),
         mark("These lenses are very dark. Never drive in them."),
         mark("Finished lens below 8 %: not for driving at any time."),
         "ISO 12312-1 as quoted in public guidance",
     ),
     "tint-colour-unknown": CautionText(
-        mark("If the tint is a strong pink, blue, red, yellow or orange, the supplier must confirm that it may be used on the road."),
+        mark(
+            "If the tint is a strong pink, blue, red, yellow or orange, the supplier must confirm that it may be used on the road."
+        ),
         "",
         mark("The supplier confirms road use; the program gives no verdict on signal colours."),
         PRACTICE,
@@ -145,7 +155,9 @@ CAUTION_TEXTS: dict[str, CautionText] = {
         PRACTICE,
     ),
     "decentred-outwards": CautionText(
-        mark("The PD is wider than the frame's centres: the lens is moved outwards by %(outward_mm)s mm. Choose a larger frame."),
+        mark(
+            "The PD is wider than the frame's centres: the lens is moved outwards by %(outward_mm)s mm. Choose a larger frame."
+        ),
         "",
         mark("Optical centres are not moved outwards without need."),
         PRACTICE,
@@ -193,7 +205,9 @@ CAUTION_TEXTS: dict[str, CautionText] = {
         PRACTICE,
     ),
     "large-change": CautionText(
-        mark("The power changes by up to %(change_d)s D and the axis by up to %(turn_deg)s degrees against the worn pair."),
+        mark(
+            "The power changes by up to %(change_d)s D and the axis by up to %(turn_deg)s degrees against the worn pair."
+        ),
         mark("Your new lenses are quite different from the old ones. Floors and steps may look odd at first."),
         mark("Over 1.00 D or 10 degrees of axis; over 0.75 D for older or unsteady wearers."),
         PRACTICE,
@@ -205,7 +219,9 @@ CAUTION_TEXTS: dict[str, CautionText] = {
         "Opticians Act 1989 (from memory)",
     ),
     "steps": CautionText(
-        mark("Older or unsteady wearers and multifocals: look down with the head on steps; a distance pair for active walkers."),
+        mark(
+            "Older or unsteady wearers and multifocals: look down with the head on steps; a distance pair for active walkers."
+        ),
         mark("On steps, move your head down to look. Take extra care outdoors."),
         mark("A single-vision distance pair helps those who walk outdoors a lot."),
         "BMJ 2010;340:c2265",

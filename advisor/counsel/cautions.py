@@ -1,9 +1,16 @@
 """Which cautions apply to a wearer and a lens: one short function a caution, its words in ``caution_texts.py``.
 
-A question that was not asked never counts as "never": where a blow can do harm the caution is shown unless the wearer
-said it does not happen.
+A question that was not asked is never read as "never". A caution that says what is so of this wearer (one good eye,
+knocks, new glare) waits for the answer, and the answer's ``not-asked`` warning lists the question; a caution that only
+an answer of "never" could make needless (a tint at night) is shown until that answer is given.
+
+Choices made here, where the rule leaves one: frequent impact is the answer "often"; a balance lens stands for one good
+eye unless the wearer says otherwise; a tint is judged by the finished lens, mirrored light and all, so a strongly
+mirroring face counts as well; a photochromic lens is judged for the night in its clear state, as nothing darkens it
+then, and for the rule "never for driving" in its darkest, as the sun or the cold may bring it there on the road.
 """
 
+import math
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 
@@ -19,6 +26,8 @@ IMBALANCE_FROM_PRISM_D = 1.0
 LARGE_CHANGE_D, LARGE_CHANGE_OLDER_D, LARGE_TURN_DEG = 1.0, 0.75, 10.0
 BLUE_FROM = 0.08  # mean reflectance of one face from 400 to 440 nm; a modelling choice
 UV_CUT_ENOUGH_NM = 380.0
+ONE_EYE_CHANGE_D = 0.5  # one eye changed by so much more than the other; a modelling choice
+ROUNDING = 1e-9  # a figure that meets a limit exactly is not beyond it
 MULTIFOCAL = ("bifocal", "progressive")
 NEAR_ONLY = ("reading", "occupational")
 
@@ -78,7 +87,12 @@ def _child(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
 
 
 def _one_eye(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
-    return _when(case.life("one_good_eye") == "yes")
+    answer = case.life("one_good_eye")
+    return _when(answer == "yes" or (answer == "not-asked" and _has_balance(case)))
+
+
+def _has_balance(case: Case) -> bool:
+    return any(case.eye(eye).balance for eye in EYES)
 
 
 def _impact(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
@@ -89,14 +103,23 @@ def _glass_breaks(_case: Case, option: Laid, _light: LensLight) -> Figures | Non
     return _when(is_glass(option))
 
 
-def _not_for_night_driving_tint(_case: Case, option: Laid, light: LensLight) -> Figures | None:
-    dark = DRIVING_LEAST <= light.transmittance < NIGHT_DRIVING_LEAST
-    return _when(_is_tinted(option) and dark, {"luminous_percent": 100 * light.transmittance})
+def _not_for_night_driving_tint(_case: Case, _option: Laid, light: LensLight) -> Figures | None:
+    dark = not _below(light.transmittance, DRIVING_LEAST) and _below(light.transmittance, NIGHT_DRIVING_LEAST)
+    return _when(dark, {"luminous_percent": _shown_percent(light.transmittance)})
 
 
-def _not_for_driving_tint(_case: Case, option: Laid, light: LensLight) -> Figures | None:
+def _not_for_driving_tint(_case: Case, _option: Laid, light: LensLight) -> Figures | None:
     darkest = min(light.transmittance, light.transmittance_dark)
-    return _when(_is_tinted(option) and darkest < DRIVING_LEAST, {"luminous_percent": 100 * darkest})
+    return _when(_below(darkest, DRIVING_LEAST), {"luminous_percent": _shown_percent(darkest)})
+
+
+def _below(value: float, limit: float) -> bool:
+    return value < limit - ROUNDING
+
+
+def _shown_percent(fraction: float) -> float:
+    """Return a percentage cut to a tenth, so that 74.96 never reads "75.0, below 75"."""
+    return math.floor(1000 * fraction + ROUNDING) / 10
 
 
 def _tint_colour_unknown(_case: Case, option: Laid, _light: LensLight) -> Figures | None:
@@ -113,7 +136,7 @@ def _uv_not_darkness(_case: Case, option: Laid, _light: LensLight) -> Figures | 
 
 
 def _night_tint_no_benefit(case: Case, option: Laid, _light: LensLight) -> Figures | None:
-    return _when(_is_tinted(option) and case.says("night_driving"))
+    return _when(_is_tinted(option) and case.life("night_driving") != "never")
 
 
 def _photochromic(_case: Case, option: Laid, _light: LensLight) -> Figures | None:
@@ -129,26 +152,49 @@ def _not_for_driving_design(_case: Case, option: Laid, _light: LensLight) -> Fig
 
 
 def _no_near(case: Case, option: Laid, _light: LensLight) -> Figures | None:
-    wanted = case.visit.prescription.for_ in (None, "all", "distance")
-    return _when(case.has_add and wanted and option.design.kind == "single-vision")
+    return _when(case.has_add and option.design.kind == "single-vision")
 
 
 def _near_imbalance(case: Case, option: Laid, light: LensLight) -> Figures | None:
-    reads = case.has_add or case.life("first_multifocal") == "yes" or case.life("one_good_eye") == "yes"
+    concerned = case.has_add or case.life("first_multifocal") == "yes" or one_eye_changed(case)
+    enough = not _below(light.imbalance_prism_d, IMBALANCE_FROM_PRISM_D)
     return _when(
-        reads and light.imbalance_prism_d >= IMBALANCE_FROM_PRISM_D and option.design.kind not in NEAR_ONLY,
+        concerned and enough and option.design.kind not in NEAR_ONLY and not _has_balance(case),
         {"imbalance_prism_d": light.imbalance_prism_d},
     )
 
 
+def one_eye_changed(case: Case) -> bool:
+    """Whether the vertical power of one eye changed more than the other's against the worn pair."""
+    worn = case.visit.worn_now
+    if worn is None or worn.prescription is None:
+        return False
+    then = (worn.prescription.right.power, worn.prescription.left.power)
+    right, left = (_along(case.eye(eye).power, 90) - _along(old, 90) for eye, old in zip(EYES, then, strict=True))
+    return not _below(abs(right - left), ONE_EYE_CHANGE_D)
+
+
 def _height_too_low(case: Case, option: Laid, _light: LensLight) -> Figures | None:
-    least, height = option.design.least_height_mm, float(case.height_mm.min())
-    return _when(least is not None and height < least, {"height_mm": height, "least_height_mm": least})
+    least = option.design.least_height_mm
+    # half of a measured box is a figure to warn by, half of the default box is not
+    known = [
+        float(height)
+        for eye, height in zip(EYES, case.height_mm, strict=True)
+        if not (case.is_default(f"fitting.{eye}.height_mm") and case.is_default("frame.b_mm"))
+    ]
+    if least is None or not known:
+        return None
+    return _when(_below(min(known), least), {"height_mm": min(known), "least_height_mm": least})
 
 
 def _decentred_outwards(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
-    outward = float((case.pd_mm - (case.a_mm + case.dbl_mm) / 2).max())
-    return _when(outward > 0.0, {"outward_mm": outward})
+    if case.is_default("frame.a_mm") or case.is_default("frame.dbl_mm"):
+        return None
+    measured = [
+        float(pd) for eye, pd in zip(EYES, case.pd_mm, strict=True) if not case.is_default(f"fitting.{eye}.pd_mm")
+    ]
+    outward = max(measured, default=0.0) - (case.a_mm + case.dbl_mm) / 2
+    return _when(outward > ROUNDING, {"outward_mm": outward})
 
 
 def _drilled(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
@@ -164,7 +210,8 @@ def _vertex_missing(case: Case, _option: Laid, _light: LensLight) -> Figures | N
 
 
 def _vertex_differs(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
-    differs = case.tested_vertex_mm != case.fitted_vertex_mm and case.strongest_d >= VERTEX_MATTERS_FROM_D
+    tested = case.visit.prescription.vertex_mm is not None
+    differs = tested and case.tested_vertex_mm != case.fitted_vertex_mm and case.strongest_d >= VERTEX_MATTERS_FROM_D
     return _when(differs, {"fitted_mm": case.fitted_vertex_mm, "tested_mm": case.tested_vertex_mm})
 
 
@@ -178,12 +225,11 @@ def _rx_old(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
 
 def _unequal_add(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
     right, left = (case.eye(eye).add or 0.0 for eye in EYES)
-    balanced = any(case.eye(eye).balance for eye in EYES)
-    return _when(right != left and not balanced)
+    return _when(right != left and not _has_balance(case))
 
 
 def _add_for_age(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
-    if "wearer.birth_year" in case.defaults_used:
+    if case.is_default("wearer.birth_year"):
         return None
     early = case.has_add and case.age_years < 35
     late = not case.has_add and case.age_years > 45 and case.visit.prescription.for_ in (None, "all")
@@ -213,8 +259,7 @@ def _along(power: SphereCylinder, angle: int) -> float:
 
 def is_unsteady(case: Case) -> bool:
     """Whether the wearer is older or has said that falls happen."""
-    older = case.youngest_age is not None and case.youngest_age >= OLDER_FROM
-    return older or case.life("falls") == "yes"
+    return case.age_years >= OLDER_FROM or case.life("falls") == "yes"
 
 
 def _large_change(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
@@ -222,11 +267,12 @@ def _large_change(case: Case, _option: Laid, _light: LensLight) -> Figures | Non
     if changed is None:
         return None
     limit = LARGE_CHANGE_OLDER_D if is_unsteady(case) else LARGE_CHANGE_D
-    return _when(changed[0] > limit or changed[1] > LARGE_TURN_DEG, {"change_d": changed[0], "turn_deg": changed[1]})
+    large = changed[0] > limit + ROUNDING or changed[1] > LARGE_TURN_DEG + ROUNDING
+    return _when(large, {"change_d": changed[0], "turn_deg": changed[1]})
 
 
 def _restricted_supply(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
-    return _when(case.stock.shop.region == "uk" and case.youngest_age is not None and case.youngest_age < 16)
+    return _when(case.stock.shop.region == "uk" and case.is_child)
 
 
 def _steps(case: Case, option: Laid, _light: LensLight) -> Figures | None:

@@ -6,14 +6,18 @@ from dataclasses import dataclass, replace
 from typing import Any
 
 from advisor import __version__
-from advisor.counsel.answer import notice, option_answer
+from advisor.counsel.answer import Figures, notice, option_answer
 from advisor.counsel.case import Case, build_case
 from advisor.counsel.caution_texts import CAUTION_TEXTS
-from advisor.counsel.cautions import LensLight, cautions_for
+from advisor.counsel.cautions import CAUTIONS, LensLight, cautions_for
 from advisor.counsel.comparison import Comparison
 from advisor.counsel.faults import Faults
+from advisor.counsel.form import LensForms, forms_of
+from advisor.counsel.form_findings import with_form_findings
+from advisor.counsel.ghosts import GhostFigures, figures_of
 from advisor.counsel.laid_out import Laid, Refused, lay_out, options_of, without_film
 from advisor.counsel.light import Light, light_of
+from advisor.counsel.limits import coatings_that_reach, limits_of
 from advisor.counsel.phrases import Phrase, Translator, mark, say
 from advisor.counsel.prescription import power_along_d
 from advisor.counsel.stock import Range
@@ -24,7 +28,7 @@ Content = dict[str, Any]
 
 OWN_WARNINGS: dict[str, str] = {
     "not-asked": mark("Not asked, and not taken as “never”: %(questions)s."),
-    "defaults-used": mark("%(count)s figures are defaults, not measurements."),
+    "defaults-used": mark("Figures that are defaults, not measurements: %(count)s."),
 }
 
 
@@ -36,6 +40,8 @@ class Computed:
     laid: tuple[Laid, ...]
     light: Light
     uncoated: Light
+    forms: LensForms
+    ghosts: GhostFigures
     vertical_imbalance_prism_d: float
 
 
@@ -53,10 +59,13 @@ def compute(visit: Visit, stock: Range, *, today: dt.date | None = None, file: s
     case = build_case(visit, stock, today=today or dt.date.today())
     laid = lay_out(case)
     light = light_of(laid, case.scenes)
+    forms = forms_of(case, laid)
     return Computed(
         case=case,
-        laid=tuple(_with_tint_refusals(laid, light)),
+        laid=tuple(with_form_findings(case, _with_tint_refusals(laid, light), forms)),
         light=light,
+        forms=forms,
+        ghosts=figures_of(case, laid, forms=forms, light=light),
         uncoated=light_of([without_film(option, stock) for option in laid], case.scenes),
         vertical_imbalance_prism_d=vertical_imbalance(case),
     )
@@ -107,7 +116,7 @@ def lens_light(computed: Computed, index: int) -> LensLight:
 def _cautions(computed: Computed, translator: Translator) -> list[Content]:
     """Return every caution that applies to some option, the gravest first, with the options it applies to."""
     found: dict[str, Content] = {}
-    order = list(CAUTION_TEXTS)
+    order = list(CAUTIONS)
     for option in computed.laid:
         for applied in cautions_for(computed.case, option, light=lens_light(computed, option.index)):
             words = CAUTION_TEXTS[applied.key]
@@ -133,24 +142,46 @@ def answer_of(computed: Computed, *, translator: Translator, with_advice: bool =
     used = [*case.defaults_used, *(name for option in computed.laid for name in option.defaults_used)]
     if options_of(case)[1]:
         used.append("options")
+    figures = Figures(
+        light=computed.light,
+        uncoated=computed.uncoated,
+        forms=computed.forms,
+        ghosts=computed.ghosts,
+        scenes=case.scenes,
+    )
     content: Content = {
         "format": "twolight-comparison-1",
         "twolight": __version__,
         "defaults_used": used,
         "warnings": [notice(phrase, texts, translator) for phrase in warnings_of(case)],
-        "options": [
-            option_answer(
-                option, light=computed.light, uncoated=computed.uncoated, scenes=case.scenes, translator=translator
-            )
-            for option in computed.laid
-        ],
+        "options": [option_answer(option, figures=figures, translator=translator) for option in computed.laid],
         "vertical_imbalance_prism_d": computed.vertical_imbalance_prism_d,
     }
     if case.visit.reference is not None:
         content["reference"] = case.visit.reference
     if with_advice:
         content["advice"] = {"cautions": _cautions(computed, translator)}
+        _add_limits(content["options"], computed)
     return Comparison.model_validate(content)
+
+
+def _add_limits(options: list[Content], computed: Computed) -> None:
+    """Put the reflectance limit into every option that can be made; it is solved only where advice is wanted."""
+    case = computed.case
+    limits = limits_of(case, computed.laid, forms=computed.forms)
+    if limits is None:
+        return
+    for k, option in enumerate(options):
+        if option["refused"]:
+            continue
+        even_bare = bool(limits.even_bare[k])
+        limit = float(limits.not_noticed[k])
+        option["reflectance_limit"] = {
+            "not_noticed": None if even_bare else limit,
+            "at_the_limit": None if even_bare else float(limits.at_the_limit[k]),
+            "scene": case.scenes[int(limits.scene[k])].key,
+            "reached_by": coatings_that_reach(limit, computed.laid[k], case.stock),
+        }
 
 
 def compare(

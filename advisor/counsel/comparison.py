@@ -1,7 +1,7 @@
 """The answer, ``twolight-comparison-1``: names that other programs may rely on.
 
-A key whose part is not built is absent, never 0: dump with ``exclude_unset=True``. A figure that does not exist for this
-lens (no separation for a light behind the wearer) is null. Reflectances and transmittances are fractions. Pairs by
+A key whose part is not built is absent, never 0: dump with ``exclude_unset=True``. A figure that does not exist for
+this lens (no separation for a light behind the wearer) is null. Reflectances and transmittances are fractions. Pairs by
 meridian run from the more positive power to the other.
 """
 
@@ -47,7 +47,7 @@ class Faces(_Part):
 
 
 class AsMade(_Part):
-    """The 5, 50 and 95 % points of the luminous reflectance a coating plant delivers; null for a face without layers."""
+    """The 5, 50 and 95 % points of the luminous reflectance as delivered; null for a face without layers."""
 
     front: Spread | None = None
     back: Spread | None = None
@@ -106,7 +106,9 @@ class Ghost(_Part):
     path: Path
     scene: str
     strength: float = Field(description="relative to direct light for ahead and cornea paths, else of the light behind")
-    strength_range: tuple[float, float] | None = Field(default=None, description="over the built-in shapes, if estimated")
+    strength_range: tuple[float, float] | None = Field(
+        default=None, description="over the built-in shapes, if estimated"
+    )
     vergence_d: Pair | None = Field(default=None, description="at the back vertex")
     defocus_d: Pair | None = Field(default=None, description="at the pupil, relaxed")
     pupil_mm: float | None = None
@@ -126,7 +128,7 @@ class Ghost(_Part):
 
 
 class Place(_Part):
-    """Where on the rim, seen from the front: degrees from the nose side, anticlockwise for the right eye, and a word."""
+    """Where on the rim: degrees from the nose side by way of up, alike for both eyes, and a word."""
 
     angle_deg: float
     word: Literal["nose", "nose up", "up", "temple up", "temple", "temple down", "down", "nose down"]
@@ -153,9 +155,21 @@ class EyeFigures(_Part):
     colour_fringe_prism_d: float | None = None
     magnification_percent: float | None = None
     smaller_frame: dict[str, float | None] | None = Field(
-        default=None, description="the same lens in a frame 4 mm smaller: edge_thickest_mm and weight_g"
+        default=None, description="the same lens in a smaller frame: by_mm, edge_thickest_mm, weight_g"
     )
     ghosts: list[Ghost] = Field(default_factory=list)
+
+
+class ReflectanceLimit(_Part):
+    """The most each face may mirror, alike on both, so that the worst ghost stays below a visibility level.
+
+    Null where even a bare face keeps the level; ``reached_by`` are the coatings sold that keep ``not_noticed`` as made.
+    """
+
+    not_noticed: float | None
+    at_the_limit: float | None
+    scene: str
+    reached_by: list[str]
 
 
 class OptionFigures(_Part):
@@ -170,6 +184,7 @@ class OptionFigures(_Part):
     price: float | None
     refused: list[Refusal] = Field(default_factory=list)
     notes: list[Notice] = Field(default_factory=list)
+    reflectance_limit: ReflectanceLimit | None = None
     right: EyeFigures | None = None
     left: EyeFigures | None = None
 

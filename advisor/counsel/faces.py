@@ -1,7 +1,7 @@
 """From what a shop calls a coating to the spectra of one face, cached by film and substrate.
 
-A face is nominal (as designed) or 64 faces as made. A measured spectrum and a supplier's declared figure have no layers,
-so they have no as-made spread; a declared figure borrows the shape of the nearest built-in film and says so.
+A face is nominal (as designed) or 64 faces as made. A measured spectrum and a supplier's declared figure have no
+layers, so they have no as-made spread; a declared figure borrows the shape of the nearest built-in film and says so.
 """
 
 from dataclasses import dataclass
@@ -21,6 +21,7 @@ from advisor.optics.surface import SurfaceSpectra, film_surface, reflectance_sur
 
 SAMPLES = 64
 BLUE_BAND_NM = (400.0, 440.0)
+MOST_MIRRORED = 1.0 - 1e-6  # a numerical guard, far beyond any lens
 
 
 @dataclass(frozen=True)
@@ -48,6 +49,7 @@ def face_of(material: Material, coating: Coating) -> Face:
     return Face(material.index, material.abbe, material.line, optical(coating))
 
 
+@lru_cache(maxsize=1024)
 def optical(coating: Coating) -> Coating:
     """Return a coating without its label, price and care: what its spectra depend on."""
     return Coating(
@@ -74,18 +76,26 @@ def substrate(face: Face) -> NDArray[np.float64]:
 def nominal(face: Face, angle_deg: float = 0.0) -> SurfaceSpectra:
     """Return the three spectra of a face as designed, each (401,); a face without layers is the same at every angle."""
     if face.coating.spectrum is not None:
-        return reflectance_surface(measured_spectrum(face.coating.spectrum))
+        return _bounded(reflectance_surface(measured_spectrum(face.coating.spectrum)))
     if face.coating.declared is not None:
         return reflectance_surface(_declared(face).spectrum)
     index, thickness_nm = _stack(face)
-    return film_surface(substrate(face), layer_index=index, layer_thickness_nm=thickness_nm, angle_deg=angle_deg)
+    return _bounded(
+        film_surface(substrate(face), layer_index=index, layer_thickness_nm=thickness_nm, angle_deg=angle_deg)
+    )
+
+
+def _bounded(surface: SurfaceSpectra) -> SurfaceSpectra:
+    """Return a surface that mirrors at most nearly everything, so that the bounces between two of them have a sum."""
+    outside, inside = np.minimum(surface.outside, MOST_MIRRORED), np.minimum(surface.inside, MOST_MIRRORED)
+    return SurfaceSpectra(outside, inside, surface.transmittance)
 
 
 @lru_cache(maxsize=256)
-def shapes(face: Face) -> SurfaceSpectra:
+def shapes(face: Face, angle_deg: float = 0.0) -> SurfaceSpectra:
     """Return the spectra a declared figure may stand for, (shapes, 401); a face that is known has one shape."""
     if face.coating.declared is None:
-        known = nominal(face)
+        known = nominal(face, angle_deg)
         return SurfaceSpectra(known.outside[None], known.inside[None], known.transmittance[None])
     return reflectance_surface(_declared(face).candidates)
 

@@ -1,7 +1,8 @@
 """The options of a visit laid out: keys resolved to items, gaps filled, prices found, what is not sold refused."""
 
-from collections.abc import Callable, Mapping
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, replace
+from typing import TypeVar
 
 from advisor.counsel.case import Case
 from advisor.counsel.choices import Option
@@ -10,7 +11,14 @@ from advisor.counsel.phrases import Figure, Phrase, mark
 from advisor.counsel.prescription import EYES, SphereCylinder, power_for_design
 from advisor.counsel.pricing import best_offer, matching_offers, outside_limits, parts_price
 from advisor.counsel.stock import BARE, Range
-from advisor.counsel.stock_items import Coating, Design, Material, Offer, Tint
+from advisor.counsel.stock_items import Coating, Design, Item, Material, Offer, Tint
+from advisor.errors import TwolightError
+
+K = TypeVar("K", bound=Item)
+
+
+class NothingToLayOut(TwolightError):
+    """The visit names no options and the range has none to fall back on, or no design or material at all."""
 
 
 @dataclass(frozen=True)
@@ -62,17 +70,39 @@ def without_film(option: Laid, stock: Range) -> Laid:
 
 
 NOTE_TEXTS: dict[str, str] = {
-    "hard-coat-assumed": mark("This material is never sold without a hard coat: bare faces are computed as hard coat only."),
-    "estimated-spectrum": mark("Estimated spectrum: a supplier's declared figure on the shape of the nearest built-in film."),
+    "hard-coat-assumed": mark(
+        "This material is never sold without a hard coat: bare faces are computed as hard coat only."
+    ),
+    "estimated-spectrum": mark(
+        "Estimated spectrum: a supplier's declared figure on the shape of the nearest built-in film."
+    ),
     "price-unknown": mark("The price of a part is unknown, so the pair has none."),
     "not-an-offer": mark("The shop lists offers and this pair is none of them."),
+    "centre-below-limit": mark(
+        "The centre asked for, %(centre_mm)s mm, is below the least for this material and wearer."
+    ),
+    "edge-below-limit": mark("The thinnest edge, %(edge_mm)s mm, is below the least for this rim."),
+    "front-given": mark("The front curve is the one asked for, not the shop's or the rule's."),
+    "shown-as-spherical": mark("Shown as spherical curves; the real lens will be flatter."),
+    "tilt-changes-power": mark(
+        "The tilt of %(tilt_deg)s degrees changes the power by %(change_d)s D and adds a cylinder of %(cylinder_d)s D."
+    ),
     "finished-tint": mark("The tint's figure is the supplier's for the finished lens."),
 }
 REFUSAL_TEXTS: dict[str, str] = {
     "sphere-not-made": mark("%(material)s is made from %(low_d)s to %(high_d)s D; this lens needs %(sphere_d)s D."),
-    "cylinder-not-made": mark("%(material)s is made up to a cylinder of %(most_d)s D; this lens needs %(cylinder_d)s D."),
+    "cylinder-not-made": mark(
+        "%(material)s is made up to a cylinder of %(most_d)s D; this lens needs %(cylinder_d)s D."
+    ),
     "not-tintable": mark("%(material)s is not sold with a tint."),
     "not-drillable": mark("%(material)s is not sold for a drilled rim."),
+    "front-surface": mark("%(material)s: the front curve does not reach the rim; choose a flatter one."),
+    "back-surface": mark(
+        "%(material)s: the back curve does not reach the rim; choose another front or a smaller frame."
+    ),
+    "too-thick": mark("%(material)s: no centre up to 30 mm gives this rim its least edge."),
+    "too-thin": mark("The centre asked for is too thin; the least is %(centre_mm)s mm."),
+    "blank-too-small": mark("The largest blank is %(largest_mm)s mm and this frame needs %(blank_mm)s mm."),
     "tint-out-of-reach": mark("No tint gives a finished lens of %(luminous_percent)s %% with these faces."),
 }
 
@@ -85,17 +115,34 @@ def options_of(case: Case) -> tuple[tuple[Option, ...], bool]:
 
 
 def lay_out(case: Case) -> list[Laid]:
-    """Return every option of the visit, resolved; what an option leaves out it takes from the first one."""
+    """Return every option of the visit, resolved.
+
+    A design or material left out is the first option's, else that of the shop's first default option, else the first
+    of the range; a coating left out is bare.
+
+    Raises
+    ------
+    NothingToLayOut
+        If there is no option, or the range has no design or material for one that names none.
+    """
     options, _ = options_of(case)
+    if not options:
+        raise NothingToLayOut("There is nothing to compare: give the visit options, or the range default_options.")
     laid: list[Laid] = []
     for index, option in enumerate(options):
         laid.append(_one(case, option, index, laid[0] if laid else None))
     return laid
 
 
+def _first(items: Sequence[K], name: str) -> K:
+    if not items:
+        raise NothingToLayOut(f"{name} is left out and the range has none to take instead.")
+    return items[0]
+
+
 def _one(case: Case, option: Option, index: int, first: Laid | None) -> Laid:
-    stock, defaults = case.stock, []
-    design, material = first and first.design, first and first.material
+    stock, defaults = case.stock, list[str]()
+    design, material = (first.design, first.material) if first else (None, None)
     if option.design is not None:
         design = stock.design_of(option.design)
     else:
@@ -104,7 +151,13 @@ def _one(case: Case, option: Option, index: int, first: Laid | None) -> Laid:
         material = stock.material_of(option.material)
     else:
         defaults.append(f"options[{index}].material")
-    design, material = design or stock.design[0], material or stock.material[0]
+    usual = next(iter(stock.shop.default_options or ()), Option())
+    if design is None:
+        place = f"options[{index}].design"
+        design = _first(stock.design, place) if usual.design is None else stock.design_of(usual.design)
+    if material is None:
+        place = f"options[{index}].material"
+        material = _first(stock.material, place) if usual.material is None else stock.material_of(usual.material)
     asked = (BARE, BARE) if option.coating is None else stock.faces_of(option.coating)
     if option.coating is None:
         defaults.append(f"options[{index}].coating")
@@ -117,9 +170,7 @@ def _one(case: Case, option: Option, index: int, first: Laid | None) -> Laid:
         for eye in EYES
     )
     powers = (right, left)
-    offers = matching_offers(
-        stock, design=design.key, material=material.key, front=front, back=back, tint=tint
-    )
+    offers = matching_offers(stock, design=design.key, material=material, front=front, back=back, tint=tint)
     offer = best_offer(offers, powers)
     price = parts_price(design, material=material, front=front, back=back, tint=tint) if offer is None else offer.price
     notes = list(_notes(stock, offer, price, (front, back), asked, tint))
@@ -168,9 +219,9 @@ def _refusals(
     """Say what of the material's limits this pair breaks, each with the nearest material that does not."""
     found = []
     name = material.label or material.key
-    broken = outside_limits(material, powers)
-    if broken is not None:
-        worst = max(powers, key=lambda p: max(abs(p.sphere_d), abs(p.sphere_d + p.cylinder_d)))
+    outside = outside_limits(material, powers)
+    if outside is not None:
+        broken, worst = outside
         nearest = _nearest(stock, material, lambda other: outside_limits(other, powers) is None)
         if broken == "sphere_range_d" and material.sphere_range_d is not None:
             low, high = material.sphere_range_d

@@ -1,9 +1,10 @@
 """Rows of a comparison for people: what the text table, the CSV file and the page show, in the same order."""
 
+import math
 from collections.abc import Callable
 from dataclasses import dataclass
 
-from advisor.counsel.comparison import Comparison, EyeFigures, OptionFigures
+from advisor.counsel.comparison import Comparison, EyeFigures, Ghost, OptionFigures, Path, Verdict
 from advisor.counsel.phrases import Translator, mark
 
 Value = float | None
@@ -27,6 +28,14 @@ class Row:
             return "–"
         shown = translator.number(value * self.scale, digits=self.digits)
         return f"{shown} {self.unit}".rstrip()
+
+    def difference(self, value: Value, base: Value, translator: Translator) -> str:
+        """Return by how much a figure differs from the baseline's; empty where one of them is missing or none shows."""
+        if value is None or base is None:
+            return ""
+        shown = translator.number((value - base) * self.scale, digits=self.digits, signed=True)
+        unit = translator.gettext(mark("points")) if self.unit == "%" else self.unit
+        return f"{shown} {unit}".rstrip() if round((value - base) * self.scale, self.digits) else ""
 
 
 def ghost_strength(path: str) -> Callable[[EyeFigures], Value]:
@@ -54,7 +63,9 @@ ROWS: tuple[Row, ...] = (
     Row("edge_thinnest_mm", mark("thinnest edge"), lambda eye: eye.edge_thinnest_mm, 1, "mm"),
     Row("front_power_d", mark("front curve"), lambda eye: eye.front_power_d, 2, "D"),
     Row("blank_mm", mark("smallest blank"), lambda eye: eye.blank_mm, 0, "mm"),
-    Row("reflectance_front", mark("front mirrors, as designed"), lambda eye: eye.luminous_reflectance.front, 2, "%", 100),
+    Row(
+        "reflectance_front", mark("front mirrors, as designed"), lambda eye: eye.luminous_reflectance.front, 2, "%", 100
+    ),
     Row("reflectance_front_low", mark("front mirrors, as made, least"), _as_made("front", 0), 2, "%", 100),
     Row("reflectance_front_high", mark("front mirrors, as made, most"), _as_made("front", 2), 2, "%", 100),
     Row("reflectance_back", mark("back mirrors, as designed"), lambda eye: eye.luminous_reflectance.back, 2, "%", 100),
@@ -86,3 +97,47 @@ def two_eyes(row: Row, option: OptionFigures, translator: Translator) -> str:
     if not texts:
         return "–"
     return texts[0] if len(set(texts)) == 1 else " / ".join(texts)
+
+
+VERDICTS: dict[Verdict, str] = {
+    "not noticed": mark("not noticed"),
+    "at the limit": mark("at the limit"),
+    "only if looked for": mark("only if looked for"),
+    "noticeable": mark("noticeable"),
+    "plain": mark("plain"),
+}
+PATH_WORDS: dict[Path, str] = {
+    "ahead-inner": mark("a light ahead, mirrored twice inside the lens"),
+    "behind-back": mark("a light behind, mirrored by the back"),
+    "behind-front": mark("a light behind, mirrored by the front"),
+    "cornea-back": mark("a light ahead, off the eye and the back"),
+    "cornea-front": mark("a light ahead, off the eye and the front"),
+}
+OF_THE_LIGHT_AHEAD = mark("1 part in %(parts)s of the light itself")
+OF_THE_LIGHT_BEHIND = mark("1 part in %(parts)s of the light behind")
+
+
+def second_image(option: OptionFigures) -> Ghost | None:
+    """Return the ghost that counts of both eyes: the most visible where visibility was worked out, else the strongest.
+
+    Without visibility the image mirrored twice inside the lens comes first, if any light ahead is laid out.
+    """
+    ghosts = [ghost for eye in (option.right, option.left) if eye is not None for ghost in eye.ghosts]
+    order = list(VERDICTS)
+    judged = [(order.index(ghost.verdict), ghost) for ghost in ghosts if ghost.verdict is not None]
+    if judged:
+        return max(judged, key=lambda pair: (pair[0], pair[1].visibility_level or 0.0))[1]
+    ahead = [ghost for ghost in ghosts if ghost.path == "ahead-inner"]
+    return max(ahead or ghosts, key=lambda ghost: ghost.strength, default=None)
+
+
+def strength_words(ghost: Ghost, translator: Translator) -> str:
+    """Return the strength of a ghost as a part of the light that makes it: "1 part in 630 of the light itself"."""
+    text = translator.gettext(OF_THE_LIGHT_BEHIND if ghost.path.startswith("behind") else OF_THE_LIGHT_AHEAD)
+    parts = two_digits(1.0 / ghost.strength) if ghost.strength > 0.0 else math.inf
+    return text % {"parts": translator.number(parts, digits=0) if math.isfinite(parts) else "∞"}
+
+
+def two_digits(value: float) -> float:
+    """Round to two digits, as many as a strength is known to."""
+    return float(f"{value:.1e}")

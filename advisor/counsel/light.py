@@ -2,25 +2,28 @@
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from functools import lru_cache
+from typing import NamedTuple
 
 import numpy as np
 from numpy.typing import NDArray
 
-from advisor.counsel.faces import Face, luminous_reflectance, made_reflectance, shapes
+from advisor.counsel.faces import Face, luminous_reflectance, made, made_reflectance, nominal, shapes
 from advisor.counsel.laid_out import Laid
 from advisor.counsel.spectra import LensSpectra, lens_spectra, tint_axes
 from advisor.counsel.stock_items import Scene
 from advisor.optics.as_made import spread
 from advisor.optics.ghost_strength import PATHS, lens_transmittance, path_strengths, weighted_strengths
-from advisor.optics.photometry import luminous_mean
+from advisor.optics.photometry import IlluminantName, luminous_mean
 from advisor.optics.surface import SurfaceSpectra
 
 Floats = NDArray[np.float64]
+DEFAULT_INCIDENCE_DEG = 35.0  # light from behind must pass the head; a modelling choice
 
 
 @dataclass(frozen=True)
 class Light:
-    """Figures of light. Axes: every array (option,) but ``strengths``, which is (option, scene, path)."""
+    """Figures of light. Axes: (option,) but for ``strengths`` (option, scene, path) and ``passed`` (option, scene)."""
 
     front: Floats
     back: Floats
@@ -29,12 +32,14 @@ class Light:
     transmittance: Floats
     transmittance_dark: Floats
     strengths: Floats
+    passed: Floats
     tint_fits: NDArray[np.bool_]
 
 
 def light_of(laid: Sequence[Laid], scenes: Sequence[Scene]) -> Light:
-    """Return the figures of light of every option in every scene; the scenes' light falls on straight."""
+    """Return the figures of light of every option in every scene."""
     spectra = lens_spectra(laid)
+    strengths, through = scene_strengths(laid, scenes)
     passed = spectra.transmittance()
     return Light(
         front=np.array([luminous_reflectance(option.front_face) for option in laid]),
@@ -43,25 +48,53 @@ def light_of(laid: Sequence[Laid], scenes: Sequence[Scene]) -> Light:
         whole_lens=spectra.reflectance(),
         transmittance=luminous_mean(passed),
         transmittance_dark=luminous_mean(spectra.transmittance(dark=True)),
-        strengths=scene_strengths(spectra, scenes),
+        strengths=strengths,
+        passed=through,
         tint_fits=spectra.tint_fits,
     )
 
 
-def scene_strengths(spectra: LensSpectra, scenes: Sequence[Scene]) -> Floats:
-    """Return the strength of each path in each scene, (option, scene, path), under the scene's light and tint state."""
-    found: dict[tuple[str, bool], Floats] = {}
+def scene_strengths(laid: Sequence[Laid], scenes: Sequence[Scene]) -> tuple[Floats, Floats]:
+    """Return the strength of each path (option, scene, path) and the light each lens passes (option, scene).
+
+    Light from behind meets the lens at the scene's incidence; both are weighed with the scene's light, in its state of
+    the tint.
+    """
+    spectra: dict[float, LensSpectra] = {}
+    found: dict[SceneLight, tuple[Floats, Floats]] = {}
     for scene in scenes:
-        key = (scene.illuminant, scene.tint_state == "dark")
-        if key not in found:
-            found[key] = weighted_strengths(
-                spectra.strengths(dark=key[1]),
-                transmittance=spectra.transmittance(dark=key[1]),
-                illuminant=scene.illuminant,
-            )
+        key = scene_light(scene)
+        if key in found:
+            continue
+        if key.angle_deg not in spectra:
+            spectra[key.angle_deg] = lens_spectra(laid, angle_deg=key.angle_deg)
+        at_angle = spectra[key.angle_deg]
+        straight = spectra.setdefault(0.0, at_angle if key.angle_deg == 0.0 else lens_spectra(laid))
+        passed = straight.transmittance(dark=key.dark)
+        strengths = weighted_strengths(
+            at_angle.strengths(dark=key.dark), transmittance=passed, illuminant=key.illuminant
+        )
+        found[key] = strengths, luminous_mean(passed, illuminant=key.illuminant)
     if not scenes:
-        return np.empty((len(spectra.tint_fits), 0, len(PATHS)))
-    return np.stack([found[scene.illuminant, scene.tint_state == "dark"] for scene in scenes], axis=1)
+        return np.empty((len(laid), 0, len(PATHS))), np.empty((len(laid), 0))
+    each = [found[scene_light(scene)] for scene in scenes]
+    return np.stack([strength for strength, _ in each], axis=1), np.stack([passed for _, passed in each], axis=1)
+
+
+class SceneLight(NamedTuple):
+    """What of a scene decides how strong the paths are."""
+
+    angle_deg: float
+    illuminant: IlluminantName
+    dark: bool
+
+
+def scene_light(scene: Scene) -> SceneLight:
+    """Return what of a scene decides how strong the paths are; light from ahead falls on straight."""
+    angle = 0.0
+    if scene.where == "behind":
+        angle = DEFAULT_INCIDENCE_DEG if scene.incidence_deg is None else scene.incidence_deg
+    return SceneLight(angle, scene.illuminant, scene.tint_state == "dark")
 
 
 def as_made_spreads(option: Laid) -> tuple[Floats | None, Floats | None, Floats | None]:
@@ -81,24 +114,49 @@ def as_made_spreads(option: Laid) -> tuple[Floats | None, Floats | None, Floats 
 def estimated_ranges(option: Laid, scenes: Sequence[Scene]) -> Floats | None:
     """Return the least and greatest strength over the shapes a declared figure may have, (2, scene, path), or None."""
     front_face, back_face = option.front_face, option.back_face
-    if not (front_face.is_estimated or back_face.is_estimated):
+    if not scenes or not (front_face.is_estimated or back_face.is_estimated):
         return None
-    front, back = _paired(front_face, back_face)
     ranges = []
     for scene in scenes:
-        bright, crossed = tint_axes(option, dark=scene.tint_state == "dark") or (1.0, 1.0)
+        key = scene_light(scene)
+        bright, crossed = tint_axes(option, dark=key.dark) or (1.0, 1.0)
+        front, back = _paired(front_face, back_face, angle_deg=key.angle_deg)
         strengths = weighted_strengths(
             path_strengths(front, back, internal_transmittance=bright, dark_axis_transmittance=crossed),
-            transmittance=lens_transmittance(front, back, internal_transmittance=bright, dark_axis_transmittance=crossed),
+            transmittance=lens_transmittance(
+                front, back, internal_transmittance=bright, dark_axis_transmittance=crossed
+            ),
             illuminant=scene.illuminant,
         )
         ranges.append([strengths.min(axis=0), strengths.max(axis=0)])
     return np.array(ranges).transpose(1, 0, 2)
 
 
-def _paired(front: Face, back: Face) -> tuple[SurfaceSpectra, SurfaceSpectra]:
+@lru_cache(maxsize=4096)
+def made_strengths(front: Face, back: Face, axes: tuple[float, float], light: SceneLight) -> Floats | None:
+    """Return the 5 and 95 % points of the strength of each path over lenses as made, (2, path), or None."""
+    one, other = made(front, light.angle_deg), made(back, light.angle_deg)
+    if one is None and other is None:
+        return None
+    fronts = nominal(front, light.angle_deg) if one is None else one
+    backs = nominal(back, light.angle_deg) if other is None else _rolled(other)
+    bright, crossed = axes
+    strengths = weighted_strengths(
+        path_strengths(fronts, backs, internal_transmittance=bright, dark_axis_transmittance=crossed),
+        transmittance=lens_transmittance(fronts, backs, internal_transmittance=bright, dark_axis_transmittance=crossed),
+        illuminant=light.illuminant,
+    )
+    return spread(strengths, percentiles=(5.0, 95.0))
+
+
+def _rolled(surface: SurfaceSpectra) -> SurfaceSpectra:
+    """Return the samples in another order: the two faces of a lens are coated in runs of their own."""
+    return _taken(surface, np.roll(np.arange(len(surface.outside)), len(surface.outside) // 2))
+
+
+def _paired(front: Face, back: Face, *, angle_deg: float) -> tuple[SurfaceSpectra, SurfaceSpectra]:
     """Return the shapes of both faces side by side: the same shape on both where the coating is the same."""
-    one, other = shapes(front), shapes(back)
+    one, other = shapes(front, angle_deg), shapes(back, angle_deg)
     if front == back:
         return one, other
     count, times = len(one.outside), len(other.outside)

@@ -20,7 +20,9 @@ REASONS: dict[str, str] = {
     "missing-height": mark("The fitting height of the %(eye)s eye is a default; measure it."),
     "missing-rim": mark("The kind of rim is not given."),
     "missing-box": mark("The box of the frame (a, b, DBL) is not given in full."),
-    "missing-tested-vertex": mark("The power reaches 5.00 and the tested vertex distance is not given; ask the prescriber."),
+    "missing-tested-vertex": mark(
+        "The power reaches 5.00 and the tested vertex distance is not given; ask the prescriber."
+    ),
     "missing-fitted-vertex": mark("The power reaches 5.00 and the fitted vertex distance is not measured."),
     "not-asked-impact": mark("Nobody asked whether anything could knock the glasses."),
     "not-asked-one_good_eye": mark("Nobody asked whether one eye is much weaker."),

@@ -2,6 +2,7 @@
 
 from collections.abc import Iterable
 
+from advisor.counsel.faces import sold_coating
 from advisor.counsel.prescription import SphereCylinder, in_minus_cylinder
 from advisor.counsel.stock import BARE, Range
 from advisor.counsel.stock_items import Coating, Design, Limits, Material, Offer, Tint
@@ -22,7 +23,7 @@ def _sum(prices: Iterable[float | None]) -> float | None:
 
 
 def matching_offers(
-    stock: Range, *, design: str, material: str, front: Coating, back: Coating, tint: Tint | None
+    stock: Range, *, design: str, material: Material, front: Coating, back: Coating, tint: Tint | None
 ) -> list[Offer]:
     """Return the offers that are this very pair, whatever their limits of power.
 
@@ -33,26 +34,26 @@ def matching_offers(
         offer
         for offer in stock.offer
         if offer.design == design
-        and offer.material == material
-        and offer.coating == back.key
+        and offer.material == material.key
+        and sold_coating(material, stock.coating_of(offer.coating), stock).key == back.key
         and offer.tint == (None if tint is None else tint.key)
         and (front.key == back.key if offer.faces == "both" else front_is_bare)
     ]
 
 
-def outside_limits(limits: Limits, powers: Iterable[SphereCylinder]) -> str | None:
-    """Return the name of the limit that one of the powers breaks, or None; a limit left out sets none.
+def outside_limits(limits: Limits, powers: Iterable[SphereCylinder]) -> tuple[str, SphereCylinder] | None:
+    """Return the name of a limit and the power that breaks it, or None; a limit left out sets none.
 
-    The sphere is judged in minus-cylinder writing, as ranges are listed.
+    The power is judged, and returned, in minus-cylinder writing, as ranges are listed.
     """
     for power in powers:
         minus = in_minus_cylinder(power)
         if limits.sphere_range_d is not None:
             low, high = limits.sphere_range_d
             if not low <= minus.sphere_d <= high:
-                return "sphere_range_d"
+                return "sphere_range_d", minus
         if limits.cylinder_max_d is not None and abs(minus.cylinder_d) > limits.cylinder_max_d:
-            return "cylinder_max_d"
+            return "cylinder_max_d", minus
     return None
 
 

@@ -1,6 +1,6 @@
 """What differs by region: paper, the emergency wording. Local rules always come before anything said here.
 
-The keys are the words a range file may give as ``shop.region``; an unknown one is read as international.
+The keys are the words a range file may give as ``shop.region``; the range file refuses any other.
 """
 
 from dataclasses import dataclass

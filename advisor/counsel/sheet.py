@@ -7,8 +7,8 @@ from typing import Literal
 from advisor.counsel.care import CARE_TEXTS, care_lines
 from advisor.counsel.caution_texts import CAUTION_TEXTS
 from advisor.counsel.cautions import cautions_for
-from advisor.counsel.comparison import Comparison, EyeFigures, OptionFigures
 from advisor.counsel.compare import Computed, lens_light
+from advisor.counsel.comparison import Comparison, EyeFigures, OptionFigures
 from advisor.counsel.laid_out import Laid
 from advisor.counsel.phrases import Figure, Phrase, mark
 from advisor.counsel.sheet_texts import HEADINGS, LINES
@@ -79,7 +79,7 @@ def choose(computed: Computed, *, number: int | None) -> int:
     makeable = [option.index for option in laid if not option.refused]
     if index is None:
         others = [k for k in makeable if k != (visit.baseline or 0)]
-        index = (others or makeable or [None])[0]
+        index = next(iter(others or makeable), None)
     if index is None or index not in makeable:
         raise NoSuchOption("This option cannot be made, so there is nothing to print; choose another one.")
     return index

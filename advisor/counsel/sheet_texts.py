@@ -22,8 +22,12 @@ LINES: dict[str, str] = {
     "for-far": mark("They are made for looking far away."),
     "for-near": mark("They are made for reading and near work."),
     "for-desk": mark("They are made for the desk and the screen."),
-    "for-far-and-near-line": mark("They are made for far and near. Look ahead for far. Look down through the lower part to read."),
-    "for-far-to-near": mark("They are made for far, screen and near. Look ahead for far. Lower your eyes, not your head, to read."),
+    "for-far-and-near-line": mark(
+        "They are made for far and near. Look ahead for far. Look down through the lower part to read."
+    ),
+    "for-far-to-near": mark(
+        "They are made for far, screen and near. Look ahead for far. Lower your eyes, not your head, to read."
+    ),
     "for-wear": mark("Wear them when you need to see clearly at these distances."),
     # what was chosen
     "chosen-lens": mark("Lens: %(material)s"),
@@ -34,8 +38,12 @@ LINES: dict[str, str] = {
     "chosen-price": mark("Price of the pair of lenses: %(price)s"),
     # why: computed figures
     "mirrors-bare": mark("Without a coating, these lenses would mirror away about %(bare_percent)s %% of the light."),
-    "mirrors-hard-coat": mark("With a hard coat only, these lenses would mirror away about %(bare_percent)s %% of the light."),
-    "mirrors-coated": mark("With your coating it is %(low_percent)s to %(high_percent)s %%. Each pair differs a little."),
+    "mirrors-hard-coat": mark(
+        "With a hard coat only, these lenses would mirror away about %(bare_percent)s %% of the light."
+    ),
+    "mirrors-coated": mark(
+        "With your coating it is %(low_percent)s to %(high_percent)s %%. Each pair differs a little."
+    ),
     "mirrors-coated-stated": mark("With your coating it is about %(percent)s %%, by the maker's figure."),
     "mirrors-uncoated": mark("These lenses mirror away about %(percent)s %% of the light."),
     "passes": mark("The tinted lens lets about %(luminous_percent)s %% of the light through."),
@@ -61,7 +69,9 @@ LINES: dict[str, str] = {
     "back-unclear": mark("Things are not clear, or you feel sick or get headaches after two weeks."),
     "back-second": mark("You see a second light beside a lamp, or a reflection that bothers you."),
     "back-damage": mark("The lens is loose, scratched, peeling or crazed."),
-    "back-soon": mark("Night glare slowly grows, or you see rings round lights without pain. Have your eyes tested soon."),
+    "back-soon": mark(
+        "Night glare slowly grows, or you see rings round lights without pain. Have your eyes tested soon."
+    ),
     # today
     "today-loss": mark("sudden loss of sight, or a curtain or shadow"),
     "today-flashes": mark("new flashes or new floating spots"),

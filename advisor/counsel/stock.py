@@ -11,6 +11,7 @@ from advisor.counsel.choices import CoatingRef, Faces, MaterialRef, Option, Tint
 from advisor.counsel.faults import Fault, Faults, fault, faults_from, unknown_key
 from advisor.counsel.fields import Key, Line, Number, Paragraph, Strict
 from advisor.counsel.files import parse_toml, read_text
+from advisor.counsel.regions import REGIONS
 from advisor.counsel.stock_items import IN_PLACE, Coating, Design, Item, Material, Offer, Scene, Tint
 from advisor.counsel.toml_writing import toml_text
 from advisor.errors import TwolightError
@@ -26,7 +27,11 @@ class UnknownStock(TwolightError):
 
 
 class Shop(Strict):
-    """The shop itself; ``region`` names the tolerances, paper, emergency wording and tint names that apply."""
+    """The shop itself.
+
+    ``region`` names the tolerances, paper, emergency wording and tint names that apply: one of ``regions.REGIONS``
+    (international, eu, uk, us); left out, it is the built-in range's, international.
+    """
 
     name: Line | None = None
     contact: Paragraph | None = None
@@ -122,6 +127,8 @@ def range_faults(stock: Range, *, file: str = "") -> Iterator[Fault]:
     for place, coating in enumerate(stock.coating):
         if coating.key == "bare" and (coating.layers != () or coating.hard_coat):
             yield fault("bare-has-film", file=file, field=f"coating[{place}]")
+    if stock.shop.region is not None and stock.shop.region not in REGIONS:
+        yield fault("not-one-of", file=file, field="shop.region", figures={"expected": ", ".join(REGIONS)})
     for place, offer in enumerate(stock.offer):
         yield from option_faults(offer, stock=stock, place=f"offer[{place}]", file=file)
     for place, option in enumerate(stock.shop.default_options or ()):

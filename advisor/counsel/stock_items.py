@@ -101,7 +101,7 @@ class HardCoat(Strict):
 class Declared(Strict):
     """What a supplier states about a film whose layers are not known."""
 
-    luminous_reflectance: Number[Fraction]
+    luminous_reflectance: Number[Annotated[float, Field(gt=0, le=1)]]
     hue: Hue = "neutral"
 
 
@@ -121,7 +121,7 @@ def _known_film(name: str) -> str:
 
 FILM_OR_INDEX = Annotated[
     Annotated[Key, AfterValidator(_known_film), tagged("film")]
-    | Annotated[Number[Annotated[float, Field(ge=1, le=5)]], tagged("index")],
+    | Annotated[Number[Annotated[float, Field(ge=1, le=4)]], tagged("index")],
     alternatives(lambda v: {"key": "film", "number": "index"}.get(by_shape(v) or ""), code="film-or-index"),
 ]
 Layer = tuple[FILM_OR_INDEX, Number[Annotated[float, Field(ge=0, le=20_000)]]]

@@ -16,13 +16,12 @@ from types import MappingProxyType
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
+from advisor.optics.ghost_strength import PATHS as PATHS  # one order of the paths for strengths and places
 from advisor.optics.lens_section import LensSection
 
 Floats = NDArray[np.float64]
 
-PATHS = ("ahead-inner", "behind-back", "behind-front", "cornea-back", "cornea-front")
 FROM_BEHIND = np.array([path.startswith("behind") for path in PATHS])
-OFF_CORNEA = np.array([path.startswith("cornea") for path in PATHS])
 
 CORNEA_RADIUS_MM = 7.8
 MAX_VERGENCE_D = 1e4

@@ -5,7 +5,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from advisor.optics.ghost_image import along_meridians, direction_seen, extent_along_meridians
+from advisor.optics.ghost_image import SMALLEST_ANGLE_RAD, along_meridians, direction_seen, extent_along_meridians
 from advisor.optics.ghost_inputs import LensOnFace, Scene, Wearer
 from advisor.optics.ghost_path import (
     CORNEA_RADIUS_MM,
@@ -113,5 +113,5 @@ def separation_deg(place: GhostPlace) -> Floats:
 
 def on_source(place: GhostPlace) -> NDArray[np.bool_]:
     """Tell which ghosts, (..., 5), stand under half the source's image from its middle."""
-    half = np.maximum(place.source_seen_rad[..., None, :] / 2.0, np.finfo(np.float64).tiny)
+    half = np.maximum(place.source_seen_rad[..., None, :] / 2.0, SMALLEST_ANGLE_RAD)
     return np.asarray(np.sum((place.separation_rad / half) ** 2, axis=-1) < 1.0, dtype=np.bool_)

@@ -8,13 +8,12 @@ from numpy.typing import ArrayLike, NDArray
 from advisor.optics.ghost_inputs import LensOnFace, Scene, Wearer
 from advisor.optics.ghost_place import place_ghosts
 from advisor.optics.ghost_scene import see_ghosts
+from advisor.optics.ghost_strength import CORNEA_REFLECTANCE
 
 Floats = NDArray[np.float64]
 
-CORNEA_REFLECTANCE = 0.025
-"""Published indices of the cornea give 2.1 to 3.1 %."""
-
 LEAST_REFLECTANCE = 1e-7
+GREATEST_BARE_REFLECTANCE = 0.2
 _HALVINGS = 24
 
 
@@ -48,10 +47,11 @@ def reflectance_limit(
     bare_reflectance: ArrayLike,
     visibility_level: float,
     internal_transmittance: ArrayLike = 1.0,
+    accommodated: bool = True,
 ) -> ReflectanceLimit:
     """Return the greatest R, the same on both faces and at all wavelengths, that keeps the worst ghost at a level.
 
-    The worst is over the paths of the scene, with the eye relaxed and accommodated. Solved by halving the logarithm
+    The worst is over the paths of the scene, with the eye relaxed and, unless left out, accommodated on the ghost. Solved by halving the logarithm
     of R: with R change not only the strengths but the transmittance, and with it background, veil, and the pupil.
 
     Parameters
@@ -59,11 +59,13 @@ def reflectance_limit(
     lens, scene, wearer
         As in `see_ghosts`.
     bare_reflectance : array_like, (...)
-        Of the bare surface, above 0, at most 0.3: up to there every ghost grows with R.
+        Of the bare surface, above 0, at most 0.2 (index 2.6): up to there every ghost grows with R.
     visibility_level : float
         Above 0; 0.4 for "not noticed", 1 for "at the limit".
     internal_transmittance : array_like, (...)
         Of the material with its tint, above 0, at most 1.
+    accommodated : bool
+        False to judge the ghost only as it looks while the eye stays focused on what the scene fixates.
 
     Returns
     -------
@@ -72,8 +74,8 @@ def reflectance_limit(
     """
     bare = np.asarray(bare_reflectance, dtype=np.float64)
     tau = np.asarray(internal_transmittance, dtype=np.float64)
-    if not ((bare > LEAST_REFLECTANCE) & (bare <= 0.3)).all():
-        raise ValueError("bare_reflectance must be above 0, at most 0.3")
+    if not ((bare > LEAST_REFLECTANCE) & (bare <= GREATEST_BARE_REFLECTANCE)).all():
+        raise ValueError("bare_reflectance must be above 0, at most 0.2")
     if not visibility_level > 0.0:
         raise ValueError("visibility_level must be above 0")
     if not ((tau > 0.0) & (tau <= 1.0)).all():
@@ -83,7 +85,9 @@ def reflectance_limit(
     def kept(log_reflectance: Floats) -> NDArray[np.bool_]:
         strengths, through = flat_strengths(np.exp(log_reflectance), internal_transmittance=tau)
         ghosts = see_ghosts(lens, scene=scene, wearer=wearer, strengths=strengths, transmittance=through, place=place)
-        level = np.maximum(ghosts.relaxed.visibility_level, ghosts.accommodated.visibility_level)
+        level = ghosts.relaxed.visibility_level
+        if accommodated:
+            level = np.maximum(level, ghosts.accommodated.visibility_level)
         return np.asarray(level.max(axis=-1) <= visibility_level, dtype=np.bool_)
 
     even_bare = kept(np.log(bare))

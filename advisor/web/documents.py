@@ -8,12 +8,13 @@ from dataclasses import asdict
 from typing import Any
 
 from advisor.counsel.caution_texts import CAUTION_TEXTS
-from advisor.counsel.compare import Computed, answer_of, compute, lens_light
 from advisor.counsel.cautions import cautions_for
+from advisor.counsel.compare import Computed, answer_of, compute, lens_light
 from advisor.counsel.order import EYE_WORDS, order_of
 from advisor.counsel.phrases import Phrase, say
 from advisor.counsel.regions import region_of
-from advisor.counsel.sheet import SHEET_TEXTS, Sheet, choose, wearer_sheet as sheet_content
+from advisor.counsel.sheet import SHEET_TEXTS, Sheet, choose
+from advisor.counsel.sheet import wearer_sheet as sheet_content
 from advisor.counsel.stock import Range
 from advisor.counsel.visit import Visit
 from advisor.resources import resource_dir

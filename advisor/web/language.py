@@ -7,12 +7,8 @@ differ from the screen's, so a language is an object that is handed on, never a 
 import datetime
 from functools import cache
 from pathlib import Path
-from typing import TYPE_CHECKING
 
 from advisor.errors import TwolightError
-
-if TYPE_CHECKING:
-    from babel.support import NullTranslations
 
 TRANSLATIONS = Path(__file__).resolve().parent.parent / "translations"
 SOURCE_LANGUAGE = "en"
@@ -25,7 +21,7 @@ class UnknownLanguage(TwolightError):
 
 def languages() -> list[str]:
     """Return the codes of the languages that have a catalogue, the source language first."""
-    found = sorted(folder.name for folder in TRANSLATIONS.iterdir() if (folder / "LC_MESSAGES").is_dir())
+    found = sorted(folder.parent.name for folder in TRANSLATIONS.glob("*/LC_MESSAGES"))
     return [SOURCE_LANGUAGE, *(code for code in found if code != SOURCE_LANGUAGE)]
 
 

@@ -55,8 +55,9 @@ def is_available() -> bool:
 @cache
 def _fetcher_class() -> Any:
     weasyprint_urls = _weasyprint().urls
+    base: Any = weasyprint_urls.URLFetcher
 
-    class StaticOnly(weasyprint_urls.URLFetcher):  # type: ignore[misc]  # the base class has no types
+    class StaticOnly(base):  # type: ignore[misc]  # the base class has no types
         """Answers from ``static/`` alone and remembers what it refused."""
 
         def __init__(self) -> None:
@@ -66,11 +67,11 @@ def _fetcher_class() -> Any:
         def fetch(self, url: str, headers: object = None) -> Any:  # noqa: ARG002  # the base class's signature
             static = resource_dir("static").resolve()
             parts = urlsplit(url)
-            wanted = (static.parent / unquote(parts.path).lstrip("/")).resolve()
-            inside = parts.netloc == "twolight.invalid" and parts.scheme == "http"
-            if unquote(parts.path).startswith("/static/"):
-                wanted = (static / unquote(parts.path).removeprefix("/static/")).resolve()
-            if not inside or not wanted.is_relative_to(static) or not wanted.is_file():
+            path = unquote(parts.path)
+            ours = parts.netloc == "twolight.invalid" and parts.scheme == "http"
+            ours = ours and path.startswith("/static/") and "\0" not in path
+            wanted = (static / path.removeprefix("/static/")).resolve() if ours else static
+            if not wanted.is_relative_to(static) or not wanted.is_file():
                 self.refused.append(url)
                 raise ValueError("Only files of the program itself may be fetched.")
             kind = mimetypes.guess_type(wanted.name)[0] or "application/octet-stream"
@@ -97,7 +98,7 @@ def write_pdf(html: str) -> bytes:
             weasyprint.HTML(string=html, base_url=BASE_URL, url_fetcher=fetcher).write_pdf(
                 target, pdf_variant="pdf/ua-1", pdf_tags=True
             )
-        except Exception as error:  # noqa: BLE001  # whatever the layout engine raises, the visit must survive it
+        except Exception as error:  # whatever the layout engine raises, the visit must survive it
             print(f"twolight: the page layout failed: {type(error).__name__}", file=sys.stderr)
             raise PdfFailed("The page could not be laid out; print it from the browser instead.") from error
     if fetcher.refused:

@@ -18,6 +18,11 @@ def shown_width(text: str) -> int:
     return sum(2 if unicodedata.east_asian_width(c) in "WF" else not unicodedata.combining(c) for c in text)
 
 
+def one_line(text: str) -> str:
+    """Return a text that cannot move a terminal's cursor or start a line of its own."""
+    return "".join(c if c.isprintable() else "\N{REPLACEMENT CHARACTER}" for c in text)
+
+
 def _padded(text: str, width: int, *, right: bool = False) -> str:
     room = " " * max(0, width - shown_width(text))
     return room + text if right else text + room
@@ -43,6 +48,7 @@ def text_table(comparison: Comparison, *, title: str, currency: str, language: L
     def line(label: str, cells: Iterable[str]) -> str:
         return (_padded(label, first) + "  ".join(_padded(cell, WIDTH, right=True) for cell in cells)).rstrip()
 
+    title = one_line(title)
     lines = [title, "=" * shown_width(title)]
     for k in range(max(len(head) for head in heads)):
         lines.append(line("", [head[k] if k < len(head) else "" for head in heads]))
@@ -58,12 +64,12 @@ def text_table(comparison: Comparison, *, title: str, currency: str, language: L
         lines += [f"{_('Caution')}: {caution.text}" for caution in comparison.advice.cautions]
     if comparison.defaults_used:
         lines.append(f"{_('Defaults used')}: {', '.join(comparison.defaults_used)}")
-    return "\n".join(lines).rstrip() + "\n"
+    return "\n".join(one_line(text) for text in lines).rstrip() + "\n"
 
 
 def harmless(cell: str) -> str:
     """Return a text cell that no spreadsheet takes for a formula (OWASP, CSV injection)."""
-    return "'" + cell if cell[:1] in ("=", "+", "-", "@", "\t", "\r") else cell
+    return "'" + cell if cell[:1] in ("=", "+", "-", "@", "\t", "\r", "\n") else cell
 
 
 def csv_rows(comparison: Comparison, *, file: str) -> list[list[str | float]]:

@@ -6,12 +6,13 @@ from typing import Literal
 
 from pydantic import BaseModel
 
+from advisor.counsel.comparison import Comparison
 from advisor.counsel.stock import Range
 from advisor.counsel.visit import Visit
 
-SchemaName = Literal["visit", "range"]
+SchemaName = Literal["visit", "range", "comparison"]
 
-MODELS: dict[SchemaName, type[BaseModel]] = {"visit": Visit, "range": Range}
+MODELS: dict[SchemaName, type[BaseModel]] = {"visit": Visit, "range": Range, "comparison": Comparison}
 
 
 def schema_text(name: SchemaName) -> str:

@@ -1,0 +1,93 @@
+"""What the lens form has to say of an option: why it cannot be made, the nearest that can, and what to watch."""
+
+from collections.abc import Iterator, Mapping, Sequence
+from dataclasses import replace
+
+import numpy as np
+
+from advisor.counsel.case import Case
+from advisor.counsel.form import LensForms, powers_of, shape_of
+from advisor.counsel.laid_out import Laid, Refused
+from advisor.counsel.phrases import Figure, Phrase
+from advisor.counsel.prescription import EYES
+from advisor.optics.thickness import Refusal
+from advisor.optics.tilt import martin_tilt
+
+TILT_CHANGE_FROM_D = 0.12  # half a quarter-dioptre step
+CODES = {
+    Refusal.FRONT_SURFACE: "front-surface",
+    Refusal.BACK_SURFACE: "back-surface",
+    Refusal.TOO_THICK: "too-thick",
+    Refusal.TOO_THIN: "too-thin",
+}
+
+
+def with_form_findings(case: Case, laid: Sequence[Laid], forms: LensForms) -> list[Laid]:
+    """Return the options with their refusals and notes of form added."""
+    return [
+        replace(
+            option,
+            refused=(*option.refused, *_refusals(case, option, forms)),
+            notes=(*option.notes, *_notes(case, option, forms)),
+        )
+        for option in laid
+    ]
+
+
+def _refusals(case: Case, option: Laid, forms: LensForms) -> Iterator[Refused]:
+    k = option.index
+    name = option.material.label or option.material.key
+    for e, eye in enumerate(EYES):
+        code = Refusal(int(forms.shape.refusal[k, e]))
+        if code == Refusal.NONE:
+            continue
+        figures: dict[str, Figure] = {"material": name, "eye": eye}
+        if code == Refusal.TOO_THIN:
+            least = float(forms.shape.rule_centre_mm[k, e])
+            yield Refused(Phrase(CODES[code], figures | {"centre_mm": least}), {"centre_mm": least})
+        else:
+            yield Refused(Phrase(CODES[code], figures), _nearest_form(case, option, forms))
+        break
+    sold = (option.offer.blank_diameters_mm if option.offer else None) or option.material.blank_diameters_mm
+    needed = float(forms.blank_mm[k].max())
+    if sold and max(sold) < needed:
+        figures = {"material": name, "blank_mm": needed, "largest_mm": max(sold)}
+        yield Refused(Phrase("blank-too-small", figures), _nearest_blank(case, option, needed))
+
+
+def _nearest_form(case: Case, option: Laid, forms: LensForms) -> Mapping[str, Figure] | None:
+    """Return the material nearest in index whose lens can be made, with its front curve by the rule."""
+    materials = case.stock.material
+    asked = option.option.model_copy(update={"front_power_d": None, "centre_mm": None})
+    tried = [replace(option, index=k, material=material, option=asked) for k, material in enumerate(materials)]
+    shape = shape_of(case, tried, powers_of(case, tried), forms.rim)
+    made = [k for k in range(len(tried)) if np.all(shape.refusal[k] == Refusal.NONE)]
+    if not made:
+        return None
+    best = min(made, key=lambda k: abs(materials[k].index - option.material.index))
+    return {"material": materials[best].key, "front_power_d": float(shape.front_power_d[best, 0])}
+
+
+def _nearest_blank(case: Case, option: Laid, needed_mm: float) -> Mapping[str, Figure] | None:
+    large = [m for m in case.stock.material if not m.blank_diameters_mm or max(m.blank_diameters_mm) >= needed_mm]
+    if not large:
+        return None
+    return {"material": min(large, key=lambda m: abs(m.index - option.material.index)).key}
+
+
+def _notes(case: Case, option: Laid, forms: LensForms) -> Iterator[Phrase]:
+    k, shape = option.index, forms.shape
+    if shape.below_least_centre[k].any():
+        yield Phrase("centre-below-limit", {"centre_mm": float(shape.centre_mm[k].min())})
+    if shape.below_least_edge[k].any():
+        yield Phrase("edge-below-limit", {"edge_mm": float(shape.thinnest_mm[k].min())})
+    if option.option.front_power_d is not None:
+        yield Phrase("front-given")
+    if option.design.form == "aspheric":
+        yield Phrase("shown-as-spherical")
+    worst = max(option.powers, key=lambda power: abs(power.sphere_d + power.cylinder_d / 2.0))
+    mean = worst.sphere_d + worst.cylinder_d / 2.0
+    tilted, induced = martin_tilt(mean, tilt_deg=case.tilt_deg, index=float(forms.powers.index[k, 0]))
+    if max(abs(float(tilted) - mean), abs(float(induced))) >= TILT_CHANGE_FROM_D:
+        figures = {"tilt_deg": case.tilt_deg, "change_d": float(tilted) - mean, "cylinder_d": float(induced)}
+        yield Phrase("tilt-changes-power", figures)

@@ -1,0 +1,260 @@
+"""The rows of the Counter ready to be shown: words, figures with units, the difference from the baseline, and what each
+opens to."""
+
+from collections.abc import Callable, Iterable
+from dataclasses import dataclass, field
+
+from advisor.counsel.compare import Computed
+from advisor.counsel.comparison import Caution, Comparison, EyeFigures, OptionFigures
+from advisor.counsel.explanations import EXPLANATIONS, At, Explanation, PutIn
+from advisor.counsel.layout import (
+    PATH_WORDS,
+    ROWS,
+    VERDICTS,
+    Row,
+    rows_present,
+    second_image,
+    strength_words,
+    two_digits,
+    two_eyes,
+)
+from advisor.counsel.phrases import mark
+from advisor.web.language import Language
+
+SAME = mark("same")
+ROW_OF = {row.key: row for row in ROWS}
+TIMES_FROM = 1.05  # a smaller ratio is called the same
+HUES = {
+    "neutral": mark("neutral"),
+    "red": mark("red"),
+    "gold": mark("gold"),
+    "green": mark("green"),
+    "teal": mark("teal"),
+    "blue": mark("blue"),
+    "purple": mark("purple"),
+    "pink": mark("pink"),
+}
+
+
+@dataclass(frozen=True)
+class Line:
+    """One figure of a cell: small words before it, the figure, and the difference from the baseline."""
+
+    text: str
+    words: str = ""
+    difference: str = ""
+
+
+@dataclass(frozen=True)
+class Cell:
+    """What one option shows in one row; ``bar_mm`` is a length drawn to scale, ``swatch`` a colour with its word."""
+
+    lines: tuple[Line, ...] = ()
+    notes: tuple[str, ...] = ()
+    bar_mm: float | None = None
+    swatch: tuple[str, str] | None = None
+
+
+@dataclass(frozen=True)
+class Given:
+    """One number that was put in, option by option."""
+
+    label: str
+    texts: tuple[str, ...]
+
+
+@dataclass(frozen=True)
+class FigureRow:
+    """One row with what it opens to."""
+
+    key: str
+    label: str
+    cells: tuple[Cell, ...]
+    explanation: Explanation
+    given: tuple[Given, ...] = ()
+    cautions: tuple[Caution, ...] = ()
+
+
+@dataclass(frozen=True)
+class FigureTable:
+    """The open rows, the folded ones, and the cautions that hold for every option."""
+
+    open: tuple[FigureRow, ...]
+    folded: tuple[FigureRow, ...]
+    cautions: tuple[Caution, ...] = field(default=())
+
+
+@dataclass(frozen=True)
+class _Desk:
+    """What every row needs: the computed visit, its answer, the baseline and the language."""
+
+    computed: Computed
+    answer: Comparison
+    base: OptionFigures
+    currency: str
+    speaker: Language
+
+    def cells(self, make: Callable[[OptionFigures], Cell]) -> tuple[Cell, ...]:
+        """Make one cell for each option; a refused option has only dashes."""
+        dash = Cell((Line("–"),))
+        return tuple(dash if option.right is None else make(option) for option in self.answer.options)
+
+    def row(self, key: str, label: str, cells: tuple[Cell, ...], cautions: Iterable[Caution] = ()) -> FigureRow:
+        """Join cells and explanation."""
+        return FigureRow(key, self.speaker.gettext(label), cells, EXPLANATIONS[key], self._given(key), tuple(cautions))
+
+    def _given(self, key: str) -> tuple[Given, ...]:
+        explanation = EXPLANATIONS[key]
+        found = [self._put_in(part) for part in explanation.put_in]
+        present = rows_present(self.answer)
+        for row in (ROW_OF[name] for name in explanation.rows):
+            if row in present:
+                texts = tuple(two_eyes(row, option, self.speaker) for option in self.answer.options)
+                found.append(Given(self.speaker.gettext(row.label), texts))
+        return tuple(given for given in found if set(given.texts) != {"–"})
+
+    def _put_in(self, part: PutIn) -> Given:
+        case, laid = self.computed.case, self.computed.laid
+        return Given(self.speaker.gettext(part.label), tuple(self._both_eyes(part, At(case, one, 0)) for one in laid))
+
+    def _both_eyes(self, part: PutIn, at: At) -> str:
+        texts = [self._written(part, At(at.case, at.laid, eye)) for eye in (0, 1)]
+        return texts[0] if texts[0] == texts[1] else " / ".join(texts)
+
+    def _written(self, part: PutIn, at: At) -> str:
+        value = part.read(at)
+        if value is None or isinstance(value, str):
+            return value or "–"
+        signed = part.unit == "D"
+        number = self.speaker.number(value, digits=part.digits, signed=signed)
+        return f"{number} {self.speaker.gettext(part.unit)}".rstrip()
+
+
+def figure_table(computed: Computed, answer: Comparison, *, baseline: int, currency: str, speaker: Language) -> FigureTable:
+    """Lay out the answer for the page."""
+    base = answer.options[min(baseline, len(answer.options) - 1)]
+    desk = _Desk(computed, answer, base, currency, speaker)
+    present = rows_present(answer)
+    cautions = answer.advice.cautions if answer.advice else []
+    common = tuple(caution for caution in cautions if len(caution.options) == len(answer.options))
+    rows = [_price(desk), *_edge_and_centre(desk), *_plain(desk, [row for row in present if row.key == "weight_g"])]
+    rows += [*_second_image(desk), _seen_by_others(desk), _cannot(desk, cautions, common)]
+    shown = {"edge_thickest_mm", "centre_mm", "weight_g"}
+    folded = _plain(desk, [row for row in present if row.key not in shown])
+    return FigureTable(tuple(rows), tuple(folded), common)
+
+
+def _price(desk: _Desk) -> FigureRow:
+    def cell(option: OptionFigures) -> Cell:
+        difference = ""
+        if option is not desk.base and option.price is not None and desk.base.price is not None:
+            more = option.price - desk.base.price
+            money = desk.speaker.money(abs(more), currency=desk.currency)
+            difference = f"{'+' if more > 0 else '−'}{money}" if more else desk.speaker.gettext(SAME)
+        return Cell((Line(desk.speaker.money(option.price, currency=desk.currency), difference=difference),))
+
+    return desk.row("price", mark("price of the pair"), tuple(cell(option) for option in desk.answer.options))
+
+
+def _line(desk: _Desk, row: Row, option: OptionFigures, words: str = "") -> Line:
+    return Line(two_eyes(row, option, desk.speaker), words, _difference(desk, row, option))
+
+
+def _difference(desk: _Desk, row: Row, option: OptionFigures) -> str:
+    """Return the difference of both eyes from the baseline, "same" where none shows, nothing where none is known."""
+    if option is desk.base:
+        return ""
+    pairs = [(_value(row, option.right), _value(row, desk.base.right)), (_value(row, option.left), _value(row, desk.base.left))]
+    if any(value is None or base is None for value, base in pairs):
+        return ""
+    texts = [row.difference(value, base, desk.speaker) for value, base in pairs]
+    if not any(texts):
+        return desk.speaker.gettext(SAME)
+    return texts[0] if texts[0] == texts[1] else " / ".join(text or "0" for text in texts)
+
+
+def _value(row: Row, eye: EyeFigures | None) -> float | None:
+    return None if eye is None else row.value(eye)
+
+
+def _plain(desk: _Desk, rows: Iterable[Row]) -> list[FigureRow]:
+    return [
+        desk.row(row.key, row.label, desk.cells(lambda option, row=row: Cell((_line(desk, row, option),))))  # type: ignore[misc]
+        for row in rows
+    ]
+
+
+def _edge_and_centre(desk: _Desk) -> list[FigureRow]:
+    edge, centre = ROW_OF["edge_thickest_mm"], ROW_OF["centre_mm"]
+    if edge not in rows_present(desk.answer):
+        return []
+    words = desk.speaker.gettext(centre.label)
+
+    def cell(option: OptionFigures) -> Cell:
+        thick = [value for value in (_value(edge, option.right), _value(edge, option.left)) if value is not None]
+        lines = (_line(desk, edge, option), _line(desk, centre, option, words))
+        return Cell(lines, bar_mm=max(thick, default=None))
+
+    return [desk.row("edge_thickest_mm", mark("thickest edge, and centre"), desk.cells(cell))]
+
+
+def _second_image(desk: _Desk) -> list[FigureRow]:
+    if all(second_image(option) is None for option in desk.answer.options):
+        return []
+    return [desk.row("second_image", mark("second image"), desk.cells(lambda option: _ghost_cell(desk, option)))]
+
+
+def _ghost_cell(desk: _Desk, option: OptionFigures) -> Cell:
+    ghost, base = second_image(option), second_image(desk.base)
+    if ghost is None:
+        return Cell((Line("–"),))
+    difference = "" if base is None or option is desk.base else _times(desk, ghost.strength, base.strength)
+    strength = strength_words(ghost, desk.speaker)
+    where = desk.speaker.gettext(PATH_WORDS[ghost.path])
+    if ghost.verdict is None:
+        return Cell((Line(strength, difference=difference),), (where,))
+    return Cell((Line(desk.speaker.gettext(VERDICTS[ghost.verdict]), difference=difference),), (strength, where))
+
+
+def _times(desk: _Desk, strength: float, base: float) -> str:
+    """Return how many times weaker or stronger a ghost is than the baseline's."""
+    if min(strength, base) <= 0.0 or max(strength, base) / min(strength, base) < TIMES_FROM:
+        return desk.speaker.gettext(SAME)
+    times = two_digits(max(strength, base) / min(strength, base))
+    number = desk.speaker.number(times, digits=1 if times < 10 else 0)
+    text = mark("%(times)s times weaker") if strength < base else mark("%(times)s times stronger")
+    return desk.speaker.gettext(text) % {"times": number}
+
+
+def _seen_by_others(desk: _Desk) -> FigureRow:
+    whole, contrast = ROW_OF["whole_lens"], ROW_OF["observer_contrast"]
+    has_contrast = contrast in rows_present(desk.answer)
+
+    def cell(option: OptionFigures) -> Cell:
+        lines = [_line(desk, whole, option)]
+        if has_contrast:
+            lines.append(_line(desk, contrast, option, desk.speaker.gettext(contrast.label)))
+        colour = option.right.residual_colour.front if option.right else None
+        word = desk.speaker.gettext(HUES.get(colour.hue, colour.hue)) if colour else ""
+        return Cell(tuple(lines), swatch=(colour.srgb, word) if colour else None)
+
+    return desk.row("seen_by_others", mark("reflection seen by others"), desk.cells(cell))
+
+
+def _cannot(desk: _Desk, cautions: Iterable[Caution], common: Iterable[Caution]) -> FigureRow:
+    everywhere = list(common)
+
+    def cell(option: OptionFigures) -> Cell:
+        own = [short(caution.text) for caution in cautions if option.index in caution.options and caution not in everywhere]
+        return Cell(notes=(*(refusal.text for refusal in option.refused), *own))
+
+    cells = tuple(cell(option) for option in desk.answer.options)
+    return desk.row("cannot", mark("what it cannot do"), cells, cautions)
+
+
+def short(text: str) -> str:
+    """Return the first sentence, or what stands before its colon."""
+    for place, letter in enumerate(text):
+        if letter in ".:;" and text[place + 1 : place + 2] in ("", " ") and place > 12:
+            return text[:place] + "."
+    return text
