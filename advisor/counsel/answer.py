@@ -9,9 +9,10 @@ from advisor.counsel.faces import residual_colour
 from advisor.counsel.form import SMALLER_BY_MM, LensForms
 from advisor.counsel.ghosts import GhostFigures
 from advisor.counsel.laid_out import NOTE_TEXTS, REFUSAL_TEXTS, Laid
-from advisor.counsel.light import Light, as_made_spreads, estimated_ranges
+from advisor.counsel.light import DAYLIGHT, Light, as_made_spreads, estimated_ranges, made_strengths
 from advisor.counsel.phrases import Figure, Phrase, Translator, mark, say
 from advisor.counsel.prescription import EYES, Eye
+from advisor.counsel.spectra import tint_axes
 from advisor.counsel.stock_items import Scene
 from advisor.optics.ghost_scene import Ghosts, GhostView
 from advisor.optics.ghost_strength import PATHS
@@ -92,16 +93,24 @@ def option_answer(option: Laid, *, figures: Figures, translator: Translator) -> 
     return content
 
 
-def _uncoated(option: Laid, *, uncoated: Light, scenes: Sequence[Scene]) -> Content:
+def _second_image(option: Laid, *, light: Light) -> Content:
+    """Return the strength of the twice-mirrored image under D65, as designed and as made."""
+    axes = tint_axes(option, dark=False) or (1.0, 1.0)
+    points = made_strengths(option.front_face, option.back_face, axes, DAYLIGHT)
+    return {
+        "strength": float(light.second_image[option.index]),
+        "as_made": None if points is None else points[:, PATHS.index("ahead-inner")].tolist(),
+    }
+
+
+def _uncoated(option: Laid, *, uncoated: Light) -> Content:
     """Return what the same lens would mirror without a film."""
     k = option.index
-    ahead = [s for s, scene in enumerate(scenes) if scene.where == "ahead"]
-    strengths = uncoated.strengths[k, ahead, PATHS.index("ahead-inner")]
     return {
         "hard_coat_only": option.material.hard_coat == "always",
         "first_pass_loss": float(uncoated.first_pass_loss[k]),
         "whole_lens": float(uncoated.whole_lens[k]),
-        "second_image": float(strengths.max()) if ahead else None,
+        "second_image": float(uncoated.second_image[k]),
     }
 
 
@@ -170,7 +179,8 @@ def _light(option: Laid, *, figures: Figures) -> Content:
             },
             "estimated": front.is_estimated or back.is_estimated,
         },
-        "uncoated": _uncoated(option, uncoated=figures.uncoated, scenes=figures.scenes),
+        "second_image": _second_image(option, light=light),
+        "uncoated": _uncoated(option, uncoated=figures.uncoated),
         "luminous_transmittance": float(light.transmittance[k]),
         "residual_colour": {
             name: dict(zip(("hue", "srgb", "xy"), residual_colour(face), strict=True))

@@ -206,7 +206,7 @@ CAUTION_TEXTS: dict[str, CautionText] = {
     ),
     "large-change": CautionText(
         mark(
-            "The power changes by up to %(change_d)s D and the axis by up to %(turn_deg)s degrees against the worn pair."
+            "The power changes by up to %(changed_by_d)s D and the axis by up to %(turn_deg)s degrees against the worn pair."
         ),
         mark("Your new lenses are quite different from the old ones. Floors and steps may look odd at first."),
         mark("Over 1.00 D or 10 degrees of axis; over 0.75 D for older or unsteady wearers."),

@@ -268,7 +268,7 @@ def _large_change(case: Case, _option: Laid, _light: LensLight) -> Figures | Non
         return None
     limit = LARGE_CHANGE_OLDER_D if is_unsteady(case) else LARGE_CHANGE_D
     large = changed[0] > limit + ROUNDING or changed[1] > LARGE_TURN_DEG + ROUNDING
-    return _when(large, {"change_d": changed[0], "turn_deg": changed[1]})
+    return _when(large, {"changed_by_d": changed[0], "turn_deg": changed[1]})
 
 
 def _restricted_supply(case: Case, _option: Laid, _light: LensLight) -> Figures | None:

@@ -71,7 +71,14 @@ class Uncoated(_Part):
     hard_coat_only: bool
     first_pass_loss: float
     whole_lens: float
-    second_image: float | None = Field(default=None, description="greatest strength of ahead-inner over the scenes")
+    second_image: float = Field(description="strength of ahead-inner under D65")
+
+
+class SecondImage(_Part):
+    """How strong light mirrored twice inside the lens is against the light itself, under D65."""
+
+    strength: float
+    as_made: tuple[float, float] | None = Field(default=None, description="5 and 95 % points; null without layers")
 
 
 class Colour(_Part):
@@ -147,6 +154,7 @@ class EyeFigures(_Part):
     weight_g: float | None = None
     blank_mm: float | None = None
     luminous_reflectance: LuminousReflectance
+    second_image: SecondImage
     uncoated: Uncoated
     luminous_transmittance: float
     luminous_transmittance_dark: float | None = None

@@ -128,6 +128,11 @@ def lay_out(case: Case) -> list[Laid]:
     options, _ = options_of(case)
     if not options:
         raise NothingToLayOut("There is nothing to compare: give the visit options, or the range default_options.")
+    return lay_out_options(case, options)
+
+
+def lay_out_options(case: Case, options: Sequence[Option]) -> list[Laid]:
+    """Return these options, resolved; what one leaves out it takes from the first."""
     laid: list[Laid] = []
     for index, option in enumerate(options):
         laid.append(_one(case, option, index, laid[0] if laid else None))

@@ -1,13 +1,14 @@
 """Rows of a comparison for people: what the text table, the CSV file and the page show, in the same order."""
 
 import math
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 
 from advisor.counsel.comparison import Comparison, EyeFigures, Ghost, OptionFigures, Path, Verdict
 from advisor.counsel.phrases import Translator, mark
 
 Value = float | None
+POINTS = mark("points")  # what percentages differ by
 
 
 @dataclass(frozen=True)
@@ -34,7 +35,7 @@ class Row:
         if value is None or base is None:
             return ""
         shown = translator.number((value - base) * self.scale, digits=self.digits, signed=True)
-        unit = translator.gettext(mark("points")) if self.unit == "%" else self.unit
+        unit = translator.gettext(POINTS) if self.unit == "%" else self.unit
         return f"{shown} {unit}".rstrip() if round((value - base) * self.scale, self.digits) else ""
 
 
@@ -94,9 +95,15 @@ def rows_present(comparison: Comparison) -> list[Row]:
 def two_eyes(row: Row, option: OptionFigures, translator: Translator) -> str:
     """Return the figure of both eyes: one where they are shown alike, else right and left parted by a stroke."""
     texts = [row.text(row.value(eye), translator) for eye in (option.right, option.left) if eye is not None]
-    if not texts:
-        return "–"
-    return texts[0] if len(set(texts)) == 1 else " / ".join(texts)
+    return parted(texts, unit=row.unit) if texts else "–"
+
+
+def parted(texts: Sequence[str], *, unit: str) -> str:
+    """Join the texts of both eyes: one where they are alike, else parted by a stroke, with their unit once."""
+    if len(set(texts)) == 1:
+        return texts[0]
+    first = texts[0].removesuffix(f" {unit}") if unit and all(text.endswith(f" {unit}") for text in texts) else texts[0]
+    return " / ".join([first, *texts[1:]])
 
 
 VERDICTS: dict[Verdict, str] = {

@@ -31,6 +31,7 @@ class Light:
     whole_lens: Floats
     transmittance: Floats
     transmittance_dark: Floats
+    second_image: Floats
     strengths: Floats
     passed: Floats
     tint_fits: NDArray[np.bool_]
@@ -48,10 +49,17 @@ def light_of(laid: Sequence[Laid], scenes: Sequence[Scene]) -> Light:
         whole_lens=spectra.reflectance(),
         transmittance=luminous_mean(passed),
         transmittance_dark=luminous_mean(spectra.transmittance(dark=True)),
+        second_image=_second_image(spectra, passed),
         strengths=strengths,
         passed=through,
         tint_fits=spectra.tint_fits,
     )
+
+
+def _second_image(spectra: LensSpectra, passed: Floats) -> Floats:
+    """Return the strength of light mirrored twice inside, under D65, (option,)."""
+    inner = spectra.strengths()[:, PATHS.index("ahead-inner")]
+    return luminous_mean(inner, weight=passed)
 
 
 def scene_strengths(laid: Sequence[Laid], scenes: Sequence[Scene]) -> tuple[Floats, Floats]:
@@ -87,6 +95,9 @@ class SceneLight(NamedTuple):
     angle_deg: float
     illuminant: IlluminantName
     dark: bool
+
+
+DAYLIGHT = SceneLight(0.0, "D65", False)
 
 
 def scene_light(scene: Scene) -> SceneLight:

@@ -4,14 +4,18 @@ Nothing on an order may be a guess: a figure that a default stands in for, or a 
 holds it back.
 """
 
+import math
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 
 from advisor.counsel.case import VERTEX_MATTERS_FROM_D, Case
 from advisor.counsel.compare import Computed
+from advisor.counsel.form import least_centre_mm
+from advisor.counsel.laid_out import REFUSAL_TEXTS
 from advisor.counsel.phrases import Phrase, Translator, mark, say
 from advisor.counsel.prescription import EYES, Eye, SphereCylinder, written_prism
 from advisor.errors import TwolightError
+from advisor.optics.thickness import LEAST_EDGE_MM
 
 SAFETY_QUESTIONS = ("impact", "one_good_eye", "driving")
 
@@ -56,7 +60,7 @@ class EyeOrder:
     pd_mm: float
     near_pd_mm: float | None
     height_mm: float
-    centre_mm: float | None
+    centre_mm: float
 
 
 @dataclass(frozen=True)
@@ -108,24 +112,23 @@ def order_of(computed: Computed, *, index: int, translator: Translator) -> Order
     NotReady
         With every reason, while something needed is missing or the option cannot be made.
     """
-    from advisor.counsel.laid_out import REFUSAL_TEXTS
-
     laid = computed.laid[index]
     reasons = missing(computed)
     reasons += [Phrase("refused", {"reason": say(r.phrase, REFUSAL_TEXTS, translator)}) for r in laid.refused]
     if reasons:
         raise NotReady(reasons, translator=translator)
     case = computed.case
-    right, left = (_eye_order(case, eye, made=laid.powers[k], k=k) for k, eye in enumerate(EYES))
-    child = case.is_child and laid.material.least_centre_child_mm is not None
-    least = laid.material.least_centre_child_mm if child else laid.material.least_centre_mm
-    return Order(eyes=(right, left), least_centre_mm=least, least_edge_mm=LEAST_EDGE_MM[case.rim])
+    right, left = (_eye_order(computed, eye, index=index, k=k) for k, eye in enumerate(EYES))
+    least = least_centre_mm(case, laid.material)
+    return Order(
+        eyes=(right, left),
+        least_centre_mm=None if math.isnan(least) else least,
+        least_edge_mm=LEAST_EDGE_MM[case.rim],
+    )
 
 
-LEAST_EDGE_MM: Mapping[str, float] = {"full": 1.0, "grooved": 1.8, "drilled": 1.8}  # common practice, no source
-
-
-def _eye_order(case: Case, eye: Eye, *, made: SphereCylinder, k: int) -> EyeOrder:
+def _eye_order(computed: Computed, eye: Eye, *, index: int, k: int) -> EyeOrder:
+    case, made = computed.case, computed.laid[index].powers[k]
     written = case.eye(eye)
     fitting = case.visit.fitting
     side = None if fitting is None else (fitting.right if eye == "right" else fitting.left)
@@ -139,5 +142,5 @@ def _eye_order(case: Case, eye: Eye, *, made: SphereCylinder, k: int) -> EyeOrde
         pd_mm=float(case.pd_mm[k]),
         near_pd_mm=None if side is None else side.near_pd_mm,
         height_mm=float(case.height_mm[k]),
-        centre_mm=None,
+        centre_mm=float(computed.forms.shape.centre_mm[index, k]),
     )

@@ -33,7 +33,7 @@ DIGITS: Mapping[str, int] = {
 }
 # Figures that always carry a sign.
 SIGNED = ("_d",)
-UNSIGNED = ("_prism_d", "change_d", "most_d")  # sizes, not powers
+UNSIGNED = ("_prism_d", "changed_by_d", "most_d")  # sizes, not powers
 
 
 def mark(text: str) -> str:

@@ -12,7 +12,9 @@ from advisor.counsel.comparison import Comparison, EyeFigures, OptionFigures
 from advisor.counsel.laid_out import Laid
 from advisor.counsel.phrases import Figure, Phrase, mark
 from advisor.counsel.sheet_texts import HEADINGS, LINES
+from advisor.counsel.spoken import from_behind, worst_ghost
 from advisor.errors import TwolightError
+from advisor.optics.visibility import VERDICTS
 
 Kind = Literal["lines", "do", "dont", "urgent"]
 LEAST_COLOURED = 0.004  # luminous reflectance of a face below which its colour is too faint to name
@@ -106,7 +108,11 @@ def wearer_sheet(computed: Computed, answer: Comparison, *, index: int, price: s
         Block("for", "lines", tuple(_purpose(computed, laid))),
         Block("not-for", "dont", tuple(c for c in cautions if c.code in NOT_FOR)),
         Block("chosen", "lines", tuple(_chosen(laid, price))),
-        Block("why", "lines", tuple(_facts(option.right, laid))),
+        Block(
+            "why",
+            "lines",
+            (*_facts(option.right, laid), *_ghosts(option, drives=computed.case.life("night_driving") != "never")),
+        ),
         Block("coating", "lines", tuple(_coating(option.right, laid))),
         Block("do", "do", tuple(care_lines(computed.case.yes_answers(), kind="do"))),
         Block("dont", "dont", tuple(care_lines(computed.case.yes_answers(), kind="dont"))),
@@ -178,12 +184,26 @@ def _facts(eye: EyeFigures, laid: Laid) -> Iterable[Phrase]:
             yield Phrase("mirrors-coated", {"low_percent": 100 * spread[0], "high_percent": 100 * spread[2]})
     if laid.tint is not None:
         yield Phrase("passes", {"luminous_percent": 100 * eye.luminous_transmittance})
-    strengths = [ghost.strength for ghost in eye.ghosts if ghost.path == "ahead-inner"]
-    if strengths:
-        yield Phrase("second-image")
-        yield Phrase("second-image-now", {"parts": one_part_in(max(strengths))})
-        if coated and eye.uncoated.second_image is not None:
-            yield Phrase("second-image-bare", {"bare_parts": one_part_in(eye.uncoated.second_image)})
+    image = eye.second_image
+    parts = {"parts": one_part_in(image.strength if image.as_made is None else image.as_made[1])}
+    if coated:
+        yield Phrase("second-image-coated", parts | {"bare_parts": one_part_in(eye.uncoated.second_image)})
+    else:
+        yield Phrase("second-image", parts)
+
+
+def _ghosts(option: OptionFigures, *, drives: bool) -> Iterable[Phrase]:
+    """Tell at most two things about ghosts, "you may" and never "you will", and only what was computed."""
+    ghost = worst_ghost(option)
+    if ghost is not None and drives:
+        noticed = VERDICTS.index(ghost.verdict or VERDICTS[0]) >= VERDICTS.index("only if looked for")
+        if not noticed:
+            yield Phrase("may-not-see-second")
+        else:
+            yield Phrase("may-see-haze" if ghost.haze else "may-see-second")
+    behind = from_behind(option)
+    if behind is not None and behind.code == "behind-seen":
+        yield Phrase("may-see-behind")
 
 
 def _coating(eye: EyeFigures, laid: Laid) -> Iterable[Phrase]:

@@ -47,9 +47,19 @@ LINES: dict[str, str] = {
     "mirrors-coated-stated": mark("With your coating it is about %(percent)s %%, by the maker's figure."),
     "mirrors-uncoated": mark("These lenses mirror away about %(percent)s %% of the light."),
     "passes": mark("The tinted lens lets about %(luminous_percent)s %% of the light through."),
-    "second-image": mark("Light mirrored twice inside a lens makes a faint second image of a lamp."),
-    "second-image-now": mark("In these lenses it has about 1 part in %(parts)s of the light itself."),
-    "second-image-bare": mark("Without a coating it would have about 1 part in %(bare_parts)s."),
+    "second-image": mark(
+        "Light mirrored twice inside a lens makes a second image: here about 1 part in %(parts)s of the light."
+    ),
+    "second-image-coated": mark(
+        "Light mirrored twice inside a lens makes a second image. Yours has at most 1 part in %(parts)s of the light, not 1 in %(bare_parts)s."
+    ),
+    # ghosts: two sentences at most
+    "may-see-second": mark(
+        "At night you may see a second, fainter light beside a lamp. It moves when you move your glasses."
+    ),
+    "may-see-haze": mark("At night you may see a soft haze round a lamp."),
+    "may-not-see-second": mark("You may never notice the second image of a lamp in these lenses."),
+    "may-see-behind": mark("You may see lamps or windows behind you in the lens. Turn your seat or shade the lamp."),
     # what a coating does
     "coating-does": mark("It lets more light through. Others see your eyes better."),
     "coating-does-not": mark("It does not stop all reflections. It does not make the lens stronger."),

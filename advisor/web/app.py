@@ -12,8 +12,12 @@ from jinja2 import StrictUndefined
 
 from advisor.resources import resource_dir
 from advisor.web import error_pages, policy
+from advisor.web.counter import counter
 from advisor.web.desk import EXTENSION, Desk, current_desk
 from advisor.web.language import SOURCE_LANGUAGE, language
+from advisor.web.paper_pages import paper_pages
+from advisor.web.range_page import range_page
+from advisor.web.visits import visits
 
 # Some Windows registries serve these as text/plain, which nosniff then refuses.
 MEDIA_TYPES = {
@@ -78,8 +82,8 @@ def _prepare_templates(app: Flask) -> None:
 
 def _register_blueprints(app: Flask) -> None:
     """Register the blueprints, one for each noun."""
-    # BLUEPRINTS HERE: counter, visits, range, paper.
-    _ = app
+    for noun in (counter, visits, paper_pages, range_page):
+        app.register_blueprint(noun)
 
 
 def health() -> Response:

@@ -8,6 +8,7 @@ from flask import Flask, current_app
 
 from advisor import __version__
 from advisor.records.store import Store
+from advisor.web.saved_forms import SavedForms
 
 EXTENSION = "twolight"
 
@@ -17,6 +18,7 @@ class Desk:
 
     def __init__(self, data_dir: Path) -> None:
         self.data_dir = data_dir
+        self.saved_forms = SavedForms()
         self._lock = threading.Lock()
         self._store: Store | None = None
 

@@ -1,5 +1,4 @@
-"""The rows of the Counter ready to be shown: words, figures with units, the difference from the baseline, and what each
-opens to."""
+"""The rows of the Counter ready to be shown: words, figures, differences from the baseline, and what each opens to."""
 
 from collections.abc import Callable, Iterable
 from dataclasses import dataclass, field
@@ -9,9 +8,11 @@ from advisor.counsel.comparison import Caution, Comparison, EyeFigures, OptionFi
 from advisor.counsel.explanations import EXPLANATIONS, At, Explanation, PutIn
 from advisor.counsel.layout import (
     PATH_WORDS,
+    POINTS,
     ROWS,
     VERDICTS,
     Row,
+    parted,
     rows_present,
     second_image,
     strength_words,
@@ -19,7 +20,7 @@ from advisor.counsel.layout import (
     two_eyes,
 )
 from advisor.counsel.phrases import mark
-from advisor.web.language import Language
+from advisor.web.language import MINUS, Language
 
 SAME = mark("same")
 ROW_OF = {row.key: row for row in ROWS}
@@ -119,7 +120,7 @@ class _Desk:
 
     def _both_eyes(self, part: PutIn, at: At) -> str:
         texts = [self._written(part, At(at.case, at.laid, eye)) for eye in (0, 1)]
-        return texts[0] if texts[0] == texts[1] else " / ".join(texts)
+        return parted(texts, unit=self.speaker.gettext(part.unit))
 
     def _written(self, part: PutIn, at: At) -> str:
         value = part.read(at)
@@ -130,7 +131,9 @@ class _Desk:
         return f"{number} {self.speaker.gettext(part.unit)}".rstrip()
 
 
-def figure_table(computed: Computed, answer: Comparison, *, baseline: int, currency: str, speaker: Language) -> FigureTable:
+def figure_table(
+    computed: Computed, answer: Comparison, *, baseline: int, currency: str, speaker: Language
+) -> FigureTable:
     """Lay out the answer for the page."""
     base = answer.options[min(baseline, len(answer.options) - 1)]
     desk = _Desk(computed, answer, base, currency, speaker)
@@ -150,7 +153,7 @@ def _price(desk: _Desk) -> FigureRow:
         if option is not desk.base and option.price is not None and desk.base.price is not None:
             more = option.price - desk.base.price
             money = desk.speaker.money(abs(more), currency=desk.currency)
-            difference = f"{'+' if more > 0 else '−'}{money}" if more else desk.speaker.gettext(SAME)
+            difference = f"{'+' if more > 0 else MINUS}{money}" if more else desk.speaker.gettext(SAME)
         return Cell((Line(desk.speaker.money(option.price, currency=desk.currency), difference=difference),))
 
     return desk.row("price", mark("price of the pair"), tuple(cell(option) for option in desk.answer.options))
@@ -164,13 +167,15 @@ def _difference(desk: _Desk, row: Row, option: OptionFigures) -> str:
     """Return the difference of both eyes from the baseline, "same" where none shows, nothing where none is known."""
     if option is desk.base:
         return ""
-    pairs = [(_value(row, option.right), _value(row, desk.base.right)), (_value(row, option.left), _value(row, desk.base.left))]
+    eyes = ((option.right, desk.base.right), (option.left, desk.base.left))
+    pairs = [(_value(row, eye), _value(row, base)) for eye, base in eyes]
     if any(value is None or base is None for value, base in pairs):
         return ""
     texts = [row.difference(value, base, desk.speaker) for value, base in pairs]
     if not any(texts):
         return desk.speaker.gettext(SAME)
-    return texts[0] if texts[0] == texts[1] else " / ".join(text or "0" for text in texts)
+    unit = desk.speaker.gettext(POINTS) if row.unit == "%" else row.unit
+    return parted([text or f"0 {unit}".rstrip() for text in texts], unit=unit)
 
 
 def _value(row: Row, eye: EyeFigures | None) -> float | None:
@@ -245,7 +250,8 @@ def _cannot(desk: _Desk, cautions: Iterable[Caution], common: Iterable[Caution])
     everywhere = list(common)
 
     def cell(option: OptionFigures) -> Cell:
-        own = [short(caution.text) for caution in cautions if option.index in caution.options and caution not in everywhere]
+        applying = (caution for caution in cautions if option.index in caution.options)
+        own = [short(caution.text) for caution in applying if caution not in everywhere]
         return Cell(notes=(*(refusal.text for refusal in option.refused), *own))
 
     cells = tuple(cell(option) for option in desk.answer.options)

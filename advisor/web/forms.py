@@ -264,7 +264,8 @@ def _with_kept(content: Content, text: str) -> Content:
     worn = kept.get("worn_now")
     if isinstance(worn, dict) and "prescription" not in content.get("worn_now", {}):
         worn.pop("prescription", None)
-    return _merged(kept, content)
+    merged: Content = _merged(kept, content)
+    return merged
 
 
 def _merged(under: Any, over: Any) -> Any:

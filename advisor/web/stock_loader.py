@@ -1,4 +1,4 @@
-"""The shop's range as this app reads it: parsed once for each text, and the built-in one where the shop has saved none."""
+"""The shop's range, parsed once for each text; the built-in one where the shop has saved none."""
 
 from dataclasses import dataclass
 from functools import cache, lru_cache

@@ -1,0 +1,82 @@
+"""Paper of a saved visit: the wearer's sheet and the order slip, as a page to print and as a PDF."""
+
+from collections.abc import Callable
+
+from flask import Blueprint, Response, make_response, render_template, request, url_for
+
+from advisor.counsel.order import NotReady
+from advisor.counsel.stock import Range
+from advisor.counsel.visit import Visit, parse_visit
+from advisor.web.desk import current_desk
+from advisor.web.documents import order_slip, wearer_sheet
+from advisor.web.pdf import PdfFailed, PdfUnavailable, write_pdf
+from advisor.web.stock_loader import shelf_of
+
+paper_pages = Blueprint("paper_pages", __name__)
+
+Make = Callable[..., str]
+FONTS = {"html": "fonts", "pdf": "print-fonts"}  # WOFF2 for the screen, TrueType for the layout engine
+
+
+def _visit(visit_id: str) -> tuple[Visit, Range]:
+    """Return a saved visit with the range it was saved with, so that a reprint says what the first print said."""
+    store = current_desk().store
+    saved = store.get_visit(visit_id)
+    return parse_visit(saved.visit_json), shelf_of(store, saved.range_hash).stock
+
+
+def _option(visit: Visit) -> int | None:
+    """Return the option asked for, counted from 1; one that the visit does not have is not asked for."""
+    text = request.args.get("option", "")
+    number = int(text) if text.isascii() and text.isdigit() and len(text) < 3 else 0
+    return number if 1 <= number <= len(visit.options or ()) else None
+
+
+def _html(make: Make, visit_id: str, kind: str) -> str:
+    visit, stock = _visit(visit_id)
+    return make(visit, stock, number=_option(visit), fonts=FONTS[kind])
+
+
+def _pdf(make: Make, visit_id: str, *, name: str) -> Response:
+    """Answer with the PDF; where none can be made, with a page that says so and leads to the browser's own print."""
+    html = _html(make, visit_id, "pdf")
+    try:
+        content = write_pdf(html)
+    except (PdfUnavailable, PdfFailed) as error:
+        preview = url_for(f"paper_pages.{name}", visit_id=visit_id, **request.args)
+        return make_response(render_template("no_pdf.html", sentence=str(error), preview=preview), 503)
+    answer = make_response(content)
+    answer.headers["Content-Type"] = "application/pdf"
+    answer.headers["Content-Disposition"] = f'inline; filename="twolight-{name}.pdf"'
+    return answer
+
+
+@paper_pages.get("/visits/<visit_id>/sheet")
+def sheet(visit_id: str) -> str:
+    """Show the wearer's sheet."""
+    return _html(wearer_sheet, visit_id, "html")
+
+
+@paper_pages.get("/visits/<visit_id>/sheet.pdf")
+def sheet_pdf(visit_id: str) -> Response:
+    """Return the wearer's sheet as a PDF."""
+    return _pdf(wearer_sheet, visit_id, name="sheet")
+
+
+@paper_pages.get("/visits/<visit_id>/order")
+def order(visit_id: str) -> str:
+    """Show the order slip."""
+    return _html(order_slip, visit_id, "html")
+
+
+@paper_pages.get("/visits/<visit_id>/order.pdf")
+def order_pdf(visit_id: str) -> Response:
+    """Return the order slip as a PDF."""
+    return _pdf(order_slip, visit_id, name="order")
+
+
+@paper_pages.errorhandler(NotReady)
+def not_ready(error: NotReady) -> Response:
+    """Say why nothing can be ordered yet."""
+    visit_id = (request.view_args or {}).get("visit_id", "")
+    return make_response(render_template("not_ready.html", lines=error.lines, visit_id=visit_id), 409)
