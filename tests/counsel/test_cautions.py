@@ -79,9 +79,7 @@ def spheres(power: float) -> Change:
 
 
 def toric(sphere: float, cylinder: float, axis: float) -> Change:
-    return {
-        f"prescription.{eye}": {"sphere": sphere, "cylinder": cylinder, "axis": axis} for eye in ("right", "left")
-    }
+    return {f"prescription.{eye}": {"sphere": sphere, "cylinder": cylinder, "axis": axis} for eye in ("right", "left")}
 
 
 def worn(right: float, left: float | None = None, **more: float) -> Change:

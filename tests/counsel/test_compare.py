@@ -166,7 +166,7 @@ def _tau(passed: float, r: float) -> float:
 
 
 def test_a_dark_polarising_lens_mirrors_more_inside_than_a_plain_tint_of_the_same_figure() -> None:
-    # Light of each axis stays on it: (Tp^3 + Ts^3)/(Tp + Ts) in place of tau^2, in this project's page of models. With the
+    # Light of each axis stays on it: (Tp^3 + Ts^3)/(Tp + Ts) in place of tau^2. With the
     # least ratio of the axes, 8 : 1, and mean tau: Tp = 16/9 tau, Ts = 2/9 tau, so (2/9)^2 (8^3 + 1)/9 = 2.815 tau^2.
     pair = [
         {"material": RESIN, "tint": {"kind": kind, "luminous_transmittance": 0.15}} for kind in ("fixed", "polarising")
