@@ -105,19 +105,19 @@ def _glass_breaks(_case: Case, option: Laid, _light: LensLight) -> Figures | Non
 
 def _not_for_night_driving_tint(_case: Case, _option: Laid, light: LensLight) -> Figures | None:
     dark = not _below(light.transmittance, DRIVING_LEAST) and _below(light.transmittance, NIGHT_DRIVING_LEAST)
-    return _when(dark, {"luminous_percent": _shown_percent(light.transmittance)})
+    return _when(dark, {"luminous_percent": shown_percent(light.transmittance)})
 
 
 def _not_for_driving_tint(_case: Case, _option: Laid, light: LensLight) -> Figures | None:
     darkest = min(light.transmittance, light.transmittance_dark)
-    return _when(_below(darkest, DRIVING_LEAST), {"luminous_percent": _shown_percent(darkest)})
+    return _when(_below(darkest, DRIVING_LEAST), {"luminous_percent": shown_percent(darkest)})
 
 
 def _below(value: float, limit: float) -> bool:
     return value < limit - ROUNDING
 
 
-def _shown_percent(fraction: float) -> float:
+def shown_percent(fraction: float) -> float:
     """Return a percentage cut to a tenth, so that 74.96 never reads "75.0, below 75"."""
     return math.floor(1000 * fraction + ROUNDING) / 10
 

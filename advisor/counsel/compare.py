@@ -6,7 +6,7 @@ from dataclasses import dataclass, replace
 from typing import Any
 
 from advisor import __version__
-from advisor.counsel.answer import Figures, notice, option_answer
+from advisor.counsel.answer import Figures, notice, number, option_answer
 from advisor.counsel.case import Case, build_case
 from advisor.counsel.caution_texts import CAUTION_TEXTS
 from advisor.counsel.cautions import CAUTIONS, LensLight, cautions_for
@@ -22,7 +22,7 @@ from advisor.counsel.phrases import Phrase, Translator, mark, say
 from advisor.counsel.prescription import power_along_d
 from advisor.counsel.stock import Range
 from advisor.counsel.visit import DailyLife, Visit
-from advisor.counsel.visit_checks import WARNING_TEXTS, prescription_warnings, visit_faults
+from advisor.counsel.visit_checks import WARNING_TEXTS, age_faults, prescription_warnings, visit_faults
 
 Content = dict[str, Any]
 
@@ -51,12 +51,13 @@ def compute(visit: Visit, stock: Range, *, today: dt.date | None = None, file: s
     Raises
     ------
     Faults
-        If the visit names what the range does not hold.
+        If the visit names what the range does not hold, or the wearer has an age that nobody has.
     """
-    faults = visit_faults(visit, stock=stock, file=file)
+    today = today or dt.date.today()
+    faults = visit_faults(visit, stock=stock, file=file) + age_faults(visit, today=today, file=file)
     if faults:
         raise Faults(faults)
-    case = build_case(visit, stock, today=today or dt.date.today())
+    case = build_case(visit, stock, today=today)
     laid = lay_out(case)
     light = light_of(laid, case.scenes)
     forms = forms_of(case, laid)
@@ -174,11 +175,10 @@ def _add_limits(options: list[Content], computed: Computed) -> None:
     for k, option in enumerate(options):
         if option["refused"]:
             continue
-        even_bare = bool(limits.even_bare[k])
         limit = float(limits.not_noticed[k])
         option["reflectance_limit"] = {
-            "not_noticed": None if even_bare else limit,
-            "at_the_limit": None if even_bare else float(limits.at_the_limit[k]),
+            "not_noticed": number(limit),
+            "at_the_limit": number(limits.at_the_limit[k]),
             "scene": case.scenes[int(limits.scene[k])].key,
             "reached_by": coatings_that_reach(limit, computed.laid[k], case.stock),
         }

@@ -86,9 +86,15 @@ def nominal(face: Face, angle_deg: float = 0.0) -> SurfaceSpectra:
 
 
 def _bounded(surface: SurfaceSpectra) -> SurfaceSpectra:
-    """Return a surface that mirrors at most nearly everything, so that the bounces between two of them have a sum."""
-    outside, inside = np.minimum(surface.outside, MOST_MIRRORED), np.minimum(surface.inside, MOST_MIRRORED)
-    return SurfaceSpectra(outside, inside, surface.transmittance)
+    """Return a surface that mirrors at most nearly everything, so that the bounces between two of them have a sum.
+
+    Stacks of very many layers reach 1 within rounding and beyond it, where nothing is left to pass.
+    """
+    return SurfaceSpectra(
+        np.minimum(surface.outside, MOST_MIRRORED),
+        np.minimum(surface.inside, MOST_MIRRORED),
+        np.maximum(surface.transmittance, 0.0),
+    )
 
 
 @lru_cache(maxsize=256)
@@ -107,8 +113,10 @@ def made(face: Face, angle_deg: float = 0.0) -> SurfaceSpectra | None:
         return None
     index, thickness_nm = _stack(face)
     factors = as_made.thickness_factors(len(thickness_nm), samples=SAMPLES)
-    return film_surface(
-        substrate(face), layer_index=index, layer_thickness_nm=thickness_nm * factors, angle_deg=angle_deg
+    return _bounded(
+        film_surface(
+            substrate(face), layer_index=index, layer_thickness_nm=thickness_nm * factors, angle_deg=angle_deg
+        )
     )
 
 

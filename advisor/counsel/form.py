@@ -18,7 +18,7 @@ from advisor.counsel.stock_items import Material
 from advisor.optics.centration import CentredRim, centred_rim, minimum_blank, optical_centre
 from advisor.optics.fringe import field_fringe
 from advisor.optics.lens_form import nearest_base_power, vogel_front_power
-from advisor.optics.magnification import magnification_percent, spectacle_magnification
+from advisor.optics.magnification import ENTRANCE_PUPIL_MM, magnification_percent, spectacle_magnification
 from advisor.optics.media import abbe_at_line, index_at_line
 from advisor.optics.meridians import local_direction, principal_meridians
 from advisor.optics.outline import traced_rim
@@ -205,6 +205,21 @@ def stock_blank_mm(option: Laid, needed_mm: float) -> float:
     return min(large, default=np.nan)
 
 
+def magnification_of(case: Case, powers: Powers, shape: LensShape) -> Floats:
+    """Return by how many per cent things look larger; not a number where the light meets before the pupil."""
+    power, front = powers.power_d.mean(axis=-1), shape.front_power_d
+    bent = shape.centre_mm / 1000.0 / powers.index * front < 1.0
+    meets_behind = bent & ((case.fitted_vertex_mm + ENTRANCE_PUPIL_MM) / 1000.0 * power < 1.0)
+    ratio = spectacle_magnification(
+        np.where(meets_behind, power, 0.0),
+        front_power_d=np.where(meets_behind, front, 0.0),
+        centre_mm=shape.centre_mm,
+        index=powers.index,
+        vertex_mm=case.fitted_vertex_mm,
+    )
+    return np.where(meets_behind, magnification_percent(ratio), np.nan)
+
+
 def forms_of(case: Case, laid: Sequence[Laid]) -> LensForms:
     """Work out the form of every option, and beside it the same lens in a frame 4 mm smaller."""
     powers, rim = powers_of(case, laid), centred_rims(case)
@@ -212,14 +227,6 @@ def forms_of(case: Case, laid: Sequence[Laid]) -> LensForms:
     small_rim = centred_rims(case, smaller_by_mm=SMALLER_BY_MM)
     small = shape_of(case, laid, powers, small_rim)
     density = np.array([[option.material.density_g_cm3] for option in laid])
-    mean_power = powers.power_d.mean(axis=-1)
-    magnification = spectacle_magnification(
-        mean_power,
-        front_power_d=shape.front_power_d,
-        centre_mm=shape.centre_mm,
-        index=powers.index,
-        vertex_mm=case.fitted_vertex_mm,
-    )
     return LensForms(
         powers=powers,
         shape=shape,
@@ -233,7 +240,7 @@ def forms_of(case: Case, laid: Sequence[Laid]) -> LensForms:
             vertex_mm=case.fitted_vertex_mm,
             prism_d=powers.prism_d,
         ),
-        magnification_percent=magnification_percent(magnification),
+        magnification_percent=magnification_of(case, powers, shape),
         smaller_thickest_mm=small.thickest_mm,
         smaller_weight_g=lens_weight_g(small, rim=small_rim, density_g_cm3=density),
         smaller_fits=small.refusal == 0,

@@ -7,9 +7,10 @@ import numpy as np
 
 from advisor.counsel.case import Case
 from advisor.counsel.form import LensForms, powers_of, shape_of
-from advisor.counsel.laid_out import Laid, Refused
+from advisor.counsel.laid_out import Laid, Refused, not_sold
 from advisor.counsel.phrases import Figure, Phrase
 from advisor.counsel.prescription import EYES
+from advisor.counsel.stock_items import Material
 from advisor.optics.thickness import Refusal
 from advisor.optics.tilt import martin_tilt
 
@@ -43,7 +44,7 @@ def _refusals(case: Case, option: Laid, forms: LensForms) -> Iterator[Refused]:
             continue
         figures: dict[str, Figure] = {"material": name, "eye": eye}
         if code == Refusal.TOO_THIN:
-            least = float(forms.shape.rule_centre_mm[k, e])
+            least = float(forms.shape.rule_centre_mm[k].max())  # one that serves both eyes
             yield Refused(Phrase(CODES[code], figures | {"centre_mm": least}), {"centre_mm": least})
         else:
             yield Refused(Phrase(CODES[code], figures), _nearest_form(case, option, forms))
@@ -56,20 +57,35 @@ def _refusals(case: Case, option: Laid, forms: LensForms) -> Iterator[Refused]:
 
 
 def _nearest_form(case: Case, option: Laid, forms: LensForms) -> Mapping[str, Figure] | None:
-    """Return the material nearest in index whose lens can be made, with its front curve by the rule."""
-    materials = case.stock.material
+    """Return the material nearest in index that is sold for this pair and whose lens can be made by the rule.
+
+    Its front curve is named where one serves both eyes.
+    """
+    needed = float(forms.blank_mm[option.index].max())
+    materials = [
+        material
+        for material in case.stock.material
+        if _large_enough(material, needed) and not not_sold(case, case.stock, material, option.tint, option.powers)
+    ]
     asked = option.option.model_copy(update={"front_power_d": None, "centre_mm": None})
     tried = [replace(option, index=k, material=material, option=asked) for k, material in enumerate(materials)]
+    if not tried:
+        return None
     shape = shape_of(case, tried, powers_of(case, tried), forms.rim)
     made = [k for k in range(len(tried)) if np.all(shape.refusal[k] == Refusal.NONE)]
     if not made:
         return None
     best = min(made, key=lambda k: abs(materials[k].index - option.material.index))
-    return {"material": materials[best].key, "front_power_d": float(shape.front_power_d[best, 0])}
+    right, left = (float(power) for power in shape.front_power_d[best])
+    return {"material": materials[best].key} | ({"front_power_d": right} if right == left else {})
+
+
+def _large_enough(material: Material, needed_mm: float) -> bool:
+    return not material.blank_diameters_mm or max(material.blank_diameters_mm) >= needed_mm
 
 
 def _nearest_blank(case: Case, option: Laid, needed_mm: float) -> Mapping[str, Figure] | None:
-    large = [m for m in case.stock.material if not m.blank_diameters_mm or max(m.blank_diameters_mm) >= needed_mm]
+    large = [material for material in case.stock.material if _large_enough(material, needed_mm)]
     if not large:
         return None
     return {"material": min(large, key=lambda m: abs(m.index - option.material.index)).key}

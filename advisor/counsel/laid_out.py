@@ -190,7 +190,7 @@ def _one(case: Case, option: Option, index: int, first: Laid | None) -> Laid:
         offer=offer,
         price=price,
         powers=powers,
-        refused=tuple(_refusals(case, stock, material, tint, powers)),
+        refused=tuple(not_sold(case, stock, material, tint, powers)),
         notes=tuple(notes),
         defaults_used=tuple(defaults),
     )
@@ -218,7 +218,7 @@ def _notes(
     return found
 
 
-def _refusals(
+def not_sold(
     case: Case, stock: Range, material: Material, tint: Tint | None, powers: tuple[SphereCylinder, SphereCylinder]
 ) -> list[Refused]:
     """Say what of the material's limits this pair breaks, each with the nearest material that does not."""

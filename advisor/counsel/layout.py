@@ -1,10 +1,9 @@
 """Rows of a comparison for people: what the text table, the CSV file and the page show, in the same order."""
 
-import math
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 
-from advisor.counsel.comparison import Comparison, EyeFigures, Ghost, OptionFigures, Path, Verdict
+from advisor.counsel.comparison import Comparison, EyeFigures, OptionFigures, Verdict
 from advisor.counsel.phrases import Translator, mark
 
 Value = float | None
@@ -31,12 +30,13 @@ class Row:
         return f"{shown} {self.unit}".rstrip()
 
     def difference(self, value: Value, base: Value, translator: Translator) -> str:
-        """Return by how much a figure differs from the baseline's; empty where one of them is missing or none shows."""
+        """Return by how much a figure as shown differs from the baseline's as shown; empty where none shows."""
         if value is None or base is None:
             return ""
-        shown = translator.number((value - base) * self.scale, digits=self.digits, signed=True)
+        shown, shown_base = (round(figure * self.scale, self.digits) for figure in (value, base))
+        number = translator.number(shown - shown_base, digits=self.digits, signed=True)
         unit = translator.gettext(POINTS) if self.unit == "%" else self.unit
-        return f"{shown} {unit}".rstrip() if round((value - base) * self.scale, self.digits) else ""
+        return f"{number} {unit}".rstrip() if shown != shown_base else ""
 
 
 def ghost_strength(path: str) -> Callable[[EyeFigures], Value]:
@@ -111,38 +111,20 @@ VERDICTS: dict[Verdict, str] = {
     "at the limit": mark("at the limit"),
     "only if looked for": mark("only if looked for"),
     "noticeable": mark("noticeable"),
-    "plain": mark("plain"),
+    "plain": mark("plain to see"),
 }
-PATH_WORDS: dict[Path, str] = {
-    "ahead-inner": mark("a light ahead, mirrored twice inside the lens"),
-    "behind-back": mark("a light behind, mirrored by the back"),
-    "behind-front": mark("a light behind, mirrored by the front"),
-    "cornea-back": mark("a light ahead, off the eye and the back"),
-    "cornea-front": mark("a light ahead, off the eye and the front"),
-}
-OF_THE_LIGHT_AHEAD = mark("1 part in %(parts)s of the light itself")
-OF_THE_LIGHT_BEHIND = mark("1 part in %(parts)s of the light behind")
+PART_OF_THE_LIGHT = mark("1 part in %(parts)s of the light itself")
 
 
-def second_image(option: OptionFigures) -> Ghost | None:
-    """Return the ghost that counts of both eyes: the most visible where visibility was worked out, else the strongest.
-
-    Without visibility the image mirrored twice inside the lens comes first, if any light ahead is laid out.
-    """
-    ghosts = [ghost for eye in (option.right, option.left) if eye is not None for ghost in eye.ghosts]
-    order = list(VERDICTS)
-    judged = [(order.index(ghost.verdict), ghost) for ghost in ghosts if ghost.verdict is not None]
-    if judged:
-        return max(judged, key=lambda pair: (pair[0], pair[1].visibility_level or 0.0))[1]
-    ahead = [ghost for ghost in ghosts if ghost.path == "ahead-inner"]
-    return max(ahead or ghosts, key=lambda ghost: ghost.strength, default=None)
+def second_image_strength(option: OptionFigures) -> float | None:
+    """Return how strong the image mirrored twice inside the lens is, under daylight; the greater of the two eyes."""
+    return max((eye.second_image.strength for eye in (option.right, option.left) if eye is not None), default=None)
 
 
-def strength_words(ghost: Ghost, translator: Translator) -> str:
-    """Return the strength of a ghost as a part of the light that makes it: "1 part in 630 of the light itself"."""
-    text = translator.gettext(OF_THE_LIGHT_BEHIND if ghost.path.startswith("behind") else OF_THE_LIGHT_AHEAD)
-    parts = two_digits(1.0 / ghost.strength) if ghost.strength > 0.0 else math.inf
-    return text % {"parts": translator.number(parts, digits=0) if math.isfinite(parts) else "∞"}
+def strength_words(strength: float, translator: Translator) -> str:
+    """Return a strength as a part of the light that makes it: "1 part in 630 of the light itself"."""
+    parts = translator.number(two_digits(1.0 / strength), digits=0) if strength > 0.0 else "∞"
+    return translator.gettext(PART_OF_THE_LIGHT) % {"parts": parts}
 
 
 def two_digits(value: float) -> float:

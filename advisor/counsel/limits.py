@@ -21,14 +21,13 @@ NOT_NOTICED, AT_THE_LIMIT = 0.4, 1.0
 
 @dataclass(frozen=True)
 class Limits:
-    """Greatest reflectance per face, (option,), the least over eyes and scenes; ``even_bare`` where bare is enough.
+    """Greatest reflectance per face, (option,), the least over eyes and scenes; NaN where even bare is enough.
 
     ``scene`` (option,) is the place of the scene that asks for it.
     """
 
     not_noticed: NDArray[np.float64]
     at_the_limit: NDArray[np.float64]
-    even_bare: NDArray[np.bool_]
     scene: NDArray[np.intp]
 
 
@@ -52,13 +51,12 @@ def limits_of(case: Case, laid: Sequence[Laid], *, forms: LensForms) -> Limits |
         )
         for level in (NOT_NOTICED, AT_THE_LIMIT)
     ]
-    flat = solved[0].reflectance.reshape(len(laid), -1)
-    return Limits(
-        not_noticed=flat.min(axis=-1),
-        at_the_limit=solved[1].reflectance.reshape(len(laid), -1).min(axis=-1),
-        even_bare=np.asarray(solved[0].even_bare.reshape(len(laid), -1).all(axis=-1)),
-        scene=flat.argmin(axis=-1) % len(case.scenes),
+    flat = [found.reflectance.reshape(len(laid), -1) for found in solved]
+    needless = [found.even_bare.reshape(len(laid), -1).all(axis=-1) for found in solved]
+    not_noticed, at_the_limit = (
+        np.where(bare_is_enough, np.nan, most.min(axis=-1)) for bare_is_enough, most in zip(needless, flat, strict=True)
     )
+    return Limits(not_noticed, at_the_limit, scene=flat[0].argmin(axis=-1) % len(case.scenes))
 
 
 def _tau(option: Laid, *, dark: bool) -> float:
@@ -73,9 +71,10 @@ def most_as_made(face: Face) -> float:
 
 
 def coatings_that_reach(limit: float, option: Laid, stock: Range) -> list[str]:
-    """Return the keys of the coatings sold that stay under a limit on this material, as made."""
+    """Return the keys of the coatings sold that stay under a limit on this material, as made; all where it has none."""
+    most = np.inf if np.isnan(limit) else limit
     return [
         coating.key
         for coating in stock.coating
-        if coating.key != BARE.key and most_as_made(face_of(option.material, coating)) <= limit
+        if coating.key != BARE.key and most_as_made(face_of(option.material, coating)) <= most
     ]

@@ -30,10 +30,11 @@ DIGITS: Mapping[str, int] = {
     "pd_mm": 1,
     "blank_mm": 0,
     "magnification_percent": 1,
+    "price": 2,
 }
 # Figures that always carry a sign.
 SIGNED = ("_d",)
-UNSIGNED = ("_prism_d", "changed_by_d", "most_d")  # sizes, not powers
+UNSIGNED = ("_prism_d", "changed_by_d", "most_d", "blur_d")  # sizes, not powers
 
 
 def mark(text: str) -> str:

@@ -30,7 +30,7 @@ IN_PLACE = "in-place"  # the key of an item that a visit gives in place; items o
 Hue = Literal["neutral", "red", "gold", "green", "teal", "blue", "purple", "pink"]
 _Index = Annotated[float, Field(ge=1.3, le=2.2)]
 _Power = Annotated[float, Field(ge=-60, le=60)]
-_Degrees = Annotated[float, Field(ge=0, le=180)]
+_Direction = Annotated[float, Field(ge=0, le=90)]  # a light beyond it is behind
 
 
 class Item(Strict):
@@ -238,10 +238,10 @@ class Scene(Strict):
     spacing_m: Number[Length | None] = None
     luminance_cd_m2: Number[Annotated[float, Field(gt=0, le=1e10)] | None] = None
     size_deg: Size | None = None
-    distance_m: Number[Annotated[float, Field(gt=0, le=1e6)] | None] = None
-    direction_deg: Number[_Degrees | None] = None
-    incidence_deg: Number[Annotated[float, Field(ge=0, lt=90)] | None] = None
-    fixation_m: Number[Annotated[float, Field(gt=0, le=1e6)] | None] = None
+    distance_m: Number[Annotated[float, Field(ge=0.01, le=1e6)] | None] = None
+    direction_deg: Number[_Direction | None] = None
+    incidence_deg: Number[Annotated[float, Field(ge=0, le=89)] | None] = None
+    fixation_m: Number[Annotated[float, Field(ge=0.01, le=1e6)] | None] = None
     background_cd_m2: Number[_Luminance]
     adapting_cd_m2: Number[_Luminance]
     adapting_field_deg: Number[Annotated[float, Field(gt=0, le=180)] | None] = None

@@ -1,9 +1,10 @@
 """What a readable visit may still have wrong: keys the range does not hold, and figures worth a second look."""
 
+import datetime as dt
 from collections.abc import Iterator
 
 from advisor.counsel.choices import CoatingRef, Faces
-from advisor.counsel.faults import Fault, unknown_key
+from advisor.counsel.faults import Fault, fault, unknown_key
 from advisor.counsel.phrases import Phrase, mark
 from advisor.counsel.prescription import EYES
 from advisor.counsel.stock import Range, keys_of, option_faults
@@ -13,6 +14,7 @@ MOST_PD_DIFFERENCE_MM = 3.0
 LEAST_SWAPPED_D = 1.0  # spheres nearer to zero differ in sign often enough
 ALIKE_D = 0.5  # magnitudes no further apart than this count as alike
 STEP_D = 0.25
+OLDEST_YEARS = 130
 
 WARNING_TEXTS: dict[str, str] = {
     "signs-swapped": mark(
@@ -63,6 +65,17 @@ def _coating_refs(coating: CoatingRef | None, place: str) -> Iterator[tuple[str,
         yield f"{place}.back", coating.back
     else:
         yield place, coating
+
+
+def age_faults(visit: Visit, *, today: dt.date, file: str = "") -> list[Fault]:
+    """Find an age that nobody has on the day of the visit, or today where it has no date."""
+    age, day = visit.age(today=today), visit.date or today
+    if age is None or visit.wearer is None or 0 <= age <= OLDEST_YEARS:
+        return []
+    field = "wearer.birth_date" if visit.wearer.birth_date else "wearer.birth_year"
+    if age < 0:
+        return [fault("born-after-visit", file=file, field=field, figures={"date": day.isoformat()})]
+    return [fault("at-least", file=file, field=field, figures={"limit": str(day.year - OLDEST_YEARS)})]
 
 
 def visit_faults(visit: Visit, *, stock: Range, file: str = "") -> list[Fault]:

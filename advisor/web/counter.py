@@ -33,7 +33,7 @@ def draft(draft_id: str) -> str:
 
 @counter.post("/counter")
 def work_out() -> AnyResponse:
-    """Keep what was typed and work it out: the figures alone for a live page, else the whole page by its own address."""
+    """Keep what was typed and work it out: the figures alone for a live page, else the whole page."""
     sent = counter_page.changed(counter_page.of_form(request.form), request.form.get("do", ""))
     return _figures(sent) if is_live() else _kept(sent)
 

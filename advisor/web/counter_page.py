@@ -165,6 +165,7 @@ def context(
         "fields": editing.fields,
         "worked": worked,
         "faults": {name: [sentence(one) for one in found] for name, found in worked.faults.items()},
+        "places": {name: _place_words(name) for name in worked.faults},
         "notes": _notes(worked.answer),
         "stock": shelf.stock,
         "currency": shelf.stock.shop.currency or CURRENCY,
@@ -185,6 +186,15 @@ def sentence(one: Fault) -> str:
     return words[:1].upper() + words[1:]
 
 
+def _place_words(name: str) -> str:
+    """Write the place of a field for a reader: ``options.0.coating.front`` is "option 1 coating front"."""
+    speak = language(SOURCE_LANGUAGE).gettext
+    if name in labels.PLACES:
+        return speak(labels.PLACES[name])
+    parts = name.removesuffix("_mm").removesuffix("_deg").removesuffix("_cm").replace("options.", "option.").split(".")
+    return " ".join(str(int(part) + 1) if part.isdigit() else speak(part.replace("_", " ")) for part in parts)
+
+
 def _notes(answer: Comparison | None) -> list[str]:
     """Return what should be looked at again, with the names of the form in place of those of the file."""
     if answer is None:
@@ -203,7 +213,7 @@ def _notes(answer: Comparison | None) -> list[str]:
 
 
 def page(editing: Editing, shelf: Shelf, *, notice: str = "", saved: bool = False, changed: bool = False) -> str:
-    """Return the whole Counter; ``saved`` while it shows a visit as stored, ``changed`` where another save came first."""
+    """Return the whole Counter; ``saved`` while a visit is as stored, ``changed`` where another save came first."""
     return render_template(
         "counter.html", live=False, **context(editing, shelf, notice=notice, saved=saved, changed=changed)
     )

@@ -1,25 +1,25 @@
 """The rows of the Counter ready to be shown: words, figures, differences from the baseline, and what each opens to."""
 
 from collections.abc import Callable, Iterable
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 
 from advisor.counsel.compare import Computed
 from advisor.counsel.comparison import Caution, Comparison, EyeFigures, OptionFigures
 from advisor.counsel.explanations import EXPLANATIONS, At, Explanation, PutIn
 from advisor.counsel.layout import (
-    PATH_WORDS,
     POINTS,
     ROWS,
     VERDICTS,
     Row,
     parted,
     rows_present,
-    second_image,
+    second_image_strength,
     strength_words,
     two_digits,
     two_eyes,
 )
-from advisor.counsel.phrases import mark
+from advisor.counsel.phrases import mark, say
+from advisor.counsel.spoken import SPOKEN, from_behind, ghost_phrase, worst_ghost
 from advisor.web.language import MINUS, Language
 
 SAME = mark("same")
@@ -78,11 +78,11 @@ class FigureRow:
 
 @dataclass(frozen=True)
 class FigureTable:
-    """The open rows, the folded ones, and the cautions that hold for every option."""
+    """The open rows, the folded ones, and in short what no option can do."""
 
     open: tuple[FigureRow, ...]
     folded: tuple[FigureRow, ...]
-    cautions: tuple[Caution, ...] = field(default=())
+    for_all: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True)
@@ -144,7 +144,7 @@ def figure_table(
     rows += [*_second_image(desk), _seen_by_others(desk), _cannot(desk, cautions, common)]
     shown = {"edge_thickest_mm", "centre_mm", "weight_g"}
     folded = _plain(desk, [row for row in present if row.key not in shown])
-    return FigureTable(tuple(rows), tuple(folded), common)
+    return FigureTable(tuple(rows), tuple(folded), tuple(short(caution.text) for caution in common))
 
 
 def _price(desk: _Desk) -> FigureRow:
@@ -204,21 +204,25 @@ def _edge_and_centre(desk: _Desk) -> list[FigureRow]:
 
 
 def _second_image(desk: _Desk) -> list[FigureRow]:
-    if all(second_image(option) is None for option in desk.answer.options):
+    if all(second_image_strength(option) is None for option in desk.answer.options):
         return []
     return [desk.row("second_image", mark("second image"), desk.cells(lambda option: _ghost_cell(desk, option)))]
 
 
 def _ghost_cell(desk: _Desk, option: OptionFigures) -> Cell:
-    ghost, base = second_image(option), second_image(desk.base)
-    if ghost is None:
+    """Say whether the second image is noticed, where a light ahead is laid out, and how strong it is."""
+    strength, base = second_image_strength(option), second_image_strength(desk.base)
+    if strength is None:
         return Cell((Line("–"),))
-    difference = "" if base is None or option is desk.base else _times(desk, ghost.strength, base.strength)
-    strength = strength_words(ghost, desk.speaker)
-    where = desk.speaker.gettext(PATH_WORDS[ghost.path])
-    if ghost.verdict is None:
-        return Cell((Line(strength, difference=difference),), (where,))
-    return Cell((Line(desk.speaker.gettext(VERDICTS[ghost.verdict]), difference=difference),), (strength, where))
+    difference = "" if base is None or option is desk.base else _times(desk, strength, base)
+    ghost, behind = worst_ghost(option), from_behind(option)
+    words = strength_words(strength, desk.speaker)
+    spoken = [behind] if behind else []
+    if ghost is None or ghost.verdict is None:
+        return Cell((Line(words, difference=difference),), tuple(say(one, SPOKEN, desk.speaker) for one in spoken))
+    spoken = [ghost_phrase(ghost), *spoken]
+    verdict = Line(desk.speaker.gettext(VERDICTS[ghost.verdict]), difference=difference)
+    return Cell((verdict,), (words, *(say(one, SPOKEN, desk.speaker) for one in spoken)))
 
 
 def _times(desk: _Desk, strength: float, base: float) -> str:

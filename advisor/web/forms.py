@@ -260,7 +260,10 @@ def _with_kept(content: Content, text: str) -> Content:
     kept = parse_json(text)
     if not isinstance(kept, dict):
         raise Faults([fault("not-an-object", field=KEPT)])
-    content["options"] += kept.pop("options", [])
+    more = kept.pop("options", [])
+    if not isinstance(more, list):
+        raise Faults([fault("not-a-list", field=KEPT)])
+    content["options"] += more
     worn = kept.get("worn_now")
     if isinstance(worn, dict) and "prescription" not in content.get("worn_now", {}):
         worn.pop("prescription", None)

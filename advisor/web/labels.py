@@ -1,4 +1,4 @@
-"""Words of the form: what each field is called, what its choices say, and the stated default shown while it is empty."""
+"""Words of the form: what fields and choices are called, and the stated default shown in a field while it is empty."""
 
 from collections.abc import Mapping
 
@@ -37,9 +37,13 @@ YES_NO = frozenset({
 FREQUENCIES: Mapping[str, str] = {"never": mark("never"), "sometimes": mark("sometimes"), "often": mark("often")}
 ANSWERS: Mapping[str, str] = {"yes": mark("yes"), "no": mark("no")}
 BASES: Mapping[str, str] = {"in": mark("in"), "out": mark("out"), "up": mark("up"), "down": mark("down")}
-RIMS: Mapping[str, str] = {"full": mark("full"), "grooved": mark("grooved (nylon)"), "drilled": mark("drilled (rimless)")}
+RIMS: Mapping[str, str] = {
+    "full": mark("full"),
+    "grooved": mark("grooved (nylon)"),
+    "drilled": mark("drilled (rimless)"),
+}
 USES: Mapping[str, str] = {
-    "all": mark("all distances"),
+    "all": mark("all"),
     "distance": mark("distance"),
     "intermediate": mark("intermediate"),
     "near": mark("near"),

@@ -43,7 +43,7 @@ def _pdf(make: Make, visit_id: str, *, name: str) -> Response:
     try:
         content = write_pdf(html)
     except (PdfUnavailable, PdfFailed) as error:
-        preview = url_for(f"paper_pages.{name}", visit_id=visit_id, **request.args)
+        preview = url_for(f"paper_pages.{name}", visit_id=visit_id, option=request.args.get("option"))
         return make_response(render_template("no_pdf.html", sentence=str(error), preview=preview), 503)
     answer = make_response(content)
     answer.headers["Content-Type"] = "application/pdf"

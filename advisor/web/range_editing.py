@@ -55,6 +55,24 @@ UNITS: Mapping[str, str] = {
 }  # fmt: skip
 
 
+NAMES: Mapping[str, str] = {
+    "n_d": mark("index, d line"),
+    "n_e": mark("index, e line"),
+    "abbe": mark("Abbe number"),
+    "uv_cut_nm": mark("UV cut"),
+    "kind": mark("kind"),
+    "price": mark("price of the pair"),
+}
+
+
+def words(name: str) -> str:
+    """Return what a field is called: its name without the unit, which stands beside it."""
+    if name in NAMES:
+        return NAMES[name]
+    unit = max((end for end in UNITS if end.startswith("_") and name.endswith(end)), key=len, default="")
+    return name.removesuffix(unit).replace("_", " ")
+
+
 class RangeChanged(TwolightError):
     """Somebody changed the range after the editor saw it."""
 
@@ -104,6 +122,7 @@ def _kind(info: FieldInfo) -> tuple[str, tuple[str, ...]]:
     return (simple[only], ()) if only in simple else ("value", ())
 
 
+FIRST = ("key", "label", "design", "material", "coating", "tint", "price")  # the rest in the order of the model
 PARAGRAPHS = frozenset({"care", "expect", "contact"})
 
 
@@ -111,9 +130,11 @@ def boxes(section: str) -> list[Box]:
     """Return the fields of a section's form, in the order of the range file."""
     model = Shop if section == "shop" else SECTIONS[section]
     found = []
-    for name, info in model.model_fields.items():
+    ordered = sorted(model.model_fields, key=lambda name: FIRST.index(name) if name in FIRST else len(FIRST))
+    for name in ordered:
+        info = model.model_fields[name]
         kind, choices = _kind(info)
-        unit = max((end for end in UNITS if name.endswith(end)), key=len, default="")
+        unit = "" if name == "n_d" else max((end for end in UNITS if name.endswith(end)), key=len, default="")
         kind = "paragraph" if name in PARAGRAPHS else kind
         found.append(Box(name, kind, UNITS.get(unit, ""), choices, info.is_required()))
     return found
@@ -249,7 +270,9 @@ def keep(store: Store, stock: Range, *, seen: str) -> None:
 
 def beside(faults: Iterable[Fault], *, place: str, names: Iterable[str]) -> tuple[dict[str, list[Fault]], list[Fault]]:
     """Sort faults into those of one item's fields and the rest."""
-    known, found, rest = set(names), {}, []
+    known = set(names)
+    found: dict[str, list[Fault]] = {}
+    rest: list[Fault] = []
     for one in faults:
         name = _name_in(one.field, place)
         if name in known:

@@ -3,6 +3,7 @@
 from collections.abc import Callable, Mapping
 
 from flask import Blueprint, Response, make_response, redirect, render_template, request, url_for
+from pydantic import BaseModel
 from werkzeug.wrappers import Response as AnyResponse
 
 from advisor.counsel.faults import Fault, Faults
@@ -65,6 +66,7 @@ def _form(
         "place": place,
         "title": editing.TITLES[section],
         "boxes": boxes,
+        "words_of": editing.words,
         "shown": shown,
         "faults": {name: [sentence(one) for one in some] for name, some in found.items()},
         "rest": Faults(rest).lines() if rest else [],
@@ -134,5 +136,5 @@ def remove(section: str, place: int) -> AnyResponse:
     return redirect(url_for("range_page.overview", _anchor=section), 303)
 
 
-def _item(section: str, place: int) -> editing.BaseModel:
+def _item(section: str, place: int) -> BaseModel:
     return editing.item(current_shelf(current_desk().store).stock, section, place)

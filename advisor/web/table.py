@@ -61,7 +61,10 @@ def text_table(comparison: Comparison, *, title: str, currency: str, language: L
         lines += [f"{_('Option')} {option.index + 1}: {note.text}" for note in option.notes]
     lines += [f"{_('Warning')}: {warning.text}" for warning in comparison.warnings]
     if comparison.advice is not None:
-        lines += [f"{_('Caution')}: {caution.text}" for caution in comparison.advice.cautions]
+        for caution in comparison.advice.cautions:
+            some = len(caution.options) < len(options)
+            which = f" ({', '.join(str(index + 1) for index in caution.options)})" if some else ""
+            lines.append(f"{_('Caution')}{which}: {caution.text}")
     if comparison.defaults_used:
         lines.append(f"{_('Defaults used')}: {', '.join(comparison.defaults_used)}")
     return "\n".join(one_line(text) for text in lines).rstrip() + "\n"

@@ -186,6 +186,14 @@ PAIRS: dict[str, list[tuple[Change, Change]]] = {
     "large-change": [
         (worn(-0.75), worn(-1.0)),  # 1.25 and 1.00 D
         (worn(-3.25), {}),
+        (worn(-0.95), worn(-1.0)),  # 1.05 D
+        # each eye against its own lens
+        ({"prescription.left.sphere": -4.0, **worn(-2.0, -2.5)}, {"prescription.left.sphere": -4.0, **worn(-2.0, -4.0)}),
+        # the axis of a weak cylinder says little; from 0.50 on both it counts
+        (
+            {**toric(-2.0, -0.5, 60), **worn(-2.0, cylinder=-0.5, axis=20)},
+            {**toric(-2.0, -0.5, 60), **worn(-2.0, cylinder=-0.25, axis=20)},
+        ),
         ({**worn(-1.0), "wearer.birth_year": 1961}, {**worn(-1.25), "wearer.birth_year": 1961}),  # 65 years
         ({**worn(-1.0), "wearer.birth_year": 1961}, {**worn(-1.0), "wearer.birth_year": 1962}),
         ({**worn(-1.0), "daily_life.falls": "yes"}, {**worn(-1.0), "daily_life.falls": "no"}),
@@ -236,7 +244,8 @@ PAIRS: dict[str, list[tuple[Change, Change]]] = {
         ({"fitting.right.pd_mm": 35.1}, {"fitting.right.pd_mm": 35.0}),  # (52 + 18) / 2 = 35
         ({"fitting.left.pd_mm": 36.0}, {"fitting.left.pd_mm": 36.0, "frame.a_mm": 54}),
         ({"frame.a_mm": 40}, {"frame.a_mm": 40, "fitting": {}}),  # a default PD is no measurement
-        ({"fitting.left.pd_mm": 36.0}, {"fitting.left.pd_mm": 36.0, "frame": {}}),
+        ({"fitting.left.pd_mm": 36.0}, {"fitting.left.pd_mm": 36.0, "frame.a_mm": None}),
+        ({"fitting.left.pd_mm": 36.0}, {"fitting.left.pd_mm": 36.0, "frame.dbl_mm": None}),
     ],
     "steps": [
         ({"wearer.birth_year": 1961}, {"wearer.birth_year": 1962}),  # 65, 64
@@ -366,6 +375,8 @@ def test_figures_are_written_as_a_person_writes_them() -> None:
     # a figure just below a limit is cut, never rounded up to the limit it is said to be below
     assert "passes 74.9 % of" in cautions({TINT: tint(0.7499)})["not-for-night-driving-tint"].text
     assert "by up to 1.25 D and" in cautions(worn(-0.75))["large-change"].text  # a size, without a sign
+    low = cautions({DESIGN: "progressive", "fitting.left.height_mm": 17.9})["fitting-height-too-low"].text
+    assert low == "The fitting height of 17.9 mm is below the 18.0 mm this design needs."
     assert "differ by 1.00 prism" in cautions({**ADDS, **UNEQUAL})["near-vertical-imbalance"].text
 
 

@@ -1,0 +1,96 @@
+"""Everything sold at once is the same as everything sold one by one."""
+
+import datetime as dt
+from dataclasses import fields
+from typing import Any
+
+import numpy as np
+import pytest
+
+from advisor.counsel.case import Case, build_case
+from advisor.counsel.compare import compute
+from advisor.counsel.stock import builtin_range
+from advisor.counsel.visit import check_visit, read_visit
+from advisor.counsel.whole_range import WholeRange, whole_range
+from advisor.resources import resource_dir
+
+TODAY = dt.date(2026, 12, 1)
+STOCK = builtin_range()
+MATERIALS = [material.key for material in STOCK.material]
+COATINGS = ["bare", "hard-coat-only", "magnesium-fluoride", "broadband", "broadband-wide"]
+EXACT = {"rtol": 1e-9, "atol": 1e-12}
+WEARERS = ["weak-minus-night-driver", "strong-cylinder", "prescribed-prism", "high-plus-child"]
+
+
+def case_of(name: str) -> Case:
+    visit = read_visit(resource_dir("demo_patients") / f"{name}.json")
+    return build_case(visit.model_copy(update={"scenes": None}), STOCK, today=TODAY)
+
+
+def everything(case: Case, *, design: str = "single-vision") -> WholeRange:
+    return whole_range(case, design=design, materials=MATERIALS, coatings=COATINGS)
+
+
+def test_the_axes_are_option_eye_scene_path() -> None:
+    case = case_of("strong-cylinder")
+    found = everything(case)
+    options, scenes = len(MATERIALS) * len(COATINGS), len(case.scenes)
+    assert options == 45
+    assert [(option.material.key, option.index) for option in found.laid[:6]] == [
+        *[(MATERIALS[0], at) for at in range(5)],
+        (MATERIALS[1], 5),
+    ]
+    assert found.light.first_pass_loss.shape == (options,)
+    assert found.light.strengths.shape == (options, scenes, 5)
+    assert found.light.passed.shape == (options, scenes)
+    for values in (found.forms.weight_g, found.forms.blank_mm, found.forms.shape.thickest_mm):
+        assert values.shape == (options, 2)
+    assert found.ghosts.relaxed.visibility_level.shape == (options, 2, scenes, 5)
+    assert found.ghosts.vergence_d.shape == (options, 2, scenes, 5, 2)
+
+
+@pytest.mark.parametrize("name", WEARERS)
+def test_each_option_is_what_it_is_alone(name: str) -> None:
+    case = case_of(name)
+    found = everything(case)
+    for k in (0, 8, 13, 29, 44):
+        option = found.laid[k]
+        asked: dict[str, Any] = {
+            "design": "single-vision",
+            "material": option.material.key,
+            "coating": COATINGS[k % len(COATINGS)],
+        }
+        visit = case.visit.model_copy(update={"options": check_visit(_only(asked)).options})
+        alone = compute(visit, STOCK, today=TODAY)
+        for part in ("front", "back", "first_pass_loss", "whole_lens", "transmittance", "strengths", "passed"):
+            np.testing.assert_allclose(getattr(found.light, part)[k], getattr(alone.light, part)[0], **EXACT)
+        for part in ("weight_g", "blank_mm", "fringe_prism_d", "magnification_percent", "smaller_thickest_mm"):
+            np.testing.assert_allclose(getattr(found.forms, part)[k], getattr(alone.forms, part)[0], **EXACT)
+        for part in ("centre_mm", "thickest_mm", "thinnest_mm", "back_power_d", "refusal"):
+            np.testing.assert_allclose(
+                getattr(found.forms.shape, part)[k], getattr(alone.forms.shape, part)[0], **EXACT
+            )
+        seen = alone.ghosts.seen
+        for part in ("applies", "vergence_d", "pupil_mm", "separation_deg", "background_cd_m2", "spread"):
+            np.testing.assert_allclose(getattr(found.ghosts, part)[k], getattr(seen, part)[0], **EXACT)
+        for part in (field.name for field in fields(seen.relaxed)):
+            np.testing.assert_allclose(
+                getattr(found.ghosts.relaxed, part)[k], getattr(seen.relaxed, part)[0], **EXACT, err_msg=part
+            )
+
+
+def _only(option: dict[str, Any]) -> dict[str, Any]:
+    return {"prescription": {"right": {"sphere": 0.0}, "left": {"sphere": 0.0}}, "options": [option]}
+
+
+def test_a_visit_with_few_scenes_has_few() -> None:
+    visit = read_visit(resource_dir("demo_patients") / "weak-minus-night-driver.json")
+    case = build_case(visit, STOCK, today=TODAY)
+    assert everything(case).ghosts.relaxed.verdict.shape[2] == len(visit.scenes or ()) == 3
+
+
+def test_a_reading_lens_is_worked_out_with_the_add() -> None:
+    case = case_of("prescribed-prism")
+    far, near = everything(case), everything(case, design="reading")
+    moved = near.forms.powers.power_d - far.forms.powers.power_d
+    np.testing.assert_allclose(moved, 2.0, rtol=0, atol=1e-12)  # the add of the wearer

@@ -1,0 +1,119 @@
+import csv
+import io
+import unicodedata
+from typing import Any
+
+import pytest
+
+from advisor.counsel.compare import compare
+from advisor.counsel.comparison import Comparison
+from advisor.counsel.layout import ROWS
+from advisor.counsel.stock import builtin_range
+from advisor.counsel.visit import check_visit
+from advisor.web.language import language
+from advisor.web.table import CSV_HEAD, csv_rows, csv_text, harmless, one_line, shown_width, text_table
+
+ENGLISH = language("en")
+PAIR: dict[str, Any] = {"design": "single-vision", "material": "hard-resin-150", "coating": "bare"}
+
+
+def answer(*options: dict[str, Any], left: float = -2.0, **visit: Any) -> Comparison:
+    content = {"prescription": {"right": {"sphere": -2.0}, "left": {"sphere": left}}, "scenes": [], **visit}
+    content["options"] = [{**PAIR, **option} for option in options] or [PAIR]
+    return compare(check_visit(content), builtin_range(), translator=ENGLISH)
+
+
+def table(comparison: Comparison, title: str = "Title") -> list[str]:
+    return text_table(comparison, title=title, currency="EUR", language=ENGLISH).splitlines()
+
+
+def line(lines: list[str], start: str) -> str:
+    (found,) = (one for one in lines if one.startswith(start))
+    return found
+
+
+def test_columns_of_figures_end_below_each_other() -> None:
+    lines = table(answer({}, {"coating": "broadband"}, {"coating": "blue-reflecting"}))
+    rule = next(one for one in lines if set(one) == {"-"})
+    assert len(line(lines, "price of the pair")) == len(rule)
+    assert line(lines, "price of the pair").split()[-3:] == ["€80.00", "€150.00", "€160.00"]
+    figures = [one for one in lines if one.endswith(" %")]
+    assert {len(one) for one in figures} == {len(rule)}
+
+
+def test_two_lenses_shown_alike_are_one_figure_and_others_two() -> None:
+    assert "/" not in line(table(answer()), "thickest edge")
+    assert line(table(answer(left=-5.0)), "thickest edge").count("/") == 1
+
+
+def test_a_refused_option_has_dashes_and_its_reason_below() -> None:
+    lines = table(answer({}, {"material": "crown-glass-152", "tint": 0.5}))
+    assert line(lines, "light passed").endswith("–")
+    assert "Option 2: Crown glass 1.52 is not sold with a tint." in lines
+
+
+def test_a_caution_for_some_options_names_them_and_one_for_all_does_not() -> None:
+    lines = table(answer({}, {"coating": "broadband"}, {"tint": 0.5, "coating": "broadband"}))
+    assert line(lines, "Caution (3): The finished lens passes")
+    assert line(lines, "Caution (2, 3): A coating adds no strength")
+    assert line(lines, "Caution: An ordinary spectacle lens")
+
+
+def test_an_unknown_price_is_a_dash() -> None:
+    lines = table(answer({"material": {"n_d": 1.5, "abbe": 58, "density_g_cm3": 1.3}}))
+    assert line(lines, "price of the pair").endswith("–")
+
+
+def test_wide_letters_take_two_columns_and_accents_none() -> None:
+    assert shown_width("眼鏡") == 4
+    assert shown_width(unicodedata.normalize("NFD", "é")) == 1
+    lines = table(answer({"material": {"label": "眼鏡", "n_d": 1.5, "abbe": 58, "density_g_cm3": 1.3}}, {}))
+    head = next(one for one in lines if "眼鏡" in one)
+    rule = next(one for one in lines if set(one) == {"-"})
+    assert shown_width(head) == len(rule)
+
+
+@pytest.mark.parametrize("sign", ["\n", "\r", "\x1b", "\x07", "\u202e", "\u2028", "\x9b"])
+def test_no_sign_that_steers_a_terminal_is_printed(sign: str) -> None:
+    assert one_line(f"a{sign}b") == "a\N{REPLACEMENT CHARACTER}b"
+    lines = table(
+        answer({"material": {"label": f"L{sign}X", "n_d": 1.5, "abbe": 58, "density_g_cm3": 1.3}}), f"T{sign}U"
+    )
+    assert lines[0] == "T\N{REPLACEMENT CHARACTER}U"
+    assert not [one for one in lines if sign in one]
+
+
+# OWASP, CSV injection
+@pytest.mark.parametrize(
+    ("cell", "written"),
+    [("=1+1", "'=1+1"), ("+1", "'+1"), ("-1", "'-1"), ("@A1", "'@A1"), ("\tx", "'\tx"), ("\nx", "'\nx"),
+     ("A-117", "A-117"), ("", ""), ("a=1", "a=1")],
+)  # fmt: skip
+def test_a_text_cell_is_never_a_formula(cell: str, written: str) -> None:
+    assert harmless(cell) == written
+
+
+def test_rows_carry_the_keys_of_the_table_and_bare_numbers() -> None:
+    rows = csv_rows(answer({}, {"coating": "broadband"}, reference='A, "1"'), file="a.json")
+    read = list(csv.reader(io.StringIO(csv_text(rows), newline="")))
+    assert read[0] == CSV_HEAD
+    assert {row[1] for row in read[1:]} == {'A, "1"'}
+    assert {row[2] for row in read[1:]} == {"1", "2"}
+    assert {row[4] for row in read[1:]} <= {row.key for row in ROWS} | {"price"}
+    by_name = {(row[2], row[3], row[4]): float(row[5]) for row in read[1:]}
+    assert by_name["1", "both", "price"] == 80.0
+    right = answer().options[0].right
+    assert right is not None
+    loss = right.luminous_reflectance.first_pass_loss
+    assert by_name["1", "right", "first_pass_loss"] == pytest.approx(loss, rel=1e-12)
+
+
+def test_the_head_is_written_once_where_asked_and_lines_end_as_the_standard_says() -> None:
+    rows = csv_rows(answer(), file="a.json")
+    assert csv_text(rows).startswith(",".join(CSV_HEAD) + "\r\n")  # RFC 4180
+    assert not csv_text(rows, head=False).startswith(CSV_HEAD[0] + ",")
+
+
+def test_a_refused_option_has_no_rows_of_figures() -> None:
+    rows = csv_rows(answer({}, {"material": "crown-glass-152", "tint": 0.5}), file="a.json")
+    assert {row[3] for row in rows if row[2] == 2} <= {"both"}
