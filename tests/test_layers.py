@@ -15,7 +15,7 @@ THIRD_PARTIES = {
     "cli": {"click", "tqdm"},
     "web": {"flask", "werkzeug", "jinja2", "markupsafe", "babel", "weasyprint", "cheroot", "pydantic"},
     "records": {"sqlalchemy", "alembic", "platformdirs"},
-    "counsel": {"numpy", "pydantic", "tomlkit"},
+    "counsel": {"numpy", "pydantic", "pydantic_core", "tomlkit"},
     "optics": {"numpy"},
     "resources": set(),
     "errors": set(),

@@ -24,7 +24,7 @@ from advisor.counsel.weighed import figures_of, scenes_that_count
 from advisor.counsel.whole_range import WholeRange, material_key, work_out
 
 Floats = NDArray[np.float64]
-HOLDS, MOSTLY = 0.95, 0.7  # shares of the priority sets; modelling choices
+HOLDS, MOSTLY = 0.85, 0.6  # shares of the priority sets; modelling choices
 
 
 @dataclass(frozen=True)
@@ -117,7 +117,7 @@ class Counsel:
 
 def field_of(case: Case, laid: Sequence[Laid], *, imbalance_prism_d: float) -> Field:
     """Work out everything that may be advised."""
-    pool = pool_of(case, laid)
+    pool = pool_of(case, laid, imbalance_prism_d=imbalance_prism_d)
     judged = replace(case, scenes=scenes_that_count(case, laid))
     computed = work_out(judged, pool.laid)
     levels = levels_of(case)

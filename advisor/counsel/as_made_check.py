@@ -10,7 +10,14 @@ from dataclasses import dataclass
 
 from advisor.counsel.measured import Measured, MeasuredEye
 from advisor.counsel.phrases import Translator, mark
-from advisor.counsel.prescription import EYES, Eye, SphereCylinder, in_minus_cylinder, power_along_d, principal_meridians
+from advisor.counsel.prescription import (
+    EYES,
+    Eye,
+    SphereCylinder,
+    in_minus_cylinder,
+    power_along_d,
+    principal_meridians,
+)
 from advisor.counsel.recheck_answer import AsMade, Finding
 from advisor.counsel.recheck_lens import OnFile
 from advisor.counsel.tolerances import CENTRE_OFF_MM, ROUNDING, Tolerances, tolerances_of
@@ -43,7 +50,14 @@ class _Judge:
         return self.lens.laid.design.kind == "progressive"
 
     def finding(
-        self, figure: str, *, eye: Eye | None, ordered: float, measured: float, tolerance: float | None, off: float | None = None
+        self,
+        figure: str,
+        *,
+        eye: Eye | None,
+        ordered: float,
+        measured: float,
+        tolerance: float | None,
+        off: float | None = None,
     ) -> Finding:
         away = measured - ordered if off is None else off
         label, unit = MEASURED[figure]
@@ -74,9 +88,7 @@ class _Judge:
         if want.cylinder_d and got.cylinder_d:
             turn = (got.axis_deg - want.axis_deg + 90.0) % 180.0 - 90.0
             limit = rules.axis_deg(want.cylinder_d)
-            yield self.finding(
-                "axis", eye=eye, ordered=want.axis_deg, measured=got.axis_deg, tolerance=limit, off=turn
-            )
+            yield self.finding("axis", eye=eye, ordered=want.axis_deg, measured=got.axis_deg, tolerance=limit, off=turn)
 
     def places(self, eye: Eye, k: int, read: MeasuredEye) -> Iterator[Finding]:
         """Judge one lens's place and thickness; in single vision the place is judged as prism of the pair."""
@@ -107,18 +119,22 @@ def verify(lens: OnFile, measured: Measured | None) -> AsMade:
         found += judge.places(eye, k, read)
     if measured is not None:
         found += _prism_of_the_pair(judge, measured)
-    key = "ansi" if rules.key == "ansi" else "iso"
-    return AsMade(tolerances=key, source=lens.translator.gettext(rules.source), findings=found)
+    return AsMade(tolerances=rules.key, source=lens.translator.gettext(rules.source), findings=found)
 
 
 def _prism_of_the_pair(judge: _Judge, measured: Measured) -> Iterator[Finding]:
     """Judge horizontal prism added up over the eyes (base in positive) and vertical prism right against left."""
     lens, rules = judge.lens, judge.rules
     ordered = [lens.case.eye(eye).prism_vector for eye in EYES]
-    wanted = ordered[0].inward_prism_d + ordered[1].inward_prism_d, ordered[0].upward_prism_d - ordered[1].upward_prism_d
+    wanted = (
+        ordered[0].inward_prism_d + ordered[1].inward_prism_d,
+        ordered[0].upward_prism_d - ordered[1].upward_prism_d,
+    )
     off = _prism_off(lens, measured)
     allowed = (rules.horizontal_prism_d, 180.0), (rules.vertical_prism_d, 90.0)
-    for figure, want, away, (rule, along) in zip(("horizontal-prism", "vertical-prism"), wanted, off, allowed, strict=True):
+    for figure, want, away, (rule, along) in zip(
+        ("horizontal-prism", "vertical-prism"), wanted, off, allowed, strict=True
+    ):
         if away is None:
             continue
         strongest = max(abs(power_along_d(power, meridian_deg=along)) for power in lens.laid.powers)
@@ -143,7 +159,7 @@ def _prism_off(lens: OnFile, measured: Measured) -> tuple[float | None, float | 
             outward = got.pd_mm - float(case.pd_mm[k])
             inwards.append(-power_along_d(power, meridian_deg=180.0) * outward / 10.0)
         if got.height_mm is not None and not case.is_default(f"fitting.{eye}.height_mm"):
-            upward = got.height_mm - float(case.height_mm[k])
-            upwards.append(power_along_d(power, meridian_deg=90.0) * upward / 10.0)
+            higher = got.height_mm - float(case.height_mm[k])
+            upwards.append(power_along_d(power, meridian_deg=90.0) * higher / 10.0)
     horizontal = sum(inwards) if len(inwards) == 2 else None
     return horizontal, upwards[0] - upwards[1] if len(upwards) == 2 else None

@@ -9,7 +9,9 @@ from numpy.typing import NDArray
 from advisor.counsel.prescription import EYES, Eye, SphereCylinder, at_vertex
 from advisor.counsel.stock import Range
 from advisor.counsel.stock_items import Scene
-from advisor.counsel.visit import EyeFitting, EyePrescription, Visit
+from advisor.counsel.visit import EyeFitting, EyePrescription, Frame, Visit
+from advisor.optics.fringe import CENTRE_OF_ROTATION_MM
+from advisor.optics.outline import outline_box
 
 CHILD_UNDER = 16  # restricted supply begins here in the UK; common practice elsewhere, no source
 OLDER_FROM = 65  # common practice, no source
@@ -50,6 +52,7 @@ class Case:
     wrap_deg: float
     working_distance_cm: float
     pd_mm: NDArray[np.float64]
+    near_pd_mm: NDArray[np.float64]
     height_mm: NDArray[np.float64]
     a_mm: float
     b_mm: float
@@ -104,6 +107,24 @@ class Case:
         return () if life is None else tuple(name for name in type(life).model_fields if self.says(name))
 
 
+def near_pd(pd_mm: float, working_distance_cm: float, vertex_mm: float) -> float:
+    """Return the monocular PD at the lens for an eye turned to a near point in the middle.
+
+    By similar triangles from the eye's centre of rotation, 15 mm behind the cornea (common practice, no source).
+    """
+    work_mm = 10.0 * working_distance_cm
+    return pd_mm * work_mm / (work_mm + vertex_mm + CENTRE_OF_ROTATION_MM)
+
+
+def traced_box(frame: Frame | None) -> tuple[float, float] | None:
+    """Return width and height of a traced outline, or None where there is none."""
+    outline = frame.outline if frame else None
+    if outline is None:
+        return None
+    width, height, _, _ = outline_box(np.array(outline.right or outline.left))
+    return float(width), float(height)
+
+
 class _Filled:
     """Takes given figures and remembers which defaults stood in."""
 
@@ -131,11 +152,22 @@ def build_case(visit: Visit, stock: Range, *, today: dt.date) -> Case:
     filled = _Filled()
     wearer, fitting, frame = visit.wearer, visit.fitting, visit.frame
     age = visit.age(today=today)
-    a_mm = filled.number(frame.a_mm if frame else None, "frame.a_mm")
-    b_mm = filled.number(frame.b_mm if frame else None, "frame.b_mm")
+    traced = traced_box(frame)
+    given_a, given_b = (frame.a_mm, frame.b_mm) if frame else (None, None)
+    a_mm = filled.number(given_a if given_a is not None or traced is None else traced[0], "frame.a_mm")
+    b_mm = filled.number(given_b if given_b is not None or traced is None else traced[1], "frame.b_mm")
     eyes: list[EyeFitting | None] = [fitting.right if fitting else None, fitting.left if fitting else None]
     working = fitting.working_distance_cm if fitting else None
     fitted = fitting.vertex_mm if fitting else None
+    vertex_mm = fitted if fitted is not None else float(DEFAULTS["fitting.vertex_mm"])
+    # a working distance is put to use by an add alone, so only then is its default worth a word
+    work_cm = working[0] if working else None
+    if work_cm is None and not any(eye.add for eye in (visit.prescription.right, visit.prescription.left)):
+        work_cm = float(DEFAULTS["fitting.working_distance_cm"])
+    work_cm = filled.number(work_cm, "fitting.working_distance_cm")
+    pd_mm = np.array(
+        [filled.number(e.pd_mm if e else None, f"fitting.{name}.pd_mm") for name, e in zip(EYES, eyes, strict=True)]
+    )
     # where the tested distance is not known the power stays as written, whatever the fitted one
     tested = filled.number(visit.prescription.vertex_mm, "prescription.vertex_mm", default=fitted)
     return Case(
@@ -149,9 +181,13 @@ def build_case(visit: Visit, stock: Range, *, today: dt.date) -> Case:
         fitted_vertex_mm=filled.number(fitted, "fitting.vertex_mm", default=tested),
         tilt_deg=filled.number(fitting.tilt_deg if fitting else None, "fitting.tilt_deg"),
         wrap_deg=filled.number(fitting.wrap_deg if fitting else None, "fitting.wrap_deg"),
-        working_distance_cm=filled.number(working[0] if working else None, "fitting.working_distance_cm"),
-        pd_mm=np.array(
-            [filled.number(e.pd_mm if e else None, f"fitting.{name}.pd_mm") for name, e in zip(EYES, eyes, strict=True)]
+        working_distance_cm=work_cm,
+        pd_mm=pd_mm,
+        near_pd_mm=np.array(
+            [
+                near if (near := e.near_pd_mm if e else None) is not None else near_pd(pd, work_cm, vertex_mm)
+                for e, pd in zip(eyes, pd_mm.tolist(), strict=True)
+            ]
         ),
         height_mm=np.array(
             [

@@ -6,6 +6,8 @@ from dataclasses import dataclass, replace
 from typing import Any
 
 from advisor import __version__
+from advisor.counsel.advice_answer import advice_content
+from advisor.counsel.advise import Counsel, advise
 from advisor.counsel.answer import Figures, notice, number, option_answer
 from advisor.counsel.case import Case, build_case
 from advisor.counsel.caution_texts import CAUTION_TEXTS
@@ -18,17 +20,19 @@ from advisor.counsel.ghosts import GhostFigures, figures_of
 from advisor.counsel.laid_out import Laid, Refused, lay_out, options_of, without_film
 from advisor.counsel.light import Light, light_of
 from advisor.counsel.limits import coatings_that_reach, limits_of
-from advisor.counsel.phrases import Phrase, Translator, mark, say
+from advisor.counsel.phrases import Figure, Phrase, Translator, mark, say
 from advisor.counsel.prescription import power_along_d
 from advisor.counsel.stock import Range
+from advisor.counsel.stock_items import Tint
 from advisor.counsel.visit import DailyLife, Visit
 from advisor.counsel.visit_checks import WARNING_TEXTS, age_faults, prescription_warnings, visit_faults
+from advisor.counsel.words import WORD_TEXTS
 
 Content = dict[str, Any]
 
 OWN_WARNINGS: dict[str, str] = {
-    "not-asked": mark("Not asked, and not taken as “never”: %(questions)s."),
-    "defaults-used": mark("Figures that are defaults, not measurements: %(count)s."),
+    "not-asked": mark("Not asked, and not taken as “never”: %(question_names)s."),
+    "defaults-used": mark("Defaults, not measurements: %(field_names)s."),
 }
 
 
@@ -84,9 +88,18 @@ def _with_tint_refusals(laid: Sequence[Laid], light: Light) -> list[Laid]:
         if fits or option.tint is None:
             found.append(option)
             continue
-        figures = {"luminous_percent": 100 * option.tint.luminous_transmittance}
-        found.append(replace(option, refused=(*option.refused, Refused(Phrase("tint-out-of-reach", figures)))))
+        figures: dict[str, Figure] = {
+            "luminous_percent": 100 * lightest(option.tint),
+            "material": option.material.label or option.material.key,
+        }
+        code = "tint-out-of-reach" if option.tint.finished else "tint-too-light"
+        found.append(replace(option, refused=(*option.refused, Refused(Phrase(code, figures)))))
     return found
+
+
+def lightest(tint: Tint) -> float:
+    """Return the greater of a tint's two figures: the one that can be out of reach."""
+    return max(tint.luminous_transmittance, tint.luminous_transmittance_dark or 0.0)
 
 
 def warnings_of(case: Case) -> list[Phrase]:
@@ -95,9 +108,9 @@ def warnings_of(case: Case) -> list[Phrase]:
     asked = case.visit.daily_life
     not_asked = asked.not_asked() if asked is not None else tuple(_all_questions())
     if not_asked:
-        found.append(Phrase("not-asked", {"questions": ", ".join(not_asked)}))
+        found.append(Phrase("not-asked", {"question_names": ", ".join(not_asked)}))
     if case.defaults_used:
-        found.append(Phrase("defaults-used", {"count": len(case.defaults_used)}))
+        found.append(Phrase("defaults-used", {"field_names": ", ".join(case.defaults_used)}))
     return found
 
 
@@ -112,6 +125,11 @@ def lens_light(computed: Computed, index: int) -> LensLight:
         transmittance_dark=float(computed.light.transmittance_dark[index]),
         imbalance_prism_d=computed.vertical_imbalance_prism_d,
     )
+
+
+def advice_of(computed: Computed) -> Counsel:
+    """Return the advice for a visit that has been worked out, before it is put in words."""
+    return advise(computed.case, computed.laid, imbalance_prism_d=computed.vertical_imbalance_prism_d)
 
 
 def _cautions(computed: Computed, translator: Translator) -> list[Content]:
@@ -139,7 +157,7 @@ def _cautions(computed: Computed, translator: Translator) -> list[Content]:
 def answer_of(computed: Computed, *, translator: Translator, with_advice: bool = True) -> Comparison:
     """Turn computed arrays into the answer, in the translator's language."""
     case = computed.case
-    texts = WARNING_TEXTS | OWN_WARNINGS
+    texts = WARNING_TEXTS | OWN_WARNINGS | WORD_TEXTS
     used = [*case.defaults_used, *(name for option in computed.laid for name in option.defaults_used)]
     if options_of(case)[1]:
         used.append("options")
@@ -161,7 +179,8 @@ def answer_of(computed: Computed, *, translator: Translator, with_advice: bool =
     if case.visit.reference is not None:
         content["reference"] = case.visit.reference
     if with_advice:
-        content["advice"] = {"cautions": _cautions(computed, translator)}
+        content["advice"] = advice_content(advice_of(computed), translator=translator)
+        content["advice"]["cautions"] = _cautions(computed, translator)
         _add_limits(content["options"], computed)
     return Comparison.model_validate(content)
 
@@ -172,15 +191,15 @@ def _add_limits(options: list[Content], computed: Computed) -> None:
     limits = limits_of(case, computed.laid, forms=computed.forms)
     if limits is None:
         return
+    reached = coatings_that_reach(case, computed.laid, forms=computed.forms)
     for k, option in enumerate(options):
         if option["refused"]:
             continue
-        limit = float(limits.not_noticed[k])
         option["reflectance_limit"] = {
-            "not_noticed": number(limit),
+            "not_noticed": number(limits.not_noticed[k]),
             "at_the_limit": number(limits.at_the_limit[k]),
-            "scene": case.scenes[int(limits.scene[k])].key,
-            "reached_by": coatings_that_reach(limit, computed.laid[k], case.stock),
+            "scene": limits.scenes[int(limits.scene[k])].key,
+            "reached_by": reached[k],
         }
 
 

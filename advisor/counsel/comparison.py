@@ -171,7 +171,7 @@ class EyeFigures(_Part):
 class ReflectanceLimit(_Part):
     """The most each face may mirror, alike on both, so that the worst ghost stays below a visibility level.
 
-    Null where even a bare face keeps the level; ``reached_by`` are the coatings sold that keep ``not_noticed`` as made.
+    Null where even a bare face keeps the level; ``reached_by`` are the coatings sold with which the worst ghost is not noticed, as designed. Judged on roads by night.
     """
 
     not_noticed: float | None
@@ -208,18 +208,71 @@ class Caution(_Part):
     options: list[int] = Field(default_factory=list, description="the options it applies to")
 
 
-class Advice(_Part):
-    """Advice; its parts appear as they are built."""
+class AdvisedOption(_Part):
+    """A pair that advice names: by its index where it is laid out, else null, and always by what it is made of."""
 
-    recommended: dict[str, object] | None = None
-    next_best: dict[str, object] | None = None
-    cheapest_that_meets_every_must: dict[str, object] | None = None
+    index: int | None
+    label: str
+    design: str
+    material: str
+    coating: Faces
+    tint: str | float | None = None
+    price: float | None
+    figures: dict[str, float | None] = Field(
+        default_factory=dict, description="what it is weighed by; price in about as many euros"
+    )
+    because: list[Notice] | None = Field(default=None, description="gains against the recommended pair")
+    gives_up: list[Notice] | None = Field(default=None, description="losses against the recommended pair")
+    use: Literal["far", "near", "clear", "tinted"] | None = Field(default=None, description="of one of two pairs")
+    text: str | None = None
+
+
+class Excluded(_Part):
+    """A condition that an option laid out breaks, or why it cannot be made."""
+
+    option: int
+    code: str
+    text: str
+    figures: dict[str, Figure] = Field(default_factory=dict)
+    source: str | None = None
+
+
+class Priority(_Part):
+    """What the wearer's answers make count, and its middle weight."""
+
+    key: str
+    label: str
+    weight: float
+
+
+class Robustness(_Part):
+    """The share of the priority sets in which the advice holds, and what it turns on in the others."""
+
+    code: Literal["holds", "mostly", "turns"]
+    share: float
+    turns_on: str | None = None
+
+
+class Advice(_Part):
+    """Advice: the cheapest that meets every must, the recommended, the next best, or two pairs where one does not do.
+
+    Where ``recommended`` is null, ``because`` holds the reason: ``no-single-option`` (then ``two_pairs``) or
+    ``nothing-meets-every-must``. ``ranking`` holds the laid-out options that meet every must, by worth.
+    """
+
+    recommended: AdvisedOption | None = None
+    next_best: AdvisedOption | None = None
+    cheapest_that_meets_every_must: AdvisedOption | None = None
     ranking: list[int] | None = None
-    excluded: list[dict[str, object]] | None = None
+    excluded: list[Excluded] | None = None
     because: list[Notice] | None = None
     gives_up: list[Notice] | None = None
     would_change: list[Notice] | None = None
     robust: str | None = None
+    robustness: Robustness | None = None
+    free_first: list[Notice] | None = Field(default=None, description="remedies that cost nothing, before any lens")
+    two_pairs: list[AdvisedOption] | None = None
+    priorities: list[Priority] | None = None
     cautions: list[Caution] = Field(default_factory=list)
     greatest_reflectance_per_surface: float | None = None
 

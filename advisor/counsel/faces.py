@@ -4,6 +4,7 @@ A face is nominal (as designed) or 64 faces as made. A measured spectrum and a s
 layers, so they have no as-made spread; a declared figure borrows the shape of the nearest built-in film and says so.
 """
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import lru_cache
 
@@ -16,7 +17,8 @@ from advisor.optics import as_made, colour
 from advisor.optics.grid import WAVELENGTHS_NM
 from advisor.optics.layers import HardCoat, stack_arrays
 from advisor.optics.media import lens_index
-from advisor.optics.spectrum_input import EstimatedSpectrum, measured_spectrum, scaled_shape
+from advisor.optics.photometry import luminous_mean
+from advisor.optics.spectrum_input import DeclaredOutOfReach, EstimatedSpectrum, measured_spectrum, scaled_shape
 from advisor.optics.surface import SurfaceSpectra, film_surface, reflectance_surface
 
 SAMPLES = 64
@@ -67,6 +69,22 @@ def sold_coating(material: Material, coating: Coating, stock: Range) -> Coating:
     return coating
 
 
+def known_coating(material: Material, coating: Coating) -> Coating:
+    """Return the coating, or bare where its declared figure fits no built-in film on this material."""
+    return coating if _is_known(face_of(material, coating)) else BARE
+
+
+@lru_cache(maxsize=4096)
+def _is_known(face: Face) -> bool:
+    if face.coating.declared is None:
+        return True
+    try:
+        _declared(face)
+    except DeclaredOutOfReach:
+        return False
+    return True
+
+
 def substrate(face: Face) -> NDArray[np.float64]:
     """Return the index of the lens material on the grid, (401,)."""
     return lens_index(WAVELENGTHS_NM, index=face.index, abbe=face.abbe, line="e" if face.line == "e" else "d")
@@ -74,11 +92,16 @@ def substrate(face: Face) -> NDArray[np.float64]:
 
 @lru_cache(maxsize=4096)
 def nominal(face: Face, angle_deg: float = 0.0) -> SurfaceSpectra:
-    """Return the three spectra of a face as designed, each (401,); a face without layers is the same at every angle."""
+    """Return the three spectra of a face as designed, each (401,).
+
+    A measured spectrum holds straight on and is taken for every angle; a declared figure takes on the angle of the
+    film whose shape it borrows.
+    """
     if face.coating.spectrum is not None:
         return _bounded(reflectance_surface(measured_spectrum(face.coating.spectrum)))
     if face.coating.declared is not None:
-        return reflectance_surface(_declared(face).spectrum)
+        estimate = _declared(face)
+        return reflectance_surface(_scaled(face, estimate, (estimate.shape,), angle_deg)[0])
     index, thickness_nm = _stack(face)
     return _bounded(
         film_surface(substrate(face), layer_index=index, layer_thickness_nm=thickness_nm, angle_deg=angle_deg)
@@ -103,7 +126,8 @@ def shapes(face: Face, angle_deg: float = 0.0) -> SurfaceSpectra:
     if face.coating.declared is None:
         known = nominal(face, angle_deg)
         return SurfaceSpectra(known.outside[None], known.inside[None], known.transmittance[None])
-    return reflectance_surface(_declared(face).candidates)
+    estimate = _declared(face)
+    return reflectance_surface(_scaled(face, estimate, estimate.shapes, angle_deg))
 
 
 @lru_cache(maxsize=256)
@@ -114,9 +138,7 @@ def made(face: Face, angle_deg: float = 0.0) -> SurfaceSpectra | None:
     index, thickness_nm = _stack(face)
     factors = as_made.thickness_factors(len(thickness_nm), samples=SAMPLES)
     return _bounded(
-        film_surface(
-            substrate(face), layer_index=index, layer_thickness_nm=thickness_nm * factors, angle_deg=angle_deg
-        )
+        film_surface(substrate(face), layer_index=index, layer_thickness_nm=thickness_nm * factors, angle_deg=angle_deg)
     )
 
 
@@ -158,14 +180,26 @@ def _stack(face: Face) -> tuple[NDArray[np.float64], NDArray[np.float64]]:
     )
 
 
+def _films_on(face: Face) -> list[Face]:
+    """Return the built-in films on this lens material, whose shapes a declared figure may borrow."""
+    films = [coating for coating in builtin_range().coating if coating.layers]
+    return [Face(face.index, face.abbe, face.line, optical(film)) for film in films]
+
+
+def _scaled(face: Face, estimate: EstimatedSpectrum, places: Sequence[int], angle_deg: float) -> NDArray[np.float64]:
+    """Return these shapes at an angle, (shapes, 401), each scaled as straight on it has the declared figure."""
+    films, declared = _films_on(face), luminous_mean(estimate.spectrum)
+    chosen = [films[place] for place in places]
+    factors = np.array([float(declared) / luminous_reflectance(film) for film in chosen])
+    return np.minimum(factors[:, None] * np.stack([nominal(film, angle_deg).outside for film in chosen]), 1.0)
+
+
 @lru_cache(maxsize=256)
 def _declared(face: Face) -> EstimatedSpectrum:
     """Return the spectrum a declared figure is taken for, on this lens material."""
     declared = face.coating.declared
     if declared is None:
         raise ValueError("face has no declared figure.")
-    films = [coating for coating in builtin_range().coating if coating.layers]
-    known = [nominal(Face(face.index, face.abbe, face.line, optical(film))) for film in films]
-    outsides = np.stack([surface.outside for surface in known])
+    outsides = np.stack([nominal(film).outside for film in _films_on(face)])
     hues = [colour.hue_word(colour.xyz(outside)) for outside in outsides]
     return scaled_shape(outsides, hues, declared=declared.luminous_reflectance, hue=declared.hue)

@@ -30,6 +30,7 @@ Floats = NDArray[np.float64]
 SMALLER_BY_MM = 4.0
 PROTECTIVE_CENTRE_MM = 2.0  # child, one good eye, frequent impact: common practice, no source
 ONE_CURVE_WITHIN_D = 1.0
+NEAR_ONLY = ("reading", "occupational")
 EYE_INDEX = np.array([0, 1])
 
 
@@ -114,14 +115,22 @@ def _box_rims(a_mm: float, b_mm: float, ed_mm: float | None) -> Floats:
     return np.broadcast_to(rim, (2, *rim.shape))
 
 
-def centred_rims(case: Case, *, smaller_by_mm: float = 0.0) -> CentredRim:
-    """Return both rims about the optical centres; in the smaller frame the eye keeps its height above the middle."""
+def centration_pd_mm(case: Case, laid: Sequence[Laid]) -> Floats:
+    """Return where each lens is centred, (option, eye): a lens for near alone at the near PD, others at the PD."""
+    return np.array([case.near_pd_mm if option.design.kind in NEAR_ONLY else case.pd_mm for option in laid])
+
+
+def centred_rims(case: Case, laid: Sequence[Laid], *, smaller_by_mm: float = 0.0) -> CentredRim:
+    """Return every rim about its optical centre, (option, eye, points).
+
+    In the smaller frame the eye keeps its height above the middle.
+    """
     scale = 1.0 - smaller_by_mm / case.a_mm
     centre = optical_centre(
         case.a_mm - smaller_by_mm,
         b_mm=case.b_mm * scale,
         dbl_mm=case.dbl_mm,
-        monocular_pd_mm=case.pd_mm,
+        monocular_pd_mm=centration_pd_mm(case, laid),
         height_mm=case.height_mm - case.b_mm * (1.0 - scale) / 2.0,
     )
     return centred_rim(rims_of(case, smaller_by_mm=smaller_by_mm), optical_centre_mm=centre)
@@ -191,7 +200,12 @@ def shape_of(
         least_centre_mm=np.array([[least_centre_mm(case, option.material)] for option in laid]),
         least_edge_mm=LEAST_EDGE_MM[case.rim],
         prism_d=powers.prism_d,
-        blank_mm=np.array([[stock_blank_mm(option, float(blank)) for blank in needed] for option in laid]),
+        blank_mm=np.array(
+            [
+                [stock_blank_mm(option, blank) for blank in row]
+                for option, row in zip(laid, needed.tolist(), strict=True)
+            ]
+        ),
         centre_mm=powers.centre_mm if centre_mm is None else centre_mm,
     )
 
@@ -222,9 +236,9 @@ def magnification_of(case: Case, powers: Powers, shape: LensShape) -> Floats:
 
 def forms_of(case: Case, laid: Sequence[Laid]) -> LensForms:
     """Work out the form of every option, and beside it the same lens in a frame 4 mm smaller."""
-    powers, rim = powers_of(case, laid), centred_rims(case)
+    powers, rim = powers_of(case, laid), centred_rims(case, laid)
     shape = shape_of(case, laid, powers, rim)
-    small_rim = centred_rims(case, smaller_by_mm=SMALLER_BY_MM)
+    small_rim = centred_rims(case, laid, smaller_by_mm=SMALLER_BY_MM)
     small = shape_of(case, laid, powers, small_rim)
     density = np.array([[option.material.density_g_cm3] for option in laid])
     return LensForms(
@@ -232,7 +246,7 @@ def forms_of(case: Case, laid: Sequence[Laid]) -> LensForms:
         shape=shape,
         rim=rim,
         weight_g=lens_weight_g(shape, rim=rim, density_g_cm3=density),
-        blank_mm=np.broadcast_to(minimum_blank(rim), shape.centre_mm.shape),
+        blank_mm=minimum_blank(rim),
         fringe_prism_d=field_fringe(
             powers.power_d,
             first_deg=powers.first_deg,

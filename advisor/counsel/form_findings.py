@@ -6,7 +6,7 @@ from dataclasses import replace
 import numpy as np
 
 from advisor.counsel.case import Case
-from advisor.counsel.form import LensForms, powers_of, shape_of
+from advisor.counsel.form import LensForms, centred_rims, powers_of, shape_of
 from advisor.counsel.laid_out import Laid, Refused, not_sold
 from advisor.counsel.phrases import Figure, Phrase
 from advisor.counsel.prescription import EYES
@@ -71,7 +71,7 @@ def _nearest_form(case: Case, option: Laid, forms: LensForms) -> Mapping[str, Fi
     tried = [replace(option, index=k, material=material, option=asked) for k, material in enumerate(materials)]
     if not tried:
         return None
-    shape = shape_of(case, tried, powers_of(case, tried), forms.rim)
+    shape = shape_of(case, tried, powers_of(case, tried), centred_rims(case, tried))
     made = [k for k in range(len(tried)) if np.all(shape.refusal[k] == Refusal.NONE)]
     if not made:
         return None
@@ -101,9 +101,21 @@ def _notes(case: Case, option: Laid, forms: LensForms) -> Iterator[Phrase]:
         yield Phrase("front-given")
     if option.design.form == "aspheric":
         yield Phrase("shown-as-spherical")
-    worst = max(option.powers, key=lambda power: abs(power.sphere_d + power.cylinder_d / 2.0))
-    mean = worst.sphere_d + worst.cylinder_d / 2.0
-    tilted, induced = martin_tilt(mean, tilt_deg=case.tilt_deg, index=float(forms.powers.index[k, 0]))
-    if max(abs(float(tilted) - mean), abs(float(induced))) >= TILT_CHANGE_FROM_D:
-        figures = {"tilt_deg": case.tilt_deg, "change_d": float(tilted) - mean, "cylinder_d": float(induced)}
-        yield Phrase("tilt-changes-power", figures)
+    if not forms.rim.encloses_centre[k].all():
+        yield Phrase("centre-outside-rim")
+    yield from _turned(case, option, index=float(forms.powers.index[k, 0]))
+
+
+def _turned(case: Case, option: Laid, *, index: float) -> Iterator[Phrase]:
+    """Tell what tilt (about a level axis) and wrap (about an upright one) do to the stronger lens, by Martin's rule."""
+    means = [power.sphere_d + power.cylinder_d / 2.0 for power in option.powers]
+    worst = max(range(len(EYES)), key=lambda e: abs(means[e]))
+    for code, name, turn_deg, axis in (
+        ("tilt-changes-power", "tilt_deg", case.tilt_deg, 180),
+        ("wrap-changes-power", "wrap_deg", case.wrap_deg, 90),
+    ):
+        sphere, cylinder = martin_tilt(means[worst], tilt_deg=turn_deg, index=index)
+        change_d = float(sphere) - means[worst]
+        if max(abs(change_d), abs(float(cylinder))) >= TILT_CHANGE_FROM_D:
+            figures: dict[str, Figure] = {name: turn_deg, "change_d": change_d, "cylinder_d": float(cylinder)}
+            yield Phrase(code, figures | {"axis": axis, "eye": EYES[worst]})

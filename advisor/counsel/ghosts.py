@@ -14,7 +14,7 @@ from numpy.typing import NDArray
 from advisor.counsel.case import Case
 from advisor.counsel.form import EYE_INDEX, LensForms
 from advisor.counsel.laid_out import Laid
-from advisor.counsel.light import Light, made_strengths, scene_light
+from advisor.counsel.light import Light, estimated_ranges, made_strengths, scene_light
 from advisor.counsel.spectra import tint_axes
 from advisor.optics.eye import ENTRANCE_PUPIL_MM
 from advisor.optics.ghost_inputs import LensOnFace, Wearer
@@ -205,7 +205,10 @@ def _change(amounts: dict[str, float]) -> Floats:
 
 
 def made_range(case: Case, laid: Sequence[Laid], light: Light) -> Floats:
-    """Return the strengths under every change, (change, option, scene, path): only the coating as made moves them."""
+    """Return the strengths under every change, (change, option, scene, path).
+
+    Only the coating moves them: as made, or over the shapes that a declared figure may have.
+    """
     strengths = np.repeat(light.strengths[None], len(CHANGES), axis=0)
     low, high = CHANGES.index("made low"), CHANGES.index("made high")
     lights = [scene_light(scene) for scene in case.scenes]
@@ -216,4 +219,8 @@ def made_range(case: Case, laid: Sequence[Laid], light: Light) -> Floats:
             points = made_strengths(front, back, axes[key.dark], key)
             if points is not None:
                 strengths[low, k, s], strengths[high, k, s] = points
+        estimated = estimated_ranges(option, case.scenes)
+        if estimated is not None:
+            strengths[low, k] = np.minimum(strengths[low, k], estimated[0])
+            strengths[high, k] = np.maximum(strengths[high, k], estimated[1])
     return strengths

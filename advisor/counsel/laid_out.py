@@ -2,11 +2,12 @@
 
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, replace
+from functools import cached_property
 from typing import TypeVar
 
 from advisor.counsel.case import Case
 from advisor.counsel.choices import Option
-from advisor.counsel.faces import Face, face_of, sold_coating
+from advisor.counsel.faces import Face, face_of, known_coating, sold_coating
 from advisor.counsel.phrases import Figure, Phrase, mark
 from advisor.counsel.prescription import EYES, SphereCylinder, power_for_design
 from advisor.counsel.pricing import best_offer, matching_offers, outside_limits, parts_price
@@ -47,15 +48,15 @@ class Laid:
     notes: tuple[Phrase, ...] = ()
     defaults_used: tuple[str, ...] = ()
 
-    @property
+    @cached_property
     def front_face(self) -> Face:
         """What the front is made of."""
-        return face_of(self.material, self.front)
+        return face_of(self.material, known_coating(self.material, self.front))
 
-    @property
+    @cached_property
     def back_face(self) -> Face:
         """What the back is made of."""
-        return face_of(self.material, self.back)
+        return face_of(self.material, known_coating(self.material, self.back))
 
     @property
     def made(self) -> str:
@@ -85,8 +86,15 @@ NOTE_TEXTS: dict[str, str] = {
     "front-given": mark("The front curve is the one asked for, not the shop's or the rule's."),
     "shown-as-spherical": mark("Shown as spherical curves; the real lens will be flatter."),
     "tilt-changes-power": mark(
-        "The tilt of %(tilt_deg)s degrees changes the power by %(change_d)s D and adds a cylinder of %(cylinder_d)s D."
+        "The tilt of %(tilt_deg)s degrees changes the %(eye)s power by %(change_d)s D "
+        "and adds a cylinder of %(cylinder_d)s D at axis %(axis)s."
     ),
+    "wrap-changes-power": mark(
+        "The wrap of %(wrap_deg)s degrees changes the %(eye)s power by %(change_d)s D "
+        "and adds a cylinder of %(cylinder_d)s D at axis %(axis)s."
+    ),
+    "centre-outside-rim": mark("The optical centre lies outside the rim: choose another frame, or ask the prescriber."),
+    "measured-straight-on": mark("The measured spectrum holds straight on; for light from behind it is more."),
     "finished-tint": mark("The tint's figure is the supplier's for the finished lens."),
 }
 REFUSAL_TEXTS: dict[str, str] = {
@@ -103,7 +111,11 @@ REFUSAL_TEXTS: dict[str, str] = {
     "too-thick": mark("%(material)s: no centre up to 30 mm gives this rim its least edge."),
     "too-thin": mark("The centre asked for is too thin; the least is %(centre_mm)s mm."),
     "blank-too-small": mark("The largest blank is %(largest_mm)s mm and this frame needs %(blank_mm)s mm."),
-    "tint-out-of-reach": mark("No tint gives a finished lens of %(luminous_percent)s %% with these faces."),
+    "tint-out-of-reach": mark("With these faces even a clear lens passes less than %(luminous_percent)s %%."),
+    "tint-too-light": mark("Even a clear, bare lens of %(material)s passes less than %(luminous_percent)s %%."),
+    "declared-out-of-reach": mark(
+        "No built-in film can stand for a declared %(declared_percent)s %% on %(material)s: give layers or a spectrum."
+    ),
 }
 
 
@@ -190,10 +202,30 @@ def _one(case: Case, option: Option, index: int, first: Laid | None) -> Laid:
         offer=offer,
         price=price,
         powers=powers,
-        refused=tuple(not_sold(case, stock, material, tint, powers)),
+        refused=(
+            *not_sold(case, stock, material, tint, powers),
+            *_not_known(material, {front.key: front, back.key: back}),
+        ),
         notes=tuple(notes),
         defaults_used=tuple(defaults),
     )
+
+
+def _not_known(material: Material, coatings: Mapping[str, Coating]) -> list[Refused]:
+    """Refuse a declared figure that no built-in film on this material can stand for."""
+    return [
+        Refused(
+            Phrase(
+                "declared-out-of-reach",
+                {
+                    "declared_percent": 100 * coating.declared.luminous_reflectance,
+                    "material": material.label or material.key,
+                },
+            )
+        )
+        for coating in coatings.values()
+        if coating.declared is not None and known_coating(material, coating) is not coating
+    ]
 
 
 def _notes(
@@ -209,6 +241,8 @@ def _notes(
         found.append(Phrase("hard-coat-assumed"))
     if any(face.declared is not None for face in faces):
         found.append(Phrase("estimated-spectrum"))
+    if any(face.spectrum is not None for face in faces):
+        found.append(Phrase("measured-straight-on"))
     if price is None:
         found.append(Phrase("price-unknown"))
     if stock.offer and offer is None:

@@ -113,11 +113,16 @@ def as_made_spreads(option: Laid) -> tuple[Floats | None, Floats | None, Floats 
 
     Both faces of a pair are coated in runs of their own, so the loss of the two takes every front with every back.
     """
-    front, back = made_reflectance(option.front_face), made_reflectance(option.back_face)
+    return _spreads(option.front_face, option.back_face)
+
+
+@lru_cache(maxsize=4096)
+def _spreads(front_face: Face, back_face: Face) -> tuple[Floats | None, Floats | None, Floats | None]:
+    front, back = made_reflectance(front_face), made_reflectance(back_face)
     both = None
     if front is not None or back is not None:
-        one = np.array([luminous_reflectance(option.front_face)]) if front is None else front
-        other = np.array([luminous_reflectance(option.back_face)]) if back is None else back
+        one = np.array([luminous_reflectance(front_face)]) if front is None else front
+        other = np.array([luminous_reflectance(back_face)]) if back is None else back
         both = spread((1.0 - (1.0 - one[:, None]) * (1.0 - other[None, :])).ravel())
     return None if front is None else spread(front), None if back is None else spread(back), both
 

@@ -1,20 +1,23 @@
 """The reflectance limit: the most each face may mirror so that this wearer notices no ghost; what reaches it."""
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
 
 from advisor.counsel.case import Case
-from advisor.counsel.faces import Face, face_of, luminous_reflectance, made_reflectance
 from advisor.counsel.form import LensForms
-from advisor.counsel.ghosts import lens_on_face, scene_arrays, wearer_of
+from advisor.counsel.ghosts import ghosts_of, lens_on_face, scene_arrays, wearer_of
 from advisor.counsel.laid_out import Laid
+from advisor.counsel.light import light_of
 from advisor.counsel.spectra import internal_transmittance
-from advisor.counsel.stock import BARE, Range
+from advisor.counsel.stock import BARE
+from advisor.counsel.stock_items import Scene
+from advisor.counsel.whole_range import rows_of
 from advisor.optics.fresnel import normal_reflectance
 from advisor.optics.reflectance_limit import reflectance_limit
+from advisor.optics.visibility import ROAD_RANGE_CD_M2
 
 NOT_NOTICED, AT_THE_LIMIT = 0.4, 1.0
 
@@ -23,8 +26,10 @@ NOT_NOTICED, AT_THE_LIMIT = 0.4, 1.0
 class Limits:
     """Greatest reflectance per face, (option,), the least over eyes and scenes; NaN where even bare is enough.
 
-    ``scene`` (option,) is the place of the scene that asks for it.
+    ``scenes`` are those judged, ``scene`` (option,) the place of the one that asks for the limit.
     """
+
+    scenes: tuple[Scene, ...]
 
     not_noticed: NDArray[np.float64]
     at_the_limit: NDArray[np.float64]
@@ -32,7 +37,8 @@ class Limits:
 
 
 def limits_of(case: Case, laid: Sequence[Laid], *, forms: LensForms) -> Limits | None:
-    """Solve the limit for every option, or return None where no scene is laid out."""
+    """Solve the limit for every option over the scenes that are judged, or return None where there is none."""
+    case = judged(case)
     if not case.scenes:
         return None
     lens, scene, wearer = lens_on_face(case, forms), scene_arrays(case), wearer_of(case, laid)
@@ -56,7 +62,7 @@ def limits_of(case: Case, laid: Sequence[Laid], *, forms: LensForms) -> Limits |
     not_noticed, at_the_limit = (
         np.where(bare_is_enough, np.nan, most.min(axis=-1)) for bare_is_enough, most in zip(needless, flat, strict=True)
     )
-    return Limits(not_noticed, at_the_limit, scene=flat[0].argmin(axis=-1) % len(case.scenes))
+    return Limits(case.scenes, not_noticed, at_the_limit, scene=flat[0].argmin(axis=-1) % len(case.scenes))
 
 
 def _tau(option: Laid, *, dark: bool) -> float:
@@ -64,17 +70,28 @@ def _tau(option: Laid, *, dark: bool) -> float:
     return 1.0 if tau is None else tau
 
 
-def most_as_made(face: Face) -> float:
-    """Return the 95 % point of the luminous reflectance as made, or the plain figure of a face without layers."""
-    samples = made_reflectance(face)
-    return luminous_reflectance(face) if samples is None else float(np.percentile(samples, 95.0))
+def judged(case: Case) -> Case:
+    """Return the case with the scenes alone that visibility levels are made for: lights ahead on a road by night.
+
+    By daylight, indoors and on a stage the threshold model is past its range, and light from behind is told by contrast.
+    """
+    roads = tuple(s for s in case.scenes if s.where == "ahead" and s.background_cd_m2 <= ROAD_RANGE_CD_M2)
+    return replace(case, scenes=roads)
 
 
-def coatings_that_reach(limit: float, option: Laid, stock: Range) -> list[str]:
-    """Return the keys of the coatings sold that stay under a limit on this material, as made; all where it has none."""
-    most = np.inf if np.isnan(limit) else limit
+def coatings_that_reach(case: Case, laid: Sequence[Laid], *, forms: LensForms) -> list[list[str]]:
+    """Return, for each option, the keys of the coatings sold whose worst ghost on it is not noticed, as designed."""
+    case = judged(case)
+    coatings = [coating for coating in case.stock.coating if coating.key != BARE.key]
+    if not case.scenes or not coatings:
+        return [[] for _ in laid]
+    rows = np.repeat(np.arange(len(laid)), len(coatings))
+    tried = [
+        replace(laid[row], index=k, front=coating, back=coating)
+        for k, (row, coating) in enumerate(zip(rows.tolist(), coatings * len(laid), strict=True))
+    ]
+    ghosts = ghosts_of(case, tried, forms=rows_of(forms, rows), light=light_of(tried, case.scenes))
+    worst = ghosts.relaxed.visibility_level.reshape(len(laid), len(coatings), -1).max(axis=-1)
     return [
-        coating.key
-        for coating in stock.coating
-        if coating.key != BARE.key and most_as_made(face_of(option.material, coating)) <= most
+        [coating.key for coating, level in zip(coatings, row, strict=True) if level <= NOT_NOTICED] for row in worst
     ]

@@ -4,6 +4,7 @@ A function returns the figures of its text where the lens breaks the condition, 
 does to a condition is written beside it in the table: not asked is never read as "never".
 """
 
+import math
 import tomllib
 from collections.abc import Callable, Collection, Iterator, Mapping
 from dataclasses import dataclass
@@ -32,7 +33,14 @@ class Finished:
 
 
 Condition = Callable[[Case, Laid, Finished, Limits], Figures | None]
-UNKNOWN = Finished(LensLight(1.0, 1.0, 0.0), 99.0)
+
+
+def unfinished(imbalance_prism_d: float = 0.0) -> Finished:
+    """Return what is known of a pair before its lenses are worked out; it breaks no condition of the finished lens."""
+    return Finished(LensLight(1.0, 1.0, imbalance_prism_d), math.inf)
+
+
+UNKNOWN = unfinished()
 
 
 @dataclass(frozen=True)
@@ -128,7 +136,7 @@ def _driving_tint(case: Case, _option: Laid, lens: Finished, limits: Limits) -> 
 
 def _too_dark(transmittance: float, limits: Limits) -> Figures | None:
     limit = limits["luminous_percent"]
-    figures = {"luminous_percent": shown_percent(transmittance), "limit_percent": limit}
+    figures: Figures = {"luminous_percent": shown_percent(transmittance), "limit_percent": limit}
     return _when(100 * transmittance < limit - ROUNDING, figures)
 
 
@@ -146,7 +154,7 @@ def _no_screen(case: Case, option: Laid, _lens: Finished, limits: Limits) -> Fig
         return None
     distance = screen_cm(case)
     blur = blur_at(case, option.design, 100.0 / distance, usable=usable_d(case))
-    figures = {"screen_cm": distance, "blur_d": blur, "limit_blur_d": limits["blur_d"]}
+    figures: Figures = {"screen_cm": distance, "blur_d": blur, "limit_blur_d": limits["blur_d"]}
     return _when(blur > limits["blur_d"], figures)
 
 
@@ -174,13 +182,13 @@ def _price_limit(case: Case, option: Laid, _lens: Finished, _limits: Limits) -> 
     limit = _limit_of_price(case)
     if limit is None or option.price is None:
         return None
-    figures = {"price": option.price, "limit_price": limit, "currency": currency_of(case)}
+    figures: Figures = {"price": option.price, "limit_price": limit, "currency": currency_of(case)}
     return _when(option.price > limit + ROUNDING, figures)
 
 
 def _price_unknown(case: Case, option: Laid, _lens: Finished, _limits: Limits) -> Figures | None:
     limit = _limit_of_price(case)
-    figures = {"limit_price": limit, "currency": currency_of(case)}
+    figures: Figures = {"limit_price": limit, "currency": currency_of(case)}
     return _when(limit is not None and option.price is None, figures)
 
 
@@ -213,7 +221,7 @@ CONDITIONS: Mapping[str, Condition] = {
     "price-unknown": _price_unknown,
     "not-offered": _not_offered,
 }
-OF_THE_FINISHED_LENS = frozenset(("protective-centre", "night-driving-tint", "driving-tint", "near-imbalance"))
+OF_THE_FINISHED_LENS = frozenset(("protective-centre", "night-driving-tint", "driving-tint"))
 OF_THE_DESIGN = frozenset(("no-far", "no-near", "no-screen", "design-without-add", "fitting-height"))
 OF_THE_PRICE = frozenset(("price-limit", "price-unknown"))
 

@@ -31,10 +31,14 @@ DIGITS: Mapping[str, int] = {
     "blank_mm": 0,
     "magnification_percent": 1,
     "price": 2,
+    "_times": 1,
 }
 # Figures that always carry a sign.
 SIGNED = ("_d",)
 UNSIGNED = ("_prism_d", "changed_by_d", "most_d", "blur_d")  # sizes, not powers
+
+
+WORD = "word:"  # begins the keys of words for names, see ``words.py``
 
 
 def mark(text: str) -> str:
@@ -79,6 +83,15 @@ def figure_text(name: str, value: Figure, translator: Translator) -> str:
 
 
 def say(phrase: Phrase, texts: Mapping[str, str], translator: Translator) -> str:
-    """Return the sentence of a phrase: its text in the translator's language with its figures put in."""
-    words = {name: figure_text(name, value, translator) for name, value in phrase.figures.items()}
+    """Return the sentence of a phrase: its text in the translator's language with its figures put in.
+
+    A figure whose name ends in ``_names`` is a list of names parted by commas; each is put into words by ``texts``.
+    """
+    words = {}
+    for name, value in phrase.figures.items():
+        if name.endswith("_names"):
+            listed = [part for part in str(value or "").split(", ") if part]
+            words[name] = ", ".join(translator.gettext(texts.get(WORD + part, part)) for part in listed)
+        else:
+            words[name] = figure_text(name, value, translator)
     return translator.gettext(texts[phrase.code]) % words

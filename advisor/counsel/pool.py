@@ -11,7 +11,7 @@ from advisor.counsel.case import Case
 from advisor.counsel.cautions import LensLight
 from advisor.counsel.choices import Faces, Option, TintRef
 from advisor.counsel.laid_out import Laid, lay_out_options
-from advisor.counsel.musts import OF_THE_DESIGN, OF_THE_FINISHED_LENS, CONDITIONS, Finished, broken_by
+from advisor.counsel.musts import CONDITIONS, OF_THE_DESIGN, OF_THE_FINISHED_LENS, Finished, broken_by, unfinished
 from advisor.counsel.phrases import Phrase
 from advisor.counsel.stock_items import IN_PLACE, Coating, Design, Material
 from advisor.counsel.whole_range import WholeRange, material_key
@@ -33,13 +33,14 @@ class Pool:
     worn_coated: bool
 
 
-def pool_of(case: Case, laid: Sequence[Laid]) -> Pool:
+def pool_of(case: Case, laid: Sequence[Laid], *, imbalance_prism_d: float) -> Pool:
     """Gather the options laid out with whatever else the shop sells that keeps every condition known beforehand."""
+    before = unfinished(imbalance_prism_d)
     known = {_same(option) for option in laid}
     sold = []
     for option in lay_out_options(case, list(_sold_options(case, laid))):
         same = _same(option)
-        if same in known or option.refused or any(broken_by(case, option, only=BEFORE)):
+        if same in known or option.refused or any(broken_by(case, option, before, only=BEFORE)):
             continue
         known.add(same)
         sold.append(option)
@@ -71,12 +72,13 @@ def _sold_options(case: Case, laid: Sequence[Laid]) -> Iterator[Option]:
         keys = {tint if isinstance(tint, str) else None for tint in tints}
         for offer in stock.offer:
             if offer.tint in keys and offer.design in designs:
-                coating = offer.coating if offer.faces == "both" else Faces(back=offer.coating)
-                yield Option(design=offer.design, material=offer.material, coating=coating, tint=offer.tint)
+                faces = offer.coating if offer.faces == "both" else Faces(back=offer.coating)
+                yield Option(design=offer.design, material=offer.material, coating=faces, tint=offer.tint)
         return
-    materials = [*(material.key for material in stock.material), *_in_place(option.material for option in laid)]
-    faces = (face for option in laid for face in (option.front, option.back))
-    coatings = [*(coating.key for coating in stock.coating), *_in_place(faces)]
+    materials: list[str | Material] = [material.key for material in stock.material]
+    materials += _in_place(option.material for option in laid)
+    coatings: list[str | Coating] = [coating.key for coating in stock.coating]
+    coatings += _in_place(face for option in laid for face in (option.front, option.back))
     for design in designs:
         for material in materials:
             for coating in coatings:

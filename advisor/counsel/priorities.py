@@ -95,23 +95,27 @@ def _in_between(case: Case) -> int:
     return _answer(case, "screen_work") if case.has_add and wanted(case) == "all" else DROPPED
 
 
-def _price(case: Case) -> int:
-    life = case.visit.daily_life
-    return OFTEN if life is not None and life.price_limit is not None else SOMETIMES
+def _from_behind(case: Case) -> int:
+    level = _answer(case, "lights_behind")
+    named = case.visit.scenes is not None and any(scene.where == "behind" for scene in case.scenes)
+    return max(level, SOMETIMES) if named and level else level  # somebody thought of such a light for this wearer
 
 
 IMPORTANCE: Mapping[str, Callable[[Case], int]] = {
     "second-image": _second_image,
-    "from-behind": lambda case: _answer(case, "lights_behind"),
+    "from-behind": _from_behind,
     "seen-by-others": lambda case: _answer(case, "face_to_face"),
     "thickness": lambda case: _answer(case, "bothered_thickness"),
     "weight": lambda case: _answer(case, "bothered_weight"),
     "fringe": _fringe,
     "transmitted": _transmitted,
-    "care": lambda case: _answer(case, *EXPOSURES, "bothered_smears"),
+    # what a life does to lenses is a fact about it; being bothered is a wish, and only a wish comes first
+    "care": lambda case: max(min(_answer(case, *EXPOSURES), SOMETIMES), _answer(case, "bothered_smears")),
     "in-between": _in_between,
     "sun": lambda case: SOMETIMES if _asked(case, "sun", "light_sensitive") == OFTEN else DROPPED,
-    "price": _price,
+    # always asked for; a limit is a condition, and says no more about prices below it. Before an operation that will
+    # change the power, a lens is worn for some months only
+    "price": lambda case: OFTEN + 1 if case.life("cataract_planned") == "yes" else SOMETIMES,
 }
 
 

@@ -68,7 +68,7 @@ def stretches(design: Design, add: float) -> tuple[tuple[float, float], ...]:
 
 
 def blur_at(case: Case, design: Design, demand_d: float, *, usable: float) -> float:
-    """Return by how many dioptres a distance (its vergence, D) stays out of focus, the eye helping by up to ``usable``."""
+    """Return by how many dioptres a distance (its vergence) stays out of focus, the eye helping by up to ``usable``."""
     off = [max(low - demand_d, demand_d - high - usable, 0.0) for low, high in stretches(design, add_d(case))]
     return min(off)
 

@@ -1,7 +1,7 @@
 """The lens on file, and what it would be if one thing were changed: every remedy's figures come from here."""
 
 import datetime as dt
-from collections.abc import Callable, Iterable
+from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass
 from functools import cached_property
 from typing import Any
@@ -53,6 +53,7 @@ class OnFile:
     stock: Range
     computed: Computed
     index: int
+    named_scenes: tuple[str, ...]
     translator: Translator
     today: dt.date
 
@@ -91,11 +92,10 @@ class OnFile:
         answer = compare(visit, stock or self.stock, translator=self.translator, with_advice=False, today=self.today)
         return answer.options
 
-    def offered(self, options: Iterable[Option]) -> list[tuple[Option, OptionFigures]]:
-        """Return the options that can be made and are sold, each with its figures."""
-        wanted = list(options)
-        found = zip(wanted, self.laid_out(wanted), strict=True) if wanted else []
-        return [(option, f) for option, f in found if not f.refused and not _outside_offers(f)]
+    def offered(self, options: Mapping[str, Option]) -> list[tuple[str, OptionFigures]]:
+        """Return what of some named options can be made and is sold, each with its figures."""
+        found = zip(options, self.laid_out(options.values()), strict=True) if options else ()
+        return [(name, figures) for name, figures in found if not figures.refused and not _outside_offers(figures)]
 
     def with_parts(self, **changes: Any) -> Option:
         """Return this lens as an option with some parts changed."""
@@ -119,9 +119,11 @@ class OnFile:
         return tuple(scene.key for scene in night or ahead)
 
     def behind_scenes(self, *, dark: bool = False) -> tuple[str, ...]:
-        """Return the scenes of light from behind, with the tint clear or dark."""
+        """Return the scenes of light from behind in one state of the tint: the visit's own, windows before lamps."""
         state = "dark" if dark else "clear"
-        return tuple(s.key for s in self.case.scenes if s.where == "behind" and s.tint_state == state)
+        found = [s for s in self.case.scenes if s.where == "behind" and s.tint_state == state]
+        found = [s for s in found if s.key in self.named_scenes] or found
+        return tuple(s.key for s in [s for s in found if s.kind == "extended"] or found)
 
     def behind_relit(self, relight: Callable[[Scene], dict[str, float]]) -> Range:
         """Return the range with the light of every scene from behind changed."""
@@ -150,7 +152,8 @@ def on_file(
     index = choose(whole, number=number)
     alone = {"options": (option_as_laid(whole.laid[index], stock),), "baseline": None, "ordered": None, "scenes": None}
     lens = visit.model_copy(update=alone)
-    return OnFile(lens, stock, compute(lens, stock, today=day), index, translator, day)
+    computed = compute(lens, stock, today=day)
+    return OnFile(lens, stock, computed, index, visit.scenes or (), translator, day)
 
 
 def worst_second(option: OptionFigures, scenes: Iterable[str]) -> Ghost | None:

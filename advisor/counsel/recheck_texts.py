@@ -52,7 +52,9 @@ TESTS: dict[str, str] = {
     "fog-only": mark("Is it only breath or steam, and soon over?"),
     "fine-web": mark("Under a lamp: a fine web all over?"),
     "edge-flakes": mark("Do flakes begin at the edge?"),
-    "one-face-white": mark("Mirror a white tube in all four faces: is one face plain white and brighter than its fellow?"),
+    "one-face-white": mark(
+        "Mirror a white tube in all four faces: is one face plain white and brighter than its fellow?"
+    ),
     "marks-off": mark("Mark the fitting points on the face: do they sit where they should not?"),
     "shade-behind": mark("Shade the lens from behind: does it go?"),
     "tilt-head": mark("Tilt the head to the side: does the screen come back?"),
@@ -101,8 +103,12 @@ REMEDIES: dict[str, str] = {
     "coat-back": mark("The back coated (%(coating)s): less of it, not none."),
     "other-form": mark("Another form, front curve %(front_power_d)s D: less of it, not none."),
     "other-material": mark("Another material (%(material)s): less of it, not none."),
-    "check-coating": mark("Mirror a white tube in every face: is each coated as ordered? A bare face is the maker's to remake."),
-    "turn-desk": mark("Turn the desk, so that a wall as bright as the screen stands behind instead of the window: free."),
+    "check-coating": mark(
+        "Mirror a white tube in every face: is each coated as ordered? A bare face is the maker's to remake."
+    ),
+    "turn-desk": mark(
+        "Turn the desk, so that a wall as bright as the screen stands behind instead of the window: free."
+    ),
     "shade-light": mark("Draw a blind that passes a tenth of the light behind, or move the lamp: free."),
     "closer-fit": mark("A closer fit, by %(by_mm)s mm."),
     "explain": mark("Explain; no lens changes this."),
@@ -113,10 +119,13 @@ REMEDIES: dict[str, str] = {
     "ask-prescriber": mark("Ask the prescriber before anything is remade."),
     "matt-edge": mark("A matt or tinted edge first; polish can brighten the rings."),
     "rolled-edge": mark("A rolled edge."),
+    "film-on-faces": mark("A film on both faces mirrors less of the edge back and forth."),
     "smaller-frame": mark("An eye size smaller by %(by_mm)s mm."),
     "thinner-material": mark("A thinner lens (%(material)s)."),
     "higher-abbe": mark("A material that spreads less colour (%(material)s)."),
-    "clean-right": mark("Wash here, then as the care sheet says: rinse, a drop of mild soap, soft cloth without softener."),
+    "clean-right": mark(
+        "Wash here, then as the care sheet says: rinse, a drop of mild soap, soft cloth without softener."
+    ),
     "top-layer": mark("When it is replaced: a coating with a water- and oil-repellent top (%(coating)s)."),
     "replace-same": mark("Replace; it cannot be repaired. Guarantee of this coating: %(warranty_months)s months."),
     "loosen-rim": mark("Loosen the rim before another lens goes in."),
@@ -145,7 +154,8 @@ FIGURES: Mapping[str, tuple[str, str]] = {
     "cylinder_off_d": (mark("cylinder off"), "D"),
     "add_off_d": (mark("add off"), "D"),
     "prism_off_prism_d": (mark("prism off"), "Δ"),
-    "place_off_mm": (mark("centre off"), "mm"),
+    "place_off_mm": (mark("place off"), "mm"),
+    "thickness_off_mm": (mark("centre thickness off"), "mm"),
 }
 
 WHY: dict[str, str] = {
@@ -155,16 +165,22 @@ WHY: dict[str, str] = {
     "no-scene": mark("The range holds no scene of this kind, so nothing could be worked out."),
     "prism": mark("Prescribed prism throws the image %(separation_deg)s degrees from the lamp, clear of its veil."),
     "face-bare": mark("With one face bare it would be: %(ghost)s. Visibility level %(visibility_level)s."),
-    "behind": mark("Worked out: light from behind shows at %(behind_contrast_percent)s %% of what is looked at."),
+    "behind": mark(
+        "Worked out: light from behind shows at %(behind_contrast_percent)s %% of what is looked at, in “%(scene)s”."
+    ),
     "other-face-coated": mark("The other face is coated; that alone makes this image a little stronger, not weaker."),
     "edge": mark("Thickest edge %(edge_thickest_mm)s mm in a minus lens."),
     "not-minus": mark("Not a minus lens: its edge is thin."),
-    "fringe": mark("Colour fringe %(colour_fringe_prism_d)s Δ at the side; 0.1 is the customary notice level, from memory."),
+    "fringe": mark(
+        "Colour fringe %(colour_fringe_prism_d)s Δ at the side; 0.1 is the customary notice level, from memory."
+    ),
     "life": mark("Daily life: %(habit)s, %(answer)s."),
     "no-repellent": mark("The coating has no repellent top that is known."),
     "repellent": mark("The coating has a repellent top."),
     "no-film": mark("There is no coating on this lens to lose."),
-    "match": mark("Of two lenses coated in different runs, %(match_percent)s %% match."),
+    "match": mark(
+        "By the stated spread of coatings as made, %(match_percent)s %% of pairs coated in different runs match."
+    ),
     "no-layers": mark("The layers of this coating are not known, so its match could not be worked out."),
     "curve": mark("Front curve now %(front_power_d)s D, worn pair %(worn_d)s D."),
     "cylinder": mark("The cylinder changed by %(changed_by_d)s D, turn of the axis included."),
@@ -177,7 +193,9 @@ WHY: dict[str, str] = {
     "design-near": mark("This design is not made for reading and the prescription has an add."),
     "design-screen": mark("This design has no part for the screen."),
     "has-add": mark("Add %(add_d)s D for %(working_distance_cm)s cm."),
-    "imbalance": mark("The lenses differ by %(imbalance_prism_d)s prism dioptres up and down, 10 mm below the centres."),
+    "imbalance": mark(
+        "The lenses differ by %(imbalance_prism_d)s prism dioptres up and down, 10 mm below the centres."
+    ),
     "weight": mark("Weight of the heavier lens %(weight_g)s g."),
     "tint": mark("The lens passes %(luminous_percent)s %% and its back mirrors %(back_percent)s %%."),
     "polarising": mark("The tint is polarising."),
@@ -192,11 +210,18 @@ NOTES: dict[str, str] = {
     "do-not-drive": mark("No driving until an eye doctor has looked."),
     "no-lens-before": mark("No lens is offered before an eye examination."),
     "lens-cannot-explain": mark("The lens on file cannot explain this. Refer, and offer no lens."),
+    "cover-eye-first": mark(
+        "Cover each eye in turn now: a second light that is new and goes with either eye covered is for today."
+    ),
     "measure-first": mark("Measure first: power, axis, prism, PDs and heights, of these and of the old pair."),
     "remake-first": mark("Wrong as made comes first: no other lens is offered until these are right."),
     "never-gone": mark("A remedy makes it less. Never promise that it is gone."),
-    "prism-may-stay": mark("With prescribed prism the image lies clear of the lamp and may stay; the prism is the prescriber's alone."),
+    "prism-may-stay": mark(
+        "With prescribed prism the image lies clear of the lamp and may stay; the prism is the prescriber's alone."
+    ),
     "old-pair-same": mark("The old pair makes the same ghost, so that it is seen there too does not mean the eye."),
-    "old-pair-unknown": mark("The old pair is not on file; whether it makes a ghost of its own could not be worked out."),
+    "old-pair-unknown": mark(
+        "The old pair is not on file; whether it makes a ghost of its own could not be worked out."
+    ),
     "tolerances": mark("Tolerances %(source)s."),
 }

@@ -9,30 +9,40 @@ from dataclasses import dataclass
 
 from advisor.counsel.recheck_texts import COMPLAINTS
 
+MOST_LETTERS = 500
 _DENIED = re.compile(r"\b(?:no|not|without|never any|isn't|don't have|do not have)\s+(?:any\s+)?(?:new\s+)?\w+")
 _LIGHT = r"(?:light|lamp|headl\w+|head lamp|image|moon|tail ?light)s?"
 
-COMPLAINT_WORDS: dict[str, str] = {
-    "edge-rings": r"rings?\b.*\b(?:edge|rim|side of (?:the|my) lens)|(?:edge|rim)\b.*\brings?",
-    "rings": r"\b(?:rings?|halos?|haloes|rainbows?)\b",
-    "second-light": rf"\b(?:second|double|two|twin|ghost|extra)\s+(?:\w+\s+)?{_LIGHT}\b|\bghost|double vision|(?:see|seeing) "
-    r"(?:everything )?double|two of everything",
-    "behind": r"\bmy (?:own )?eyes? (?:in|mirrored)|\bown eyes?\b|\blash(?:es)?\b|behind me|from behind|window behind|"
-    r"reflections? (?:inside|in my)",
-    "glare": r"\b(?:glare|dazzl\w+)\b",
-    "fringes": r"\b(?:fringes?|colou?red edges?|colou?rs? round)\b",
-    "smears": r"never clean|\b(?:smear\w*|smudg\w*|fog\w*|mist\w*|scratch\w*|greasy|dirty)\b",
-    "crazed": r"\b(?:craz\w+|peel\w*|flak\w+|cracks?|cracked)\b",
-    "colours-differ": r"(?:different|differ\w*|not the same|unlike|two) (?:in )?colou?rs?|colou?rs? (?:are )?(?:different|differ)|"
-    r"(?:one|lens) (?:is )?(?:greener|bluer|brighter)",
-    "not-right": r"slop\w+|swim\w*|\b(?:bigger|smaller|larger) than|everything (?:is |looks )?(?:bigger|smaller|larger)|"
-    r"\bheadaches?\b|\bdizz\w+|old (?:ones|pair|glasses) (?:were|was|are|is) better|straight ahead|one eye (?:is )?clearer|not used to",
-    "near": r"\b(?:read|reading|chin|computer|screen|monitor) ?(?:is |are )?(?:blurr\w*)?|jump when|line when|look down",
-    "fit": r"\b(?:slid\w*|slip\w*|pinch\w*|loose|ears?|nose|skin|heavy)\b",
-    "dark-mirror": r"(?:dark|sun\w*|tint\w*) ?(?:glasses|lenses)?.*\b(?:mirrors?|reflect\w*|my face)\b",
-    "black-screens": r"(?:screens?|dash\w*|phones?|displays?)\b.*\b(?:black|dark|blank)",
-    "not-dark": r"(?:not?|don't|doesn't|never) (?:go|get|turn|goes|gets)? ?dark|stays? clear in",
-    "yellow": r"\byellow\w*",
+COMPLAINT_WORDS: dict[str, tuple[str, ...]] = {
+    "edge-rings": (r"rings?\b.*\b(?:edge|rim|side of (?:the|my) lens)", r"(?:edge|rim)\b.*\brings?"),
+    "rings": (r"\b(?:rings?|halos?|haloes|rainbows?)\b",),
+    "second-light": (
+        rf"\b(?:second|double|two|twin|ghost|extra)\s+(?:\w+\s+)?{_LIGHT}\b",
+        r"\bghost|double vision|(?:see|seeing) (?:everything )?double|two of everything",
+    ),
+    "behind": (
+        r"\bmy (?:own )?eyes? (?:in|mirrored)|\bown eyes?\b|\blash(?:es)?\b",
+        r"behind me|from behind|window behind|reflections? (?:inside|in my)",
+    ),
+    "glare": (r"\b(?:glare|dazzl\w+)\b",),
+    "fringes": (r"\b(?:fringes?|colou?red edges?|colou?rs? round)\b",),
+    "smears": (r"never clean|\b(?:smear\w*|smudg\w*|fog\w*|mist\w*|scratch\w*|greasy|dirty)\b",),
+    "crazed": (r"\b(?:craz\w+|peel\w*|flak\w+|cracks?|cracked)\b",),
+    "colours-differ": (
+        r"(?:different|differ\w*|not the same|unlike|two) (?:in )?colou?rs?|colou?rs? (?:are )?(?:different|differ)",
+        r"(?:one|lens) (?:is )?(?:greener|bluer|brighter)",
+    ),
+    "not-right": (
+        r"slop\w+|swim\w*|\b(?:bigger|smaller|larger) than|everything (?:is |looks )?(?:bigger|smaller|larger)",
+        r"\bheadaches?\b|\bdizz\w+|old (?:ones|pair|glasses) (?:were|was|are|is) better",
+        r"straight ahead|one eye (?:is )?clearer|not used to",
+    ),
+    "near": (r"\b(?:read|reading|chin|computer|screen|monitor)\b", r"jump when|line when|look down"),
+    "fit": (r"\b(?:slid\w*|slip\w*|pinch\w*|loose|ears?|nose|skin|heavy)\b",),
+    "dark-mirror": (r"(?:dark|sun\w*|tint\w*) ?(?:glasses|lenses)?.*\b(?:mirrors?|reflect\w*|my face)\b",),
+    "black-screens": (r"(?:screens?|dash\w*|phones?|displays?)\b.*\b(?:black|dark|blank)",),
+    "not-dark": (r"(?:not?|don't|doesn't|never) (?:go|get|turn|goes|gets)? ?dark|stays? clear in",),
+    "yellow": (r"\byellow\w*",),
 }
 # Words for one complaint that are not another: what the first holds, the second is not read from.
 _RATHER: dict[str, tuple[str, ...]] = {
@@ -45,7 +55,9 @@ _RATHER: dict[str, tuple[str, ...]] = {
 _DOUBLE = r"(?:\bdouble\b|two of everything)"
 _PAIN = r"(?:pain\w*|hurt\w*|ach(?:e|es|ing)|sore|sick\w*|nause\w*|vomit\w*)"
 SIGN_WORDS: dict[str, tuple[str, ...]] = {
-    "today-loss": (r"(?:sudden\w*|lost|loss of)\b.*\b(?:sight|blind|vision gone|cannot see|can't see)|\bcurtain\b|\bshadow\b",),
+    "today-loss": (
+        r"(?:sudden\w*|lost|loss of)\b.*\b(?:sight|blind|vision gone|cannot see|can't see)|\bcurtain\b|\bshadow\b",
+    ),
     "today-flashes": (r"\b(?:flash\w*|floaters?|floating spots?)\b",),
     "today-double": (r"\b(?:sudden\w*|overnight|since (?:yesterday|today|this morning))\b", _DOUBLE),
     "today-red": (rf"\beyes?\b.*\b{_PAIN}|\b(?:painful|sore|aching|red)\b.*\beyes?\b",),
@@ -67,10 +79,10 @@ class Heard:
 
 def hear(says: str) -> Heard:
     """Return the complaints and signs in some words; a complaint's own key is taken as it stands."""
-    text = " ".join(says.lower().replace("\N{RIGHT SINGLE QUOTATION MARK}", "'").split())
+    text = " ".join(says.lower().replace("\N{RIGHT SINGLE QUOTATION MARK}", "'").split())[:MOST_LETTERS]
     if text in COMPLAINTS:
         return Heard((text,), ("soon-rings",) if text == "rings" else ())
-    found = [key for key in COMPLAINTS if re.search(COMPLAINT_WORDS[key], text)]
+    found = [key for key in COMPLAINTS if any(re.search(part, text) for part in COMPLAINT_WORDS[key])]
     unsaid = {other for key in found for other in _RATHER.get(key, ())}
     complaints = tuple(key for key in found if key not in unsaid)
     said = _DENIED.sub(" ", text)

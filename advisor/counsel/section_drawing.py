@@ -71,7 +71,7 @@ def sections(computed: Computed) -> list[Section]:
 def _cut(computed: Computed, k: int, e: int) -> tuple[NDArray[np.float64], NDArray[np.float64], NDArray[np.float64]]:
     """Return places across (temple to nose), and the depth of front and back there, all in mm."""
     forms, shape = computed.forms, computed.forms.shape
-    nose, temple = _reach(forms.rim.angle_deg[e], forms.rim.radius_mm[e])
+    nose, temple = _reach(forms.rim.angle_deg[k, e], forms.rim.radius_mm[k, e])
     across = np.linspace(-temple, nose, POINTS)
     direction = np.where(across >= 0.0, 0.0, 180.0)
     radius = np.abs(across)

@@ -173,13 +173,13 @@ def _facts(eye: EyeFigures, laid: Laid) -> Iterable[Phrase]:
     mirrors = eye.luminous_reflectance
     coated = laid.front_face.has_film or laid.back_face.has_film
     if not coated:
-        yield Phrase("mirrors-uncoated", {"percent": 100 * mirrors.first_pass_loss})
+        yield Phrase("mirrors-uncoated", {"mirrored_percent": 100 * mirrors.first_pass_loss})
     else:
         key = "mirrors-hard-coat" if eye.uncoated.hard_coat_only else "mirrors-bare"
         yield Phrase(key, {"bare_percent": 100 * eye.uncoated.first_pass_loss})
         spread = mirrors.as_made.first_pass_loss
         if spread is None:
-            yield Phrase("mirrors-coated-stated", {"percent": 100 * mirrors.first_pass_loss})
+            yield Phrase("mirrors-coated-stated", {"mirrored_percent": 100 * mirrors.first_pass_loss})
         else:
             yield Phrase("mirrors-coated", {"low_percent": 100 * spread[0], "high_percent": 100 * spread[2]})
     if laid.tint is not None:

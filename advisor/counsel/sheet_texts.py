@@ -44,8 +44,8 @@ LINES: dict[str, str] = {
     "mirrors-coated": mark(
         "With your coating it is %(low_percent)s to %(high_percent)s %%. Each pair differs a little."
     ),
-    "mirrors-coated-stated": mark("With your coating it is about %(percent)s %%, by the maker's figure."),
-    "mirrors-uncoated": mark("These lenses mirror away about %(percent)s %% of the light."),
+    "mirrors-coated-stated": mark("With your coating it is about %(mirrored_percent)s %%, by the maker's figure."),
+    "mirrors-uncoated": mark("These lenses mirror away about %(mirrored_percent)s %% of the light."),
     "passes": mark("The tinted lens lets about %(luminous_percent)s %% of the light through."),
     "second-image": mark(
         "Light mirrored twice inside a lens makes a second image: here about 1 part in %(parts)s of the light."

@@ -94,10 +94,12 @@ def internal_transmittance(front: Face, back: Face, tint: Tint | None, *, dark: 
 
 def tint_axes(option: Laid, *, dark: bool) -> tuple[float, float] | None:
     """Return the internal transmittance along the two axes of an option's tint, or None where no tint fits."""
+    if option.tint is None:
+        return 1.0, 1.0
     tau = internal_transmittance(option.front_face, option.back_face, option.tint, dark=dark)
     if tau is None:
         return None
-    if option.tint is None or option.tint.kind != "polarising":
+    if option.tint.kind != "polarising":
         return tau, tau
     bright, crossed = polarising_axes(tau)
     return float(bright), float(crossed)

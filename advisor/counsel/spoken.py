@@ -44,8 +44,12 @@ def ghosts_of(option: OptionFigures, *, paths: Iterable[str]) -> list[Ghost]:
 
 
 def worst_ghost(option: OptionFigures, *, paths: Iterable[str] = ("ahead-inner",)) -> Ghost | None:
-    """Return the ghost with the greatest visibility level, or None where none is computed."""
-    known = [ghost for ghost in ghosts_of(option, paths=paths) if ghost.visibility_level is not None]
+    """Return the ghost with the greatest visibility level, or None where none is computed.
+
+    Scenes past the range of the threshold model (daylight, office, stage) are told by contrast and never ranked by it.
+    """
+    found = ghosts_of(option, paths=paths)
+    known = [ghost for ghost in found if ghost.visibility_level is not None and not ghost.past_range]
     return max(known, key=lambda ghost: ghost.visibility_level or 0.0, default=None)
 
 

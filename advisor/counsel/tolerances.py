@@ -8,6 +8,7 @@ them. Bands run up to and including their upper end.
 import math
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
+from typing import Literal
 
 from advisor.counsel.phrases import mark
 
@@ -65,7 +66,7 @@ def _ansi_power(strongest_d: float, cylinder_d: float, progressive: bool) -> tup
 class Tolerances:
     """One region's tolerances; prism is of the pair, in weak lenses a prism and in stronger ones a shift in mm."""
 
-    key: str
+    key: Literal["iso", "ansi"]
     both_meridians: bool
     _power: Callable[[float, float, bool], tuple[float, float]]
     _axis: Bands
@@ -116,7 +117,14 @@ ISO_TYPE = Tolerances(
 )
 # in progressive lenses 1.0 mm for each reference point, so 2.0 mm for the two
 ANSI_TYPE = Tolerances(
-    "ansi", False, _ansi_power, _ANSI_AXIS, (0.67, 2.75, 2.5), (0.33, 3.375, 1.0), (0.67, 3.375, 2.0), (0.33, 3.375, 1.0)
+    "ansi",
+    False,
+    _ansi_power,
+    _ANSI_AXIS,
+    (0.67, 2.75, 2.5),
+    (0.33, 3.375, 1.0),
+    (0.67, 3.375, 2.0),
+    (0.33, 3.375, 1.0),
 )
 
 

@@ -3,14 +3,16 @@
 import datetime as dt
 from collections.abc import Iterator
 
+from advisor.counsel.case import traced_box
 from advisor.counsel.choices import CoatingRef, Faces
 from advisor.counsel.faults import Fault, fault, unknown_key
 from advisor.counsel.phrases import Phrase, mark
 from advisor.counsel.prescription import EYES
 from advisor.counsel.stock import Range, keys_of, option_faults
-from advisor.counsel.visit import Prescription, Visit
+from advisor.counsel.visit import Frame, Prescription, Visit
 
 MOST_PD_DIFFERENCE_MM = 3.0
+MOST_BOX_DIFFERENCE_MM = 1.0
 LEAST_SWAPPED_D = 1.0  # spheres nearer to zero differ in sign often enough
 ALIKE_D = 0.5  # magnitudes no further apart than this count as alike
 STEP_D = 0.25
@@ -26,6 +28,7 @@ WARNING_TEXTS: dict[str, str] = {
         "The distances from the nose differ by %(difference_mm)s mm: right %(right_mm)s, left %(left_mm)s."
         " Measure again."
     ),
+    "box-differs": mark("The box says %(box)s %(given_mm)s mm and the traced outline %(traced_mm)s mm. Measure again."),
     "quarter-steps": mark("%(value_d)s is not a quarter-dioptre step. Check the figure."),
 }
 
@@ -56,7 +59,18 @@ def prescription_warnings(visit: Visit) -> list[Phrase]:
     if right_mm is not None and left_mm is not None and abs(right_mm - left_mm) > MOST_PD_DIFFERENCE_MM:
         figures = {"right_mm": right_mm, "left_mm": left_mm, "difference_mm": abs(right_mm - left_mm)}
         notes.append(Phrase("pd-difference", figures))
+    notes.extend(_box_notes(visit.frame))
     return notes
+
+
+def _box_notes(frame: Frame | None) -> Iterator[Phrase]:
+    """Find a box that the traced outline contradicts."""
+    traced = traced_box(frame)
+    if frame is None or traced is None:
+        return
+    for name, given, measured in (("a", frame.a_mm, traced[0]), ("b", frame.b_mm, traced[1])):
+        if given is not None and abs(given - measured) > MOST_BOX_DIFFERENCE_MM:
+            yield Phrase("box-differs", {"box": name, "given_mm": given, "traced_mm": measured})
 
 
 def _coating_refs(coating: CoatingRef | None, place: str) -> Iterator[tuple[str, object]]:

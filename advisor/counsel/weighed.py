@@ -79,7 +79,7 @@ def figures_of(case: Case, computed: WholeRange) -> dict[str, Floats]:
 
 
 def worst_ahead(computed: WholeRange) -> Floats:
-    """Return the visibility level of the worst ghost of lights ahead, over eyes, scenes and paths; 0 without a scene."""
+    """Return the visibility level of the worst ghost of lights ahead, over eyes, scenes, paths; 0 without a scene."""
     ghosts = computed.ghosts
     level = ghosts.relaxed.visibility_level
     level = np.where(ghosts.relaxed.haze, np.minimum(level, MOST_OF_HAZE), level)

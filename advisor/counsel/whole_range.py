@@ -9,7 +9,7 @@ from numpy.typing import NDArray
 
 from advisor.counsel.case import Case
 from advisor.counsel.choices import Option
-from advisor.counsel.form import LensForms, forms_of
+from advisor.counsel.form import NEAR_ONLY, LensForms, forms_of
 from advisor.counsel.ghosts import ghosts_of
 from advisor.counsel.laid_out import Laid, lay_out_options
 from advisor.counsel.light import Light, light_of
@@ -17,7 +17,7 @@ from advisor.counsel.stock_items import IN_PLACE, Material
 from advisor.optics.ghost_scene import Ghosts
 
 Part = TypeVar("Part")
-NOT_BY_OPTION = ("prism_d", "rim")  # the same for every option
+NOT_BY_OPTION = ("prism_d",)  # the same for every option
 
 
 @dataclass(frozen=True)
@@ -58,7 +58,7 @@ def _form_key(option: Laid) -> Hashable:
     """Return everything the form of a lens depends on beside the wearer and the frame."""
     blanks = option.offer.blank_diameters_mm if option.offer else None
     asked = (option.option.front_power_d, option.option.centre_mm)
-    return option.powers, material_key(option.material), asked, option.made, blanks
+    return option.powers, material_key(option.material), asked, option.made, blanks, option.design.kind in NEAR_ONLY
 
 
 def material_key(material: Material) -> Hashable:

@@ -5,6 +5,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from advisor.optics.eye import accommodation_hofstetter_1950
 from advisor.optics.ghost_image import SMALLEST_ANGLE_RAD, along_meridians, direction_seen, extent_along_meridians
 from advisor.optics.ghost_inputs import LensOnFace, Scene, Wearer
 from advisor.optics.ghost_path import (
@@ -91,14 +92,17 @@ def place_ghosts(lens: LensOnFace, *, scene: Scene, wearer: Wearer) -> GhostPlac
     far = wearer.far_vergence_d
     if far is None:
         far = path_image(section, path="direct", distance_m=np.inf).pupil_vergence_d
+    # An eye that can no longer focus as near as the scene fixates stays as near as it can.
+    nearest = far - accommodation_hofstetter_1950(wearer.age_y)[..., None]
+    focus = np.maximum(looked_at, nearest)
     source = extent_along_meridians(np.deg2rad(scene.size_deg), meridian_deg=lens.meridian_deg)
     return GhostPlace(
         ghosts=ghosts,
         direct_area=np.abs(np.prod(direct.magnification, axis=-1)),
         source_rad=source,
         source_seen_rad=np.abs(direct.magnification) * source,
-        focus_d=looked_at,
-        in_use_d=np.mean(far - looked_at, axis=-1),
+        focus_d=focus,
+        in_use_d=np.mean(far - focus, axis=-1),
         separation_rad=np.clip(separation, -FARTHEST_DIRECTION_RAD, FARTHEST_DIRECTION_RAD),
         spread=spread_over_lens(ghosts, field_angle_rad=np.where(FROM_BEHIND[:, None], 0.0, field[..., None, :])),
         applies=scene.behind[..., None] == FROM_BEHIND,

@@ -65,7 +65,7 @@ class Ghosts:
     """All ghosts; arrays (..., path), ``vergence_d`` (..., path, 2).
 
     ``vergence_d`` is at the back vertex. ``separation_deg`` has no meaning (0) for paths from behind. ``spread`` marks
-    ghosts with no place to state, ``past_range`` backgrounds brighter than the road scenes of the threshold model.
+    ghosts with no place to state, ``past_range`` scenes brighter than the roads of the threshold model.
     ``relaxed`` is the eye as it looks at what the scene fixates, ``accommodated`` the eye focusing on the ghost as far
     as it can; one change of focus serves both meridians, to the middle of the two.
     """
@@ -172,7 +172,7 @@ def see_ghosts(
         separation_deg=np.broadcast_to(apart_deg, shape),
         background_cd_m2=np.broadcast_to(background, shape),
         spread=np.broadcast_to(place.spread, shape),
-        past_range=np.broadcast_to(background > ROAD_RANGE_CD_M2, shape),
+        past_range=np.broadcast_to(around > ROAD_RANGE_CD_M2, shape),
         relaxed=relaxed,
         accommodated=accommodated,
     )

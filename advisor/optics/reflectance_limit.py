@@ -51,7 +51,8 @@ def reflectance_limit(
 ) -> ReflectanceLimit:
     """Return the greatest R, the same on both faces and at all wavelengths, that keeps the worst ghost at a level.
 
-    The worst is over the paths of the scene, with the eye relaxed and, unless left out, accommodated on the ghost. Solved by halving the logarithm
+    The worst is over the paths of the scene, with the eye relaxed and, unless left out, accommodated on the ghost.
+    Solved by halving the logarithm
     of R: with R change not only the strengths but the transmittance, and with it background, veil, and the pupil.
 
     Parameters

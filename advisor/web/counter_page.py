@@ -14,6 +14,7 @@ from advisor.counsel.comparison import Comparison
 from advisor.counsel.faults import Fault, Faults
 from advisor.counsel.phrases import mark
 from advisor.counsel.visit import Visit
+from advisor.counsel.words import PLACES, QUESTIONS
 from advisor.records.drafts import SavedDraft
 from advisor.records.store import Store
 from advisor.records.visits import SavedVisit
@@ -172,6 +173,7 @@ def context(
         "count": option_count(editing.fields),
         "most": MOST_OPTIONS,
         "labels": labels,
+        "question_words": QUESTIONS,
         "life": LIFE,
         "demos": demo_wearers.names(),
         "notice": notice,
@@ -189,27 +191,15 @@ def sentence(one: Fault) -> str:
 def _place_words(name: str) -> str:
     """Write the place of a field for a reader: ``options.0.coating.front`` is "option 1 coating front"."""
     speak = language(SOURCE_LANGUAGE).gettext
-    if name in labels.PLACES:
-        return speak(labels.PLACES[name])
+    if name in PLACES:
+        return speak(PLACES[name])
     parts = name.removesuffix("_mm").removesuffix("_deg").removesuffix("_cm").replace("options.", "option.").split(".")
     return " ".join(str(int(part) + 1) if part.isdigit() else speak(part.replace("_", " ")) for part in parts)
 
 
 def _notes(answer: Comparison | None) -> list[str]:
-    """Return what should be looked at again, with the names of the form in place of those of the file."""
-    if answer is None:
-        return []
-    speak = language(SOURCE_LANGUAGE).gettext
-    notes = [warning.text for warning in answer.warnings if warning.code not in ("not-asked", "defaults-used")]
-    for warning in answer.warnings:
-        if warning.code == "not-asked":
-            asked = [name.strip() for name in str(warning.figures.get("questions", "")).split(",")]
-            words = ", ".join(speak(labels.QUESTIONS.get(name, name)) for name in asked)
-            notes.append(speak(mark("Not asked, and not taken as “never”: %(questions)s.")) % {"questions": words})
-    places = [speak(labels.PLACES[name]) for name in answer.defaults_used if name in labels.PLACES]
-    if places:
-        notes.append(speak(mark("Defaults stand in for: %(places)s.")) % {"places": ", ".join(places)})
-    return notes
+    """Return what should be looked at again."""
+    return [] if answer is None else [warning.text for warning in answer.warnings]
 
 
 def page(editing: Editing, shelf: Shelf, *, notice: str = "", saved: bool = False, changed: bool = False) -> str:

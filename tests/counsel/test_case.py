@@ -42,9 +42,11 @@ def test_a_height_left_out_is_half_of_the_box_that_was_measured() -> None:
 
 
 def test_an_empty_list_of_distances_is_as_good_as_none() -> None:
-    made = case(fitting={"working_distance_cm": []})
+    reads = {"right": {"sphere": 0, "add": 2}, "left": {"sphere": 0, "add": 2}}
+    made = case(fitting={"working_distance_cm": []}, prescription=reads)
     assert made.working_distance_cm == DEFAULTS["fitting.working_distance_cm"]
     assert made.is_default("fitting.working_distance_cm")
+    assert not case(fitting={"working_distance_cm": []}).is_default("fitting.working_distance_cm")  # nothing uses it
     assert case(fitting={"working_distance_cm": [65, 40]}).working_distance_cm == 65
 
 

@@ -23,7 +23,6 @@ from advisor.counsel.laid_out import NothingToLayOut
 from advisor.counsel.schemas import schema_path
 from advisor.counsel.stock import Range, builtin_range, check_range
 from advisor.counsel.visit import check_visit, read_visit
-from advisor.optics.spectrum_input import DeclaredOutOfReach
 from advisor.resources import resource_dir
 from advisor.web.language import language
 
@@ -205,9 +204,14 @@ def test_a_declared_figure_on_one_face_is_estimated_too_and_needs_no_scene() -> 
     assert eye({"material": RESIN, "coating": declared}, scenes=[]).ghosts == []
 
 
-def test_a_declared_figure_no_film_reaches_is_refused_in_a_sentence() -> None:
-    with pytest.raises(DeclaredOutOfReach, match="No built-in film can be scaled"):
-        answer({"material": RESIN, "coating": {"declared": {"luminous_reflectance": 0.9}}})
+def test_a_declared_figure_no_film_reaches_refuses_that_option_alone() -> None:
+    refused, kept = answer(
+        {"material": RESIN, "coating": {"declared": {"luminous_reflectance": 0.9}}}, {"material": RESIN}
+    ).options
+    assert [reason.code for reason in refused.refused] == ["declared-out-of-reach"]
+    assert refused.right is None
+    assert kept.refused == []
+    assert kept.right is not None
 
 
 def test_layers_have_an_as_made_range_round_their_design_and_a_bare_face_has_none() -> None:
@@ -325,7 +329,7 @@ def test_an_option_that_cannot_be_had_keeps_its_place_without_eyes() -> None:
 @pytest.mark.parametrize("passed", [0.95, 1.0])
 def test_a_tint_clearer_than_bare_faces_allow_is_refused(passed: float) -> None:
     refused = answer({"material": RESIN, "tint": passed}).options[0]
-    assert [reason.code for reason in refused.refused] == ["tint-out-of-reach"]
+    assert [reason.code for reason in refused.refused] == ["tint-too-light"]
     assert refused.right is None
 
 
@@ -517,7 +521,7 @@ def test_the_published_schema_refuses_an_answer_that_breaks_it(place: tuple[str 
 WHOLE: dict[str, Any] = {
     "date": "2026-12-01",
     "wearer": {"birth_year": 1979, "eye_colour": "brown"},
-    "prescription": {"vertex_mm": 12, "right": {"sphere": -2}, "left": {"sphere": -2}},
+    "prescription": {"vertex_mm": 12, "right": {"sphere": -2, "add": 1}, "left": {"sphere": -2, "add": 1}},
     "fitting": {
         "right": {"pd_mm": 31, "height_mm": 20}, "left": {"pd_mm": 31, "height_mm": 20}, "vertex_mm": 12,
         "tilt_deg": 8, "wrap_deg": 5, "working_distance_cm": [40],
@@ -554,10 +558,12 @@ def test_a_figure_left_out_is_listed_and_nothing_else_is(name: str) -> None:
 
 def test_two_spheres_are_enough_and_everything_else_is_listed() -> None:
     found = answer(scenes=[])
-    assert sorted(found.defaults_used) == sorted([*LEFT_OUT, "options"])
+    listed = [name for name in LEFT_OUT if name != "fitting.working_distance_cm"]  # without an add nothing uses it
+    assert sorted(found.defaults_used) == sorted([*listed, "options"])
     codes = {warning.code: warning for warning in found.warnings}
-    assert codes["defaults-used"].figures == {"count": len(LEFT_OUT)}
-    asked = str(codes["not-asked"].figures["questions"])
+    assert sorted(str(codes["defaults-used"].figures["field_names"]).split(", ")) == sorted(listed)
+    assert "right PD" in codes["defaults-used"].text
+    asked = str(codes["not-asked"].figures["question_names"])
     assert "night_driving" in asked
     assert "price_limit" in asked
 
@@ -565,8 +571,8 @@ def test_two_spheres_are_enough_and_everything_else_is_listed() -> None:
 def test_a_question_answered_never_is_not_among_those_not_asked() -> None:
     found = answer(scenes=[], daily_life={"night_driving": "never"})
     (warning,) = (warning for warning in found.warnings if warning.code == "not-asked")
-    assert "night_driving" not in str(warning.figures["questions"]).split(", ")
-    assert "driving" in str(warning.figures["questions"]).split(", ")
+    assert "night_driving" not in str(warning.figures["question_names"]).split(", ")
+    assert "driving" in str(warning.figures["question_names"]).split(", ")
 
 
 # --- the same prescription in its other writing ----------------------------------------------------------------------

@@ -107,3 +107,13 @@ def test_every_built_in_film_takes_most_of_the_reflection_from_every_material() 
         bare = luminous_reflectance(face(BARE, material))
         for film in films:
             assert luminous_reflectance(face(film, material)) < 0.025 < bare  # ISO 8980-4's limit, from memory
+
+
+def test_a_declared_figure_rises_with_the_angle_like_the_film_whose_shape_it_borrows() -> None:
+    film = face(builtin_range().coating_of("broadband-green"))
+    declared = face(Coating(declared=Declared(luminous_reflectance=luminous_reflectance(film), hue="green")))
+    straight, aslant = nominal(declared), nominal(declared, 35.0)
+    np.testing.assert_allclose(straight.outside, nominal(film).outside, rtol=1e-9)
+    np.testing.assert_allclose(aslant.outside, nominal(film, 35.0).outside, rtol=1e-9)
+    assert aslant.luminous_reflectance() > 1.1 * straight.luminous_reflectance()
+    assert len(shapes(declared, 35.0).outside) == len(shapes(declared).outside)

@@ -139,12 +139,8 @@ def test_coatings_reach_the_limit_as_made_and_not_only_as_drawn() -> None:
     assert 0 < len(reached) < len(builtin_range().coating) - 1
 
 
-def test_light_from_behind_has_a_limit_of_its_own() -> None:
-    dim = one({}, stock=check_range({"scene": [WINDOW]}), scenes=None).reflectance_limit  # 4 % of 1 on 100 cd/m2
-    assert dim is not None
-    assert dim.not_noticed is None
-    bright = one({}, stock=check_range({"scene": [WINDOW | {"luminance_cd_m2": 3000}]}), scenes=None).reflectance_limit
-    assert bright is not None
-    assert bright.scene == "window"
-    assert bright.not_noticed is not None
-    assert bright.not_noticed < BARE
+def test_light_from_behind_and_scenes_by_day_are_told_by_contrast_and_set_no_limit() -> None:
+    bright = check_range({"scene": [WINDOW | {"luminance_cd_m2": 3000}]})
+    assert one({}, stock=bright, scenes=None).reflectance_limit is None
+    stage = check_range({"scene": [LAMP | {"background_cd_m2": 30}]})
+    assert one({}, stock=stage, scenes=None).reflectance_limit is None

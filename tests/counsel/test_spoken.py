@@ -36,9 +36,8 @@ def aloud(**more: Any) -> str:
 
 def option(*ghosts: Ghost, left: tuple[Ghost, ...] = ()) -> OptionFigures:
     """An option with nothing but ghosts: checks of the other figures are left out."""
-    eyes = {name: {"ghosts": list(found)} for name, found in (("right", ghosts), ("left", left))}
     return OptionFigures.model_construct(
-        right=EyeFigures.model_construct(**eyes["right"]), left=EyeFigures.model_construct(**eyes["left"])
+        right=EyeFigures.model_construct(ghosts=list(ghosts)), left=EyeFigures.model_construct(ghosts=list(left))
     )
 
 

@@ -324,12 +324,16 @@ def test_steps_that_are_not_a_quarter_dioptre_are_warned_about_one_by_one() -> N
     ]
 
 
+CIRCLE_OF_40 = [[20 * math.cos(math.tau * k / 48), 20 * math.sin(math.tau * k / 48)] for k in range(48)]
+
+
 @pytest.mark.parametrize("code", WARNING_TEXTS)
 def test_every_warning_has_a_text_that_its_figures_fill(code: str) -> None:
     visit = check_visit(
         {
             "prescription": {"right": {"sphere": 2.3, "add": 1}, "left": {"sphere": -2.3}},
             "fitting": {"right": {"pd_mm": 35}, "left": {"pd_mm": 30}},
+            "frame": {"a_mm": 60, "outline": {"right": CIRCLE_OF_40}},
         }
     )
     (phrase, *_) = [p for p in prescription_warnings(visit) if p.code == code]

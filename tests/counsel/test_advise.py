@@ -1,0 +1,224 @@
+"""Counter cases written as data before the code, and what holds for all advice."""
+
+import datetime as dt
+import math
+import tomllib
+from functools import cache
+from pathlib import Path
+from typing import Any
+
+import pytest
+
+from advisor.counsel.compare import compare
+from advisor.counsel.comparison import AdvisedOption, Comparison
+from advisor.counsel.stock import builtin_range, check_range
+from advisor.counsel.visit import check_visit, read_visit
+from advisor.resources import resource_dir
+from advisor.web.language import language
+
+CASES: list[dict[str, Any]] = tomllib.loads(Path(__file__).with_name("advice_cases.toml").read_text("utf-8"))["case"]
+TODAY = dt.date(2026, 12, 1)
+
+
+@cache
+def answer_to(name: str) -> Comparison:
+    case = next(case for case in CASES if case["name"] == name)
+    stock = check_range(case["range"]) if "range" in case else builtin_range()
+    return compare(check_visit(case["visit"]), stock, translator=language("en"), today=TODAY)
+
+
+def coating(option: AdvisedOption) -> str:
+    front, back = option.coating.front, option.coating.back
+    return front if front == back else f"{front}|{back}"
+
+
+def test_there_are_at_least_twenty_cases_each_with_its_reason() -> None:
+    assert len(CASES) >= 20
+    assert all(case["why"].endswith(".") and case["expect"] for case in CASES)
+    assert len({case["name"] for case in CASES}) == len(CASES)
+
+
+@pytest.mark.parametrize("case", CASES, ids=lambda case: case["name"])
+def test_the_advice_is_what_a_good_dispenser_would_give(case: dict[str, Any]) -> None:
+    expect = dict(case["expect"])
+    advice = answer_to(case["name"]).advice
+    assert advice is not None
+    assert advice.because is not None
+    best = advice.recommended
+    if "none" in expect:
+        assert best is None
+        assert [reason.code for reason in advice.because] == [expect.pop("none")]
+        assert [pair.use for pair in advice.two_pairs or []] == expect.pop("pairs", [])
+    else:
+        assert best is not None
+        assert advice.two_pairs is None
+        for name, found in {
+            "material": best.material,
+            "design": best.design,
+            "coating": coating(best),
+            "tint": best.tint,
+        }.items():
+            if name in expect:
+                assert found in expect.pop(name), (name, found)
+        if "option" in expect:
+            assert best.index == expect.pop("option")
+    told = [best, advice.next_best, *(advice.two_pairs or [])]
+    for option in (option for option in told if option is not None):
+        assert not {option.material, option.design, coating(option)} & set(expect.get("never", [])), option.label
+    expect.pop("never", None)
+    codes: dict[int, set[str]] = {}
+    for entry in advice.excluded or []:
+        codes.setdefault(entry.option, set()).add(entry.code)
+    for place, code in expect.pop("excluded", {}).items():
+        assert code in codes.get(int(place), set()), codes
+    for place in expect.pop("kept", []):
+        assert place not in codes, codes
+    cheapest = advice.cheapest_that_meets_every_must
+    if "cheapest" in expect:
+        assert cheapest is not None
+        assert {"material": cheapest.material, "coating": coating(cheapest)} == expect.pop("cheapest")
+    if "price_at_most" in expect:
+        limit = expect.pop("price_at_most")
+        assert all(o is not None and o.price is not None and o.price <= limit for o in (best, advice.next_best, cheapest))
+    cautions = {caution.key for caution in advice.cautions}
+    assert set(expect.pop("cautions", [])) <= cautions
+    assert not set(expect.pop("no_cautions", [])) & cautions
+    free = [remedy.code.removesuffix("-or-material") for remedy in advice.free_first or []]
+    assert set(expect.pop("free", [])) <= set(free), free
+    assert not set(expect.pop("not_free", [])) & set(free)
+    if "robust" in expect:
+        assert advice.robustness is not None
+        assert advice.robustness.code in expect.pop("robust")
+    changes = {change.code for change in advice.would_change or []}
+    assert set(expect.pop("would_change", [])) <= changes, changes
+    assert not expect, f"the test does not know {sorted(expect)}"
+
+
+@pytest.mark.parametrize("case", CASES, ids=lambda case: case["name"])
+def test_advice_keeps_its_shape(case: dict[str, Any]) -> None:
+    answer = answer_to(case["name"])
+    advice = answer.advice
+    assert advice is not None
+    assert len(advice.because or []) <= 3
+    assert len(advice.gives_up or []) <= 3
+    assert set(advice.ranking or []).isdisjoint({entry.option for entry in advice.excluded or []})
+    assert sorted({*(advice.ranking or []), *(e.option for e in advice.excluded or [])}) == list(range(len(answer.options)))
+    best, cheapest = advice.recommended, advice.cheapest_that_meets_every_must
+    assert (best is None) == (cheapest is None)
+    if best is not None and cheapest is not None:
+        assert advice.because, "a recommendation has a reason"
+        assert cheapest.price is None or best.price is None or cheapest.price <= best.price
+        assert advice.next_best is None or advice.next_best.label != best.label
+    text = answer.model_dump_json()
+    assert "NaN" not in text
+    assert "Infinity" not in text
+
+
+def advice_on(options: list[dict[str, Any]], **visit: Any) -> Any:
+    content = {"prescription": {"right": {"sphere": -3.0}, "left": {"sphere": -3.0}}, "options": options, **visit}
+    found = compare(check_visit(content), builtin_range(), translator=language("en"), today=TODAY).advice
+    assert found is not None
+    return found
+
+
+RESIN = {"design": "single-vision", "material": "hard-resin-150", "coating": "broadband"}
+
+
+def test_what_is_recommended_may_be_sold_and_not_laid_out() -> None:
+    found = advice_on([{**RESIN, "coating": "bare"}], daily_life={"night_driving": "often", "impact": "never"})
+    assert found.recommended.index is None
+    assert found.recommended.coating.front != "bare"
+    assert found.ranking == [0]
+
+
+def test_a_laid_out_option_is_named_by_its_index() -> None:
+    found = advice_on([RESIN], daily_life={"night_driving": "often", "impact": "never"})
+    assert found.cheapest_that_meets_every_must.index is None
+    named = [o for o in (found.recommended, found.next_best) if o.material == RESIN["material"]]
+    assert [o.index for o in named if o.coating.front == "broadband"] == [0]
+
+
+def test_an_item_given_in_place_may_be_advised() -> None:
+    light = {"n_d": 1.6, "abbe": 45.0, "density_g_cm3": 1.1, "price": 5.0, "tough": True, "least_centre_mm": 1.0}
+    found = advice_on([{**RESIN, "material": light}], daily_life={"bothered_weight": "often"})
+    assert found.recommended.material == "in-place"
+
+
+def test_reasons_set_a_figure_beside_that_of_the_worn_pair() -> None:
+    found = advice_on(
+        [RESIN],
+        daily_life={"night_driving": "often", "impact": "never"},
+        worn_now={"material": "hard-resin-150", "coating": "bare"},
+    )
+    (reason,) = (r for r in found.because if r.code == "figure-second-image")
+    assert reason.figures["this_level"] < 0.4 < reason.figures["other_level"]
+    assert "worn now" in reason.text
+
+
+def test_a_worn_lens_of_unknown_coating_is_not_compared_by_its_light() -> None:
+    found = advice_on(
+        [{**RESIN, "material": "polyurethane-urea-153"}],
+        daily_life={"bothered_weight": "often", "face_to_face": "never"},
+        worn_now={"material": "crown-glass-152"},
+    )
+    worn = [reason for reason in found.because if "worn now" in reason.text]
+    assert all(reason.code in ("figure-thickness", "figure-weight", "figure-fringe") for reason in worn)
+    assert worn
+
+
+def test_the_answer_to_one_question_more_can_only_be_foreseen_where_it_was_not_asked() -> None:
+    asked = advice_on([RESIN], daily_life={"impact": "never", "one_good_eye": "no", "child": "no", "price_limit": 900})
+    told = {change.code for change in asked.would_change}
+    assert not told & {"if-asked-impact", "if-asked-one-eye", "if-asked-child", "if-asked-price"}
+    assert {"if-asked-impact", "if-asked-one-eye", "if-asked-child", "if-asked-price"} <= {
+        change.code for change in advice_on([RESIN]).would_change
+    }
+
+
+def test_the_greatest_reflectance_is_null_where_even_bare_is_not_noticed() -> None:
+    assert advice_on([RESIN], scenes=[]).greatest_reflectance_per_surface is None
+    weak = advice_on([RESIN], prescription={"right": {"sphere": -0.75}, "left": {"sphere": -0.75}})
+    assert 0.0 < weak.greatest_reflectance_per_surface < 0.04  # under a bare face of 1.5
+
+
+def test_unknown_prices_everywhere_still_give_advice() -> None:
+    stock = builtin_range()
+    free = stock.model_copy(
+        update={"material": tuple(m.model_copy(update={"price": None}) for m in stock.material)}
+    )
+    content = {"prescription": {"right": {"sphere": -3.0}, "left": {"sphere": -3.0}}, "options": [RESIN]}
+    found = compare(check_visit(content), free, translator=language("en"), today=TODAY).advice
+    assert found is not None
+    assert found.recommended is not None
+    assert found.recommended.price is None
+
+
+def test_a_dearer_currency_changes_no_advice() -> None:
+    # about 150 yen to a euro: the same range at 150 times the price
+    stock = builtin_range()
+    parts = {
+        name: tuple(
+            item.model_copy(update={"price": None if item.price is None else 150 * item.price})
+            for item in getattr(stock, name)
+        )
+        for name in ("material", "coating", "tint", "design")
+    }
+    yen = stock.model_copy(update={**parts, "shop": stock.shop.model_copy(update={"currency": "JPY"})})
+    content = {"prescription": {"right": {"sphere": -4.0}, "left": {"sphere": -4.0}}, "options": [RESIN]}
+    one, other = (compare(check_visit(content), s, translator=language("en"), today=TODAY).advice for s in (stock, yen))
+    assert one is not None
+    assert other is not None
+    assert one.recommended is not None
+    assert other.recommended is not None
+    assert one.recommended.label == other.recommended.label
+    assert math.isclose(other.recommended.price or 0.0, 150 * (one.recommended.price or 0.0))
+
+
+@pytest.mark.parametrize("file", sorted(resource_dir("demo_patients").glob("*.json")), ids=lambda path: path.stem)
+def test_every_demo_wearer_gets_advice_without_promises(file: Path) -> None:
+    found = compare(read_visit(file), builtin_range(), translator=language("en")).advice
+    assert found is not None
+    assert found.recommended is not None or found.two_pairs
+    parts = [*(found.because or []), *(found.gives_up or []), *(found.would_change or []), *(found.free_first or [])]
+    said = " ".join(part.text for part in parts).lower()
+    assert not [word for word in ("fit to drive", "unbreakable", "get used to", "protects your", "no reflections", "gone") if word in said]

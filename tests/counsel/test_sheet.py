@@ -1,0 +1,382 @@
+"""The wearer's sheet: its figures are the comparison's, its words are plain, and it promises nothing."""
+
+import datetime as dt
+import json
+import re
+from collections.abc import Iterator
+from functools import cache
+from html.parser import HTMLParser
+from pathlib import Path
+from typing import Any
+
+import pytest
+
+from advisor.counsel.caution_texts import CAUTION_TEXTS
+from advisor.counsel.compare import compare
+from advisor.counsel.comparison import Comparison
+from advisor.counsel.sheet import SHEET_TEXTS, NoSuchOption
+from advisor.counsel.sheet_texts import HEADINGS
+from advisor.counsel.stock import builtin_range
+from advisor.counsel.visit import Visit, check_visit, read_visit
+from advisor.resources import resource_dir
+from advisor.web.documents import wearer_sheet
+from advisor.web.language import language
+
+TODAY = dt.date(2026, 12, 1)
+DEMO = sorted(resource_dir("demo_patients").glob("*.json"))
+STOCK = builtin_range()
+
+
+class Text(HTMLParser):
+    """Reads a page: headings with the lines under them, and all words but those of drawings and hidden parts."""
+
+    def __init__(self) -> None:
+        super().__init__()
+        self.sections: dict[str, list[str]] = {}
+        self.words: list[str] = []
+        self._open: list[str] = []
+        self._line: list[str] | None = None
+        self._title: list[str] | None = None
+        self._hidden = 0
+
+    def handle_starttag(self, tag: str, attrs: list[tuple[str, str | None]]) -> None:
+        if tag in ("style", "title", "head") or (tag == "p" and dict(attrs).get("class") == "foot"):
+            self._hidden += 1
+            self._open.append(tag)
+        if tag == "h2":
+            self._title = []
+        if tag == "li":
+            self._line = []
+
+    def handle_endtag(self, tag: str) -> None:
+        if self._open and self._open[-1] == tag:
+            self._open.pop()
+            self._hidden -= 1
+        if tag == "h2" and self._title is not None:
+            self.sections["".join(self._title).strip()] = []
+            self._title = None
+        if tag == "li" and self._line is not None:
+            self.sections[list(self.sections)[-1]].append(" ".join("".join(self._line).split()))
+            self._line = None
+
+    def handle_data(self, data: str) -> None:
+        if self._hidden:
+            return
+        if self._title is not None:
+            self._title.append(data)
+        if self._line is not None:
+            self._line.append(data)
+        self.words.append(data)
+
+    @property
+    def text(self) -> str:
+        return " ".join(" ".join(self.words).split())
+
+
+def read(html: str) -> Text:
+    reader = Text()
+    reader.feed(html)
+    return reader
+
+
+@cache
+def visit_of(path: Path) -> Visit:
+    return read_visit(path)
+
+
+@cache
+def answer_of(path: Path) -> Comparison:
+    return compare(visit_of(path), STOCK, translator=language("en"), today=TODAY)
+
+
+@cache
+def sheet_of(path: Path, number: int) -> Text:
+    return read(wearer_sheet(visit_of(path), STOCK, number=number, code="en", today=TODAY))
+
+
+def every_sheet() -> list[Any]:
+    """Every demo wearer with every option that can be made; options count from 1."""
+    return [
+        pytest.param(path, option.index, id=f"{path.stem}-{option.index + 1}")
+        for path in DEMO
+        for option in answer_of(path).options
+        if not option.refused
+    ]
+
+
+SHEETS = every_sheet()
+
+
+def plain(path: Path, index: int) -> dict[str, Any]:
+    """One option as another program would read it: from JSON, with no help from the program."""
+    content = json.loads(answer_of(path).model_dump_json(exclude_unset=True))
+    option: dict[str, Any] = content["options"][index]
+    return option
+
+
+def two_figures(parts: float) -> str:
+    """A count to two figures, thousands parted."""
+    return f"{int(float(f'{parts:.1e}')):,}"
+
+
+def expected_lines(option: dict[str, Any]) -> Iterator[str]:
+    """Say again, from the JSON alone, every sentence with a figure."""
+    eye = option["right"]
+    mirrors, uncoated, image = eye["luminous_reflectance"], eye["uncoated"], eye["second_image"]
+    films = {coating.key for coating in STOCK.coating if coating.layers != ()}
+    coated = bool(films & set(option["coating"].values()))
+    if not coated:
+        yield f"These lenses mirror away about {100 * mirrors['first_pass_loss']:.1f} % of the light."
+    else:
+        without = "With a hard coat only" if uncoated["hard_coat_only"] else "Without a coating"
+        yield f"{without}, these lenses would mirror away about {100 * uncoated['first_pass_loss']:.1f} % of the light."
+        low, _, high = (f"{100 * part:.1f}" for part in mirrors["as_made"]["first_pass_loss"])
+        yield f"With your coating it is {low} to {high} %. Each pair differs a little."
+    if option["tint"] is not None:
+        share = 100 * eye["luminous_transmittance"]
+        yield f"The tinted lens lets about {share:.1f} % of the light through."
+    parts = two_figures(1 / (image["as_made"][1] if image["as_made"] else image["strength"]))
+    if coated:
+        bare = two_figures(1 / uncoated["second_image"])
+        yield (
+            "Light mirrored twice inside a lens makes a second image. "
+            f"Yours has at most 1 part in {parts} of the light, not 1 in {bare}."
+        )
+    else:
+        yield (f"Light mirrored twice inside a lens makes a second image: here about 1 part in {parts} of the light.")
+    if option["price"] is not None:
+        yield f"Price of the pair of lenses: €{option['price']:,.2f}"
+
+
+@pytest.mark.parametrize(("path", "index"), SHEETS)
+def test_every_figure_is_the_comparisons(path: Path, index: int) -> None:
+    sheet = sheet_of(path, index + 1)
+    lines = [line for found in sheet.sections.values() for line in found]
+    expected = list(expected_lines(plain(path, index)))
+    for sentence in expected:
+        assert lines.count(sentence) == 1, sentence
+    # and no other line holds a number, but for labels of the shop and the fixed words of care
+    free = {text.replace("%%", "%") for text in SHEET_TEXTS.values() if "%(" not in text}
+    labels = {item.label for part in (STOCK.material, STOCK.coating, STOCK.tint) for item in part if item.label}
+    for line in lines:
+        if line not in expected and line not in free and not any(label in line for label in labels):
+            assert not re.search(r"\d", line), line
+
+
+@pytest.mark.parametrize(("path", "index"), SHEETS)
+def test_a_bar_is_as_long_as_its_figure(path: Path, index: int) -> None:
+    html = wearer_sheet(visit_of(path), STOCK, number=index + 1, code="en", today=TODAY)
+    bars = re.findall(r'<title>([\d.]+) %</title>.*?<rect [^>]*stroke.*?<rect [^>]*width="([\d.]+)"', html)
+    assert len(bars) == 2
+    eye = plain(path, index)["right"]
+    mirrors = eye["luminous_reflectance"]
+    spread = mirrors["as_made"]["first_pass_loss"]
+    shares = [eye["uncoated"]["first_pass_loss"], spread[2] if spread else mirrors["first_pass_loss"]]
+    assert [text for text, _ in bars] == [f"{100 * share:.1f}" for share in shares]
+    lengths = [float(length) for _, length in bars]
+    assert lengths[1] / lengths[0] == pytest.approx(shares[1] / shares[0], abs=0.001)  # one scale
+    assert max(lengths) <= 100  # drawing units of the frame round them
+
+
+# --- ghosts -----------------------------------------------------------------------------------------------------------
+
+GHOSTS = re.compile(r"second(, fainter)? light beside|haze|second image of a lamp|behind you")
+
+
+@pytest.mark.parametrize(("path", "index"), SHEETS)
+def test_at_most_two_sentences_tell_of_ghosts_and_each_says_may(path: Path, index: int) -> None:
+    lines = sheet_of(path, index + 1).sections["What that means for you"]
+    told = [line for line in lines if GHOSTS.search(line)]
+    assert len(told) <= 2
+    for line in told:
+        assert re.search(r"\b[Yy]ou may\b", line), line
+    assert any("makes a second image" in line for line in lines)  # always there
+    assert "you will" not in sheet_of(path, index + 1).text.lower()
+
+
+def right_and_left(option: dict[str, Any]) -> Iterator[dict[str, Any]]:
+    yield from (option["right"], option["left"])
+
+
+@pytest.mark.parametrize(("path", "index"), SHEETS)
+def test_a_second_light_or_a_haze_is_told_only_where_it_was_computed(path: Path, index: int) -> None:
+    option = plain(path, index)
+    ghosts = [ghost for eye in right_and_left(option) for ghost in eye["ghosts"]]
+    # by day or on a stage the threshold model is past its range, and no sentence rests on it
+    inner = [ghost for ghost in ghosts if ghost["path"] == "ahead-inner" and not ghost["past_range"]]
+    text = " ".join(sheet_of(path, index + 1).sections["What that means for you"])
+    noticed = [g for g in inner if g["verdict"] in ("only if looked for", "noticeable", "plain")]
+    if "a second, fainter light beside a lamp" in text:
+        assert any(not ghost["haze"] for ghost in noticed)
+    if "haze" in text:
+        assert any(ghost["haze"] for ghost in noticed)
+    if "may never notice" in text:
+        assert inner
+        assert noticed == []
+    if "behind you" in text:
+        assert any(
+            g["contrast"] >= 0.02 for eye in right_and_left(option) for g in eye["ghosts"] if "behind" in g["path"]
+        )
+
+
+# --- cautions ---------------------------------------------------------------------------------------------------------
+
+SAID_AMONG_THE_COATING = {"coating-adds-no-strength", "not-promise-none"}
+
+
+@pytest.mark.parametrize(("path", "index"), SHEETS)
+def test_the_cautions_are_exactly_those_that_apply_and_have_words_for_a_wearer(path: Path, index: int) -> None:
+    sheet, advice = sheet_of(path, index + 1), answer_of(path).advice
+    assert advice is not None
+    apply = {caution.key for caution in advice.cautions if index in caution.options}
+    said = [*sheet.sections.get("What they are not for", []), *sheet.sections.get("Please note", [])]
+    words = {CAUTION_TEXTS[key].sheet for key in apply - SAID_AMONG_THE_COATING} - {""}
+    assert sorted(said) == sorted(words)
+    for line in said:
+        assert "%" not in line
+    coating = " ".join(sheet.sections["What the coating does and does not do"])
+    if apply & SAID_AMONG_THE_COATING:
+        assert "It does not stop all reflections." in coating
+        assert "It does not make the lens stronger." in coating
+
+
+@pytest.mark.parametrize(("path", "index"), SHEETS)
+def test_the_sheet_has_its_parts_in_order(path: Path, index: int) -> None:
+    found = list(sheet_of(path, index + 1).sections)
+    wanted = [heading for heading in HEADINGS.values() if heading in found]
+    assert found == wanted
+    must = {"for", "not-for", "chosen", "why", "coating", "do", "dont", "first-days", "come-back", "today"}
+    assert {HEADINGS[key] for key in must} <= set(found)
+    assert found[-1] == "See an eye doctor today if you have"
+
+
+# --- what is never said -----------------------------------------------------------------------------------------------
+
+NEVER = [
+    "no reflections", "without reflections", "reflection-free", "anti-glare", "glare-free", "anti-reflective",
+    "unbreakable", "shatterproof", "100 % uv", "100% uv", "fit to drive", "safe to drive", "protects your eyes",
+    "protect your eyes", "you will get used", "you will", "invisible", "perfect", "best lens", "guarantee",
+    "scratch-proof", "eye strain",
+]  # fmt: skip
+
+
+@pytest.mark.parametrize("claim", NEVER)
+def test_no_sheet_makes_this_claim(claim: str) -> None:
+    for text in SHEET_TEXTS.values():
+        assert claim not in text.lower()
+    for param in SHEETS[::5]:
+        path, index = param.values
+        assert isinstance(path, Path)
+        assert isinstance(index, int)
+        assert claim not in sheet_of(path, index + 1).text.lower()
+
+
+@pytest.mark.parametrize(("path", "index"), SHEETS)
+def test_no_note_no_other_price_and_no_working_figure_is_printed(path: Path, index: int) -> None:
+    text, visit, answer = sheet_of(path, index + 1).text, visit_of(path), answer_of(path)
+    secret = [
+        visit.note,
+        visit.worn_now.disliked if visit.worn_now else None,
+        visit.worn_now.liked if visit.worn_now else None,
+    ]
+    for words in secret:
+        assert not words or words not in text
+    own = answer.options[index].price
+    for option in answer.options:
+        if option.price is not None and option.price != own:
+            assert f"€{option.price:,.2f}" not in text
+    assert "visibility" not in text.lower()
+    assert "cd/m" not in text
+    assert "dioptre" not in text
+
+
+def test_hostile_text_stays_text() -> None:
+    content = visit_of(DEMO[0]).model_dump(mode="json", by_alias=True, exclude_none=True)
+    content["wearer"]["name"] = '<script>alert("1")</script>'
+    content["reference"] = "<img src=x onerror=alert(2)>"
+    content["note"] = "<b>secret</b>"
+    shop = STOCK.shop.model_copy(update={"name": "<iframe src='//evil.example'>", "contact": "{{ 7*7 }} %(x)s & <i>"})
+    material = STOCK.material[1].model_copy(update={"label": "</title><svg onload=alert(3)> 100 %"})
+    assert material.key == "hard-resin-150"
+    others = (STOCK.material[0], material, *STOCK.material[2:])
+    stock = STOCK.model_copy(update={"shop": shop, "material": others})
+    html = wearer_sheet(check_visit(content), stock, code="en", today=TODAY)
+    for tag in ("<script", "<img", "<b>", "<iframe", "<i>", "<svg onload", "49 "):
+        assert tag not in html
+    text = read(html).text
+    assert '<script>alert("1")</script>' in text
+    assert "{{ 7*7 }} %(x)s & <i>" in text
+    assert "Lens: </title><svg onload=alert(3)> 100 %" in text
+    assert "secret" not in text
+
+
+# --- which option -----------------------------------------------------------------------------------------------------
+
+PAIR: dict[str, Any] = {
+    "prescription": {"right": {"sphere": -2.0}, "left": {"sphere": -2.0}},
+    "options": [
+        {"design": "single-vision", "material": "hard-resin-150"},
+        {"design": "single-vision", "material": "hard-resin-150", "front_power_d": 30.0},
+        {"design": "single-vision", "material": "thiourethane-160", "coating": "broadband"},
+    ],
+    "scenes": [],
+}
+
+
+def sheet(number: int | None = None, **more: Any) -> str:
+    return wearer_sheet(check_visit(PAIR | more), STOCK, number=number, code="en", today=TODAY)
+
+
+@pytest.mark.parametrize("number", [4, 99])
+def test_an_option_out_of_range_is_refused_in_a_sentence(number: int) -> None:
+    with pytest.raises(NoSuchOption, match=f"There is no option {number}; 3 are laid out."):
+        sheet(number)
+
+
+def test_a_refused_option_is_refused_in_a_sentence() -> None:
+    with pytest.raises(NoSuchOption, match="cannot be made, so there is nothing to print"):
+        sheet(2)
+    with pytest.raises(NoSuchOption, match="cannot be made"):
+        sheet(ordered=1)
+    with pytest.raises(NoSuchOption, match="cannot be made"):
+        wearer_sheet(check_visit(PAIR | {"options": PAIR["options"][1:2]}), STOCK, code="en", today=TODAY)
+
+
+def test_what_was_ordered_is_printed_else_the_first_that_is_not_the_baseline() -> None:
+    assert "Lens: Hard resin 1.50" in sheet(ordered=0)
+    assert "Lens: Thiourethane 1.60" in sheet()  # 0 is the baseline, 1 cannot be made
+    assert "Lens: Hard resin 1.50" in sheet(baseline=2)
+    assert "Lens: Hard resin 1.50" in sheet(1)
+
+
+# --- plain words ------------------------------------------------------------------------------------------------------
+
+MOST_WORDS = 20
+HARD_WORDS = [
+    "refractive", "refraction", "dioptre", "luminous", "luminance", "coefficient", "transmittance", "reflectance",
+    "vertex", "vergence", "photopic", "spectrum", "spectral", "aberration", "abbe", "index", "substrate",
+    "deposition", "dispersion", "contraindicated", "utilise", "approximately", "subsequently", "ametropia",
+    "presbyopia", "illuminance", "threshold", "polaris", "pantoscopic", "monocular", "binocular", "hydrophobic",
+    "oleophobic", "residual",
+]  # fmt: skip
+
+
+@pytest.mark.parametrize("key", SHEET_TEXTS)
+def test_sentences_are_short_and_words_are_plain(key: str) -> None:
+    text = re.sub(r"%\(\w+\)s", "7", SHEET_TEXTS[key])
+    for sentence in re.split(r"(?<=[.!?])\s+", text):
+        assert len(sentence.split()) <= MOST_WORDS, sentence
+    found = [word for word in HARD_WORDS if word in text.lower()]
+    assert found == []
+    assert ";" not in text or key == "coating-smears"
+    assert not re.search(r"\b(e\.g\.|i\.e\.|etc)", text)
+
+
+def test_a_makers_figure_is_told_as_one() -> None:
+    declared = {"declared": {"luminous_reflectance": 0.007, "hue": "green"}, "label": "House coating"}
+    option = {"design": "single-vision", "material": "hard-resin-150", "coating": declared}
+    html = wearer_sheet(check_visit(PAIR | {"options": [option]}), STOCK, code="en", today=TODAY)
+    lines = read(html).sections["What that means for you"]
+    # first pass through two faces of 0.7 %: 1 - 0.993^2
+    assert f"With your coating it is about {100 * (1 - 0.993**2):.1f} %, by the maker's figure." in lines
+    assert "Coating on both sides: House coating" in read(html).sections["What you chose"]
