@@ -187,13 +187,15 @@ def sheet(
 @click.argument("file", type=click.Path(path_type=Path))
 @click.option("-o", "--out", required=True, type=click.Path(path_type=Path), help="OUT.pdf or OUT.html")
 @click.option("--option", "number", type=click.IntRange(1), help="Which option, counted from 1.")
+@click.option("--bench", is_flag=True, help="The workshop's bench slip instead of the supplier's slip.")
 @click.option("--range", "range_file", type=click.Path(path_type=Path), help="Range file to use.")
 @click.pass_obj
-def order(data: Path | None, file: Path, out: Path, number: int | None, range_file: Path | None) -> None:
+def order(data: Path | None, file: Path, out: Path, number: int | None, bench: bool, range_file: Path | None) -> None:
     """Write the order slip for a visit file; refused, with reasons, while something needed is missing."""
-    from advisor.web.documents import order_slip
+    from advisor.web.documents import bench_slip, order_slip
 
-    _paper(data, file, out, range_file, lambda visit, stock: order_slip(visit, stock, number=number))
+    slip = bench_slip if bench else order_slip
+    _paper(data, file, out, range_file, lambda visit, stock: slip(visit, stock, number=number))
 
 
 def _paper(

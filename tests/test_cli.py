@@ -203,12 +203,6 @@ BAD: dict[str, tuple[Callable[[Path], object], str]] = {
     "text-number": (lambda p: p.write_text(prescribed('{"sphere": "-1"}')), "without quotation marks"),
     "no-spheres": (lambda p: p.write_text('{"prescription": {"right": {}, "left": {}}}'), "this is missing"),
     "surrogate": (lambda p: p.write_text('{"reference": "\\ud800", "prescription": 1}'), "write text"),
-    "no-film": (
-        lambda p: p.write_text(
-            prescribed('{"sphere": -1}', '"options": [{"coating": {"declared": {"luminous_reflectance": 0.9}}}]')
-        ),
-        "No built-in film can be scaled",
-    ),
 }  # fmt: skip
 
 

@@ -115,12 +115,9 @@ def excluded(field: Field, *, translator: Translator) -> list[Content]:
 
 
 def _greatest_reflectance(field: Field, k: int) -> float | None:
-    """Return the most each face of the recommended pair may mirror so that lights ahead make no ghost to be noticed.
-
-    None where even bare is enough. Light from behind by day is past the range of the model that the limit rests on.
-    """
+    """Return the most each face of the recommended pair may mirror unnoticed; None where even bare is enough."""
     laid = field.pool.laid[k]
-    ahead = tuple(scene for scene in scenes_that_count(field.case, [laid]) if scene.where == "ahead")
+    scenes = scenes_that_count(field.case, [laid])
     forms = rows_of(field.computed.forms, np.array([k]))
-    limits = limits_of(replace(field.case, scenes=ahead), [laid], forms=forms)
+    limits = limits_of(replace(field.case, scenes=scenes), [laid], forms=forms)
     return None if limits is None else number(float(limits.not_noticed[0]))

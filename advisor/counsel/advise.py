@@ -56,10 +56,11 @@ class Field:
         price = self.pool.laid[k].price
         return np.inf if price is None else price
 
-    def level(self, one: int, other: int) -> bool:
-        """Whether the worth of two options differs by no more than their figures are sure of."""
-        apart = abs(float(self.worth[one] - self.worth[other]))
-        return apart <= float(leeway(self.values[one], self.values[other], self.weights, self.used))
+    def level(self, options: Sequence[int], with_one: int) -> NDArray[np.bool_]:
+        """Which options' worth differs from that of one by no more than their figures are sure of."""
+        rows = list(options)
+        apart = np.abs(self.worth[rows] - self.worth[with_one])
+        return np.asarray(apart <= leeway(self.values[rows], self.values[with_one], self.weights, self.used))
 
     def best(self, among: Iterable[int]) -> int | None:
         """Return the cheapest of those level with the best; one laid out before one that is not."""
@@ -67,7 +68,7 @@ class Field:
         if not options:
             return None
         top = max(options, key=lambda k: (self.worth[k], -self.price(k)))
-        alike = [k for k in options if self.level(k, top)]
+        alike = [k for k, level in zip(options, self.level(options, top), strict=True) if level]
         return min(alike, key=lambda k: (self.price(k), k >= self.pool.given, -self.worth[k]))
 
     def top(self, among: Iterable[int]) -> int | None:
@@ -196,7 +197,7 @@ def _if_first(field: Field, chosen: int, among: Sequence[int]) -> tuple[tuple[st
         levels = {**field.levels, key: max(field.levels.values()) + 1}
         moved = replace(field, weights=level_weights(list(levels.values())))
         best = moved.best(among)
-        if best is not None and best != chosen and not moved.level(best, chosen):
+        if best is not None and best != chosen and not moved.level([best], chosen)[0]:
             found.setdefault(best, key)
     return tuple((key, k) for k, key in found.items())
 

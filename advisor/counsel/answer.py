@@ -5,6 +5,9 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from typing import Any
 
+import numpy as np
+from numpy.typing import NDArray
+
 from advisor.counsel.faces import residual_colour
 from advisor.counsel.form import SMALLER_BY_MM, LensForms
 from advisor.counsel.ghosts import GhostFigures
@@ -61,6 +64,7 @@ class Figures:
     forms: LensForms
     ghosts: GhostFigures
     scenes: Sequence[Scene]
+    size_change_percent: NDArray[np.float64]
 
 
 def option_answer(option: Laid, *, figures: Figures, translator: Translator) -> Content:
@@ -133,7 +137,9 @@ def _form(option: Laid, e: int, *, figures: Figures) -> Content:
     """Return the figures of form and weight of one lens."""
     k, forms, shape = option.index, figures.forms, figures.forms.shape
     fits = bool(forms.smaller_fits[k, e])
-    return {
+    change = number(figures.size_change_percent[k, e])
+    known = {} if change is None else {"magnification_change_percent": change}
+    return known | {
         "front_power_d": number(shape.front_power_d[k, e]),
         "back_power_d": [number(power) for power in shape.back_power_d[k, e]],
         "centre_mm": number(shape.centre_mm[k, e]),
@@ -144,6 +150,7 @@ def _form(option: Laid, e: int, *, figures: Figures) -> Content:
         "weight_g": number(forms.weight_g[k, e]),
         "blank_mm": number(forms.blank_mm[k, e]),
         "colour_fringe_prism_d": number(forms.fringe_prism_d[k, e]),
+        "colour_fringe_rim_prism_d": number(forms.rim_fringe_prism_d[k, e]),
         "magnification_percent": number(forms.magnification_percent[k, e]),
         "smaller_frame": {
             "by_mm": SMALLER_BY_MM,
@@ -182,10 +189,7 @@ def _light(option: Laid, *, figures: Figures) -> Content:
         "second_image": _second_image(option, light=light),
         "uncoated": _uncoated(option, uncoated=figures.uncoated),
         "luminous_transmittance": float(light.transmittance[k]),
-        "residual_colour": {
-            name: dict(zip(("hue", "srgb", "xy"), residual_colour(face), strict=True))
-            for name, face in (("front", front), ("back", back))
-        },
+        "residual_colour": {name: residual_colour(face) for name, face in (("front", front), ("back", back))},
     }
     if option.tint is not None and option.tint.luminous_transmittance_dark is not None:
         content["luminous_transmittance_dark"] = float(light.transmittance_dark[k])
@@ -197,6 +201,8 @@ def _ghosts(option: Laid, e: int, *, figures: Figures) -> list[Content]:
     ranges = estimated_ranges(option, figures.scenes)
     seen, k, found = figures.ghosts.seen, option.index, []
     for s, scene in enumerate(figures.scenes):
+        if not option.is_met_in(scene):
+            continue
         for p, path in enumerate(PATHS):
             if not seen.applies[k, e, s, p]:
                 continue

@@ -21,12 +21,14 @@ from advisor.counsel.laid_out import Laid, Refused, lay_out, options_of, without
 from advisor.counsel.light import Light, light_of
 from advisor.counsel.limits import coatings_that_reach, limits_of
 from advisor.counsel.phrases import Figure, Phrase, Translator, mark, say
-from advisor.counsel.prescription import power_along_d
+from advisor.counsel.prescription import EYES
 from advisor.counsel.stock import Range
 from advisor.counsel.stock_items import Tint
 from advisor.counsel.visit import DailyLife, Visit
 from advisor.counsel.visit_checks import WARNING_TEXTS, age_faults, prescription_warnings, visit_faults
 from advisor.counsel.words import WORD_TEXTS
+from advisor.counsel.worn import magnification_change_percent, worn_forms
+from advisor.optics import prism
 
 Content = dict[str, Any]
 
@@ -71,15 +73,21 @@ def compute(visit: Visit, stock: Range, *, today: dt.date | None = None, file: s
         light=light,
         forms=forms,
         ghosts=figures_of(case, laid, forms=forms, light=light),
-        uncoated=light_of([without_film(option, stock) for option in laid], case.scenes),
+        uncoated=light_of([without_film(option, stock) for option in laid], ()),  # no scene asks for it
         vertical_imbalance_prism_d=vertical_imbalance(case),
     )
 
 
 def vertical_imbalance(case: Case) -> float:
     """Return the prism between the eyes 10 mm below the centres: difference of vertical powers x 1 cm (Prentice)."""
-    right, left = (power_along_d(case.compensated(eye), meridian_deg=90.0) for eye in ("right", "left"))
-    return abs(right - left)
+    powers = [case.compensated(eye) for eye in EYES]
+    return float(
+        prism.vertical_imbalance(
+            [power.sphere_d for power in powers],
+            cylinder_d=[power.cylinder_d for power in powers],
+            axis_deg=[power.axis_deg for power in powers],
+        )
+    )
 
 
 def _with_tint_refusals(laid: Sequence[Laid], light: Light) -> list[Laid]:
@@ -167,6 +175,9 @@ def answer_of(computed: Computed, *, translator: Translator, with_advice: bool =
         forms=computed.forms,
         ghosts=computed.ghosts,
         scenes=case.scenes,
+        size_change_percent=magnification_change_percent(
+            computed.forms, worn_forms(case, design=computed.laid[0].design.key)
+        ),
     )
     content: Content = {
         "format": "twolight-comparison-1",

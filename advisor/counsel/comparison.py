@@ -87,6 +87,8 @@ class Colour(_Part):
     hue: str
     srgb: str
     xy: tuple[float, float]
+    hue_at_45_deg: str | None = None
+    as_made_hues: dict[str, float] | None = Field(default=None, description="share of faces as made by hue word")
 
 
 class ResidualColour(_Part):
@@ -161,7 +163,9 @@ class EyeFigures(_Part):
     residual_colour: ResidualColour
     observer_contrast: float | None = None
     colour_fringe_prism_d: float | None = None
+    colour_fringe_rim_prism_d: float | None = Field(default=None, description="greatest along the rim")
     magnification_percent: float | None = None
+    magnification_change_percent: float | None = Field(default=None, description="against the worn pair, if on file")
     smaller_frame: dict[str, float | None] | None = Field(
         default=None, description="the same lens in a smaller frame: by_mm, edge_thickest_mm, weight_g"
     )
@@ -171,7 +175,8 @@ class EyeFigures(_Part):
 class ReflectanceLimit(_Part):
     """The most each face may mirror, alike on both, so that the worst ghost stays below a visibility level.
 
-    Null where even a bare face keeps the level; ``reached_by`` are the coatings sold with which the worst ghost is not noticed, as designed. Judged on roads by night.
+    Judged on roads by night. Null where even a bare face keeps the level; ``reached_by`` are the coatings sold with
+    which the worst ghost is not noticed, as designed.
     """
 
     not_noticed: float | None

@@ -7,6 +7,7 @@ layers, so they have no as-made spread; a declared figure borrows the shape of t
 from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import lru_cache
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -22,6 +23,7 @@ from advisor.optics.spectrum_input import DeclaredOutOfReach, EstimatedSpectrum,
 from advisor.optics.surface import SurfaceSpectra, film_surface, reflectance_surface
 
 SAMPLES = 64
+ASLANT_DEG = 45.0
 BLUE_BAND_NM = (400.0, 440.0)
 MOST_MIRRORED = 1.0 - 1e-6  # a numerical guard, far beyond any lens
 
@@ -156,11 +158,18 @@ def made_reflectance(face: Face) -> NDArray[np.float64] | None:
 
 
 @lru_cache(maxsize=1024)
-def residual_colour(face: Face) -> tuple[str, str, tuple[float, float]]:
-    """Return hue word, patch and chromaticity of the light a face mirrors under D65."""
+def residual_colour(face: Face) -> dict[str, Any]:
+    """Return the colour a face mirrors under D65 as the answer writes it: as designed, aslant and as made."""
     values = colour.xyz(nominal(face).outside)
     x, y = colour.chromaticity(values)
-    return colour.hue_word(values), colour.display_srgb(values), (float(x), float(y))
+    samples = made(face)
+    return {
+        "hue": colour.hue_word(values),
+        "srgb": colour.display_srgb(values),
+        "xy": (float(x), float(y)),
+        "hue_at_45_deg": colour.hue_word(colour.xyz(nominal(face, ASLANT_DEG).outside)),
+        "as_made_hues": None if samples is None else as_made.hue_shares(colour.xyz(samples.outside)),
+    }
 
 
 @lru_cache(maxsize=1024)

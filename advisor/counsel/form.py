@@ -16,9 +16,10 @@ from advisor.counsel.laid_out import Laid
 from advisor.counsel.prescription import EYES, SphereCylinder
 from advisor.counsel.stock_items import Material
 from advisor.optics.centration import CentredRim, centred_rim, minimum_blank, optical_centre
-from advisor.optics.fringe import field_fringe
+from advisor.optics.eye import ENTRANCE_PUPIL_MM
+from advisor.optics.fringe import field_fringe, rim_fringe
 from advisor.optics.lens_form import nearest_base_power, vogel_front_power
-from advisor.optics.magnification import ENTRANCE_PUPIL_MM, magnification_percent, spectacle_magnification
+from advisor.optics.magnification import magnification_percent, spectacle_magnification
 from advisor.optics.media import abbe_at_line, index_at_line
 from advisor.optics.meridians import local_direction, principal_meridians
 from advisor.optics.outline import traced_rim
@@ -57,6 +58,7 @@ class LensForms:
     weight_g: Floats
     blank_mm: Floats
     fringe_prism_d: Floats
+    rim_fringe_prism_d: Floats
     magnification_percent: Floats
     smaller_thickest_mm: Floats
     smaller_weight_g: Floats
@@ -253,6 +255,9 @@ def forms_of(case: Case, laid: Sequence[Laid]) -> LensForms:
             abbe=powers.abbe,
             vertex_mm=case.fitted_vertex_mm,
             prism_d=powers.prism_d,
+        ),
+        rim_fringe_prism_d=rim_fringe(
+            powers.power_d, first_deg=powers.first_deg, abbe=powers.abbe, rim=rim, prism_d=powers.prism_d
         ),
         magnification_percent=magnification_of(case, powers, shape),
         smaller_thickest_mm=small.thickest_mm,

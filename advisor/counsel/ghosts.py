@@ -22,6 +22,7 @@ from advisor.optics.ghost_inputs import Scene as SceneArrays
 from advisor.optics.ghost_scene import Ghosts, GhostView, see_ghosts
 from advisor.optics.lens_form import back_curvature, back_power, front_curvature
 from advisor.optics.lens_section import LensSection
+from advisor.optics.meridians import principal_meridians
 from advisor.optics.vertex import vertex_change
 
 Floats = NDArray[np.float64]
@@ -125,7 +126,8 @@ def wearer_of(case: Case, laid: Sequence[Laid]) -> Wearer:
     far = None
     if any(option.design.kind in ("reading", "occupational") for option in laid):
         distance = [case.compensated(eye) for eye in ("right", "left")]
-        powers = np.array([_principal(power.sphere_d, power.cylinder_d) for power in distance])
+        written = np.array([(power.sphere_d, power.cylinder_d) for power in distance])
+        powers, _ = principal_meridians(written[:, 0], cylinder_d=written[:, 1])
         at_pupil = vertex_change(powers, from_mm=case.fitted_vertex_mm + ENTRANCE_PUPIL_MM, to_mm=0.0)
         far = at_pupil[:, None, :]
     return Wearer(
@@ -135,10 +137,6 @@ def wearer_of(case: Case, laid: Sequence[Laid]) -> Wearer:
         pupil_scale=np.array(1.0),
         far_vergence_d=far,
     )
-
-
-def _principal(sphere_d: float, cylinder_d: float) -> tuple[float, float]:
-    return max(sphere_d, sphere_d + cylinder_d), min(sphere_d, sphere_d + cylinder_d)
 
 
 def ghosts_of(case: Case, laid: Sequence[Laid], *, forms: LensForms, light: Light) -> Ghosts:

@@ -12,7 +12,7 @@ from advisor.counsel.phrases import Figure, Phrase, mark
 from advisor.counsel.prescription import EYES, SphereCylinder, power_for_design
 from advisor.counsel.pricing import best_offer, matching_offers, outside_limits, parts_price
 from advisor.counsel.stock import BARE, Range
-from advisor.counsel.stock_items import Coating, Design, Item, Material, Offer, Tint
+from advisor.counsel.stock_items import Coating, Design, Item, Material, Offer, Scene, Tint
 from advisor.errors import TwolightError
 
 K = TypeVar("K", bound=Item)
@@ -28,6 +28,9 @@ class Refused:
 
     phrase: Phrase
     nearest: Mapping[str, Figure] | None = None
+
+
+DARK_FROM = 0.43  # sun tints begin here (category 2 of ISO 12312-1, as quoted in public guidance)
 
 
 @dataclass(frozen=True)
@@ -57,6 +60,18 @@ class Laid:
     def back_face(self) -> Face:
         """What the back is made of."""
         return face_of(self.material, known_coating(self.material, self.back))
+
+    @property
+    def goes_dark(self) -> bool:
+        """Whether its tint is dark, or turns dark: what scenes of a dark tint are about."""
+        tint = self.tint
+        return (
+            tint is not None and min(tint.luminous_transmittance, tint.luminous_transmittance_dark or 1.0) <= DARK_FROM
+        )
+
+    def is_met_in(self, scene: Scene) -> bool:
+        """Whether a scene can be met in this lens: one of a dark tint needs a tint that is dark."""
+        return scene.tint_state != "dark" or self.goes_dark
 
     @property
     def made(self) -> str:

@@ -73,7 +73,7 @@ def _tau(option: Laid, *, dark: bool) -> float:
 def judged(case: Case) -> Case:
     """Return the case with the scenes alone that visibility levels are made for: lights ahead on a road by night.
 
-    By daylight, indoors and on a stage the threshold model is past its range, and light from behind is told by contrast.
+    By day, indoors and on a stage the threshold model is past its range, and light from behind is told by contrast.
     """
     roads = tuple(s for s in case.scenes if s.where == "ahead" and s.background_cd_m2 <= ROAD_RANGE_CD_M2)
     return replace(case, scenes=roads)

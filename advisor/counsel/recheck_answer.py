@@ -7,6 +7,7 @@ from pydantic import BaseModel, ConfigDict, Field
 
 from advisor.counsel.comparison import Notice
 from advisor.counsel.fields import Date, Key, Line, Paragraph, Strict
+from advisor.counsel.measured import Measured
 
 FORMAT: Literal["twolight-recheck-1"] = "twolight-recheck-1"
 
@@ -137,7 +138,8 @@ class RecheckRecord(Strict):
     remedy: Key | None = None
     note: Paragraph | None = None
     answers: Annotated[dict[Key, Literal["yes", "no"]], Field(max_length=60)] = Field(default_factory=dict)
-    measured: dict[str, dict[str, float | list[dict[str, float | str]]]] | None = None
+    measured: Measured | None = None
+    option: Annotated[int, Field(ge=0, le=99)] | None = None
 
     def dated(self, day: dt.date) -> "RecheckRecord":
         """Return the record with a date where it has none."""

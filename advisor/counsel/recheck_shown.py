@@ -38,7 +38,11 @@ def figure_words(figure: str, value: float, translator: Translator) -> str:
         return translator.gettext(TIMES) % {"times": translator.number(value / 100.0, digits=0)}
     digits = 2 if figure == "visibility_level" and value < 1.0 else FINE_DIGITS.get(figure, digits_for(figure))
     unit = FIGURES[figure][1]
-    return f"{translator.number(value, digits=digits)} {unit}".rstrip()
+    return _with_unit(translator.number(value, digits=digits), unit)
+
+
+def _with_unit(number: str, unit: str) -> str:
+    return f"{number}{unit}" if unit == "°" else f"{number} {unit}".rstrip()
 
 
 def change(figure: str, before: float, after: float, translator: Translator) -> Change:
@@ -119,7 +123,7 @@ def finding_words(finding: Finding, value: float | None, translator: Translator)
     if value is None:
         return "–"
     digits = {"D": 2, "Δ": 2, "mm": 1, "°": 0}[finding.unit]
-    return f"{translator.number(value, digits=digits)} {finding.unit}"
+    return _with_unit(translator.number(value, digits=digits), finding.unit)
 
 
 def _off_phrase(finding: Finding, translator: Translator) -> Phrase:

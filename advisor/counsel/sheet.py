@@ -6,9 +6,11 @@ from typing import Literal
 
 from advisor.counsel.care import CARE_TEXTS, care_lines
 from advisor.counsel.caution_texts import CAUTION_TEXTS
-from advisor.counsel.cautions import cautions_for
+from advisor.counsel.cautions import BLUE_FROM, cautions_for
+from advisor.counsel.changes import changes_from_worn
 from advisor.counsel.compare import Computed, lens_light
 from advisor.counsel.comparison import Comparison, EyeFigures, OptionFigures
+from advisor.counsel.faces import blue_turned_away
 from advisor.counsel.laid_out import Laid
 from advisor.counsel.phrases import Figure, Phrase, mark
 from advisor.counsel.sheet_texts import HEADINGS, LINES
@@ -25,7 +27,7 @@ NOT_FOR = (
     "no-near",
     "not-eye-protection",
 )
-SAID_ELSEWHERE = ("coating-adds-no-strength", "not-promise-none")
+SAID_ELSEWHERE = ("coating-adds-no-strength", "not-promise-none", "blue-film-no-relief")
 
 SHEET_TEXTS: Mapping[str, str] = LINES | CARE_TEXTS | {key: words.sheet for key, words in CAUTION_TEXTS.items()}
 
@@ -60,11 +62,11 @@ class Sheet:
     bars: tuple[tuple[str, float], ...]
 
 
-def choose(computed: Computed, *, number: int | None) -> int:
+def choose(computed: Computed, *, number: int | None, answer: Comparison | None = None) -> int:
     """Return the index of the option a sheet or slip is about.
 
-    ``number`` counts from 1. Left out: what was ordered, else the first option that can be made and is not the
-    baseline, else the first that can be made.
+    ``number`` counts from 1. Left out: what was ordered, else what the ``answer`` recommends or ranks first among the
+    options laid out, else the first option that can be made and is not the baseline, else the first that can be made.
 
     Raises
     ------
@@ -79,6 +81,10 @@ def choose(computed: Computed, *, number: int | None) -> int:
     else:
         index = visit.ordered
     makeable = [option.index for option in laid if not option.refused]
+    if index is None and answer is not None and answer.advice is not None:
+        best = answer.advice.recommended
+        index = best.index if best is not None else None
+        index = next(iter(answer.advice.ranking or ()), None) if index is None else index
     if index is None:
         others = [k for k in makeable if k != (visit.baseline or 0)]
         index = next(iter(others or makeable), None)
@@ -202,7 +208,7 @@ def _ghosts(option: OptionFigures, *, drives: bool) -> Iterable[Phrase]:
         else:
             yield Phrase("may-see-haze" if ghost.haze else "may-see-second")
     behind = from_behind(option)
-    if behind is not None and behind.code == "behind-seen":
+    if behind is not None and behind.code != "behind-unseen":
         yield Phrase("may-see-behind")
 
 
@@ -211,6 +217,9 @@ def _coating(eye: EyeFigures, laid: Laid) -> Iterable[Phrase]:
         yield Phrase("coating-none")
         return
     yield from _phrases("coating-does", "coating-does-not", "coating-glare", "coating-smears")
+    blue = max(blue_turned_away(face) for face in (laid.front_face, laid.back_face))
+    if blue >= BLUE_FROM:
+        yield Phrase("coating-blue", {"blue_percent": 100.0 * blue})
     hue = eye.residual_colour.front.hue
     if laid.front_face.has_film and eye.luminous_reflectance.front >= LEAST_COLOURED and hue != "neutral":
         yield Phrase("coating-colour", {"hue": HUE_WORDS[hue]})
@@ -232,7 +241,10 @@ HUE_WORDS: Mapping[str, str] = {
 
 def _first_days(computed: Computed, laid: Laid) -> Iterable[Phrase]:
     yield Phrase("first-wear")
-    yield Phrase("first-size")
+    changes = list(changes_from_worn(computed.case, laid))
+    yield from changes or [Phrase("first-size")]
+    if computed.case.life("first_multifocal") == "yes" and laid.design.kind in ("bifocal", "progressive"):
+        yield Phrase("first-of-kind")
     if laid.design.kind in ("bifocal", "progressive"):
         yield Phrase("first-multifocal")
     if computed.case.life("driving") != "never" and laid.design.kind not in ("reading", "occupational"):

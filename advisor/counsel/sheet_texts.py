@@ -65,12 +65,21 @@ LINES: dict[str, str] = {
     "coating-does-not": mark("It does not stop all reflections. It does not make the lens stronger."),
     "coating-glare": mark("Glare that arises inside the eye stays."),
     "coating-smears": mark("Smears show more on a coated lens. It is not dirtier; no reflection hides them."),
+    "coating-blue": mark(
+        "It turns away about %(blue_percent)s %% of the blue light. Trials found no relief for tired eyes."
+    ),
     "coating-none": mark("These lenses have no coating against reflections. You may see yourself or a window in them."),
     "coating-colour": mark("A faint %(hue)s colour may show on the lens. That is normal."),
     "coating-colour-varies": mark("A faint colour may show on the lens. It differs from pair to pair."),
     # first days
     "first-wear": mark("Wear them for a few hours on the first day, then longer."),
     "first-size": mark("Things may look a little bigger, smaller or bent at first."),
+    "first-power": mark("The power is not the same as before. Floors and steps may look odd at first. Take care on stairs."),
+    "first-axis": mark("The lens now works in another direction. Floors and walls may seem to slope at first."),
+    "first-bigger": mark("Things may look about %(size_percent)s %% bigger than in your old pair."),
+    "first-smaller": mark("Things may look about %(size_percent)s %% smaller than in your old pair."),
+    "first-same": mark("They are much like your old pair. Things may look a little different at first."),
+    "first-of-kind": mark("This is your first pair for far and near. Start with short spells."),
     "first-multifocal": mark("Turn your head to look at the side. Practise with them while you sit."),
     "first-drive": mark("Do not drive until you see well and feel steady in them."),
     "first-keep-old": mark("Keep your old pair as a spare."),

@@ -23,6 +23,7 @@ SPOKEN: dict[str, str] = {
     "haze-unseen": mark("no haze to be noticed"),
     "spread": mark("spread over the lens: no place to state"),
     "behind-seen": mark("a light or window behind shows at %(contrast_percent)s %% of what is looked at"),
+    "behind-brighter": mark("a light or window behind shows brighter than what is looked at"),
     "behind-unseen": mark("light from behind stays below 2 %% of what is looked at"),
 }
 PLACES: tuple[tuple[float, str], ...] = (
@@ -82,4 +83,6 @@ def from_behind(option: OptionFigures) -> Phrase | None:
     most = max(found)
     if most < LEAST_CONTRAST_BEHIND:
         return Phrase("behind-unseen")
+    if most > 1.0:
+        return Phrase("behind-brighter")
     return Phrase("behind-seen", {"contrast_percent": 100.0 * most})

@@ -59,7 +59,7 @@ def figures_of(case: Case, computed: WholeRange) -> dict[str, Floats]:
         window_luminance_cd_m2=WINDOW_CD_M2,
         face_luminance_cd_m2=FACE_CD_M2,
     )
-    between = {option.design: worst_between_d(case, option.design) for option in laid}
+    between = {design: worst_between_d(case, design) for design in {option.design for option in laid}}
     at_night = case.life("night_driving") != "never"
     prices = np.array([np.nan if option.price is None else option.price for option in laid])
     return {

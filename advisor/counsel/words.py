@@ -51,4 +51,4 @@ PLACES: Mapping[str, str] = {
 }
 
 # What ``say`` looks up for figures that are lists of names.
-WORD_TEXTS: Mapping[str, str] = {WORD + name: text for name, text in (*QUESTIONS.items(), *PLACES.items())}
+WORD_TEXTS: dict[str, str] = {WORD + name: text for name, text in (*QUESTIONS.items(), *PLACES.items())}

@@ -3,8 +3,7 @@
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-#: From the cornea's front to the eye's entrance pupil (textbook value for a schematic eye, memory).
-ENTRANCE_PUPIL_MM = 3.0
+from advisor.optics.eye import ENTRANCE_PUPIL_MM
 
 
 def spectacle_magnification(

@@ -8,11 +8,12 @@ from types import TracebackType
 
 from sqlalchemy import Connection, Engine, make_url
 
-from advisor.records import drafts, ranges, visits
+from advisor.records import drafts, ranges, rechecks, visits
 from advisor.records.drafts import SavedDraft
 from advisor.records.engine import make_private, server_engine, sqlite_engine
 from advisor.records.location import database_file
 from advisor.records.ranges import RangeVersion
+from advisor.records.rechecks import SavedRecheck
 from advisor.records.schema import bring_up_to_date
 from advisor.records.trouble import StoreUnreadable, explained
 from advisor.records.visits import PageKey, SavedVisit, VisitLine
@@ -125,6 +126,41 @@ class Store:
         """Erase a visit and the drafts that began from it, or raise VisitMissing."""
         with self._writing() as connection:
             visits.erase(connection, visit_id)
+
+    def save_recheck(
+        self,
+        content_json: str,
+        *,
+        visit_id: str,
+        outcome: str,
+        who_pays: str,
+        new_visit_id: str | None = None,
+        recheck_id: str | None = None,
+    ) -> SavedRecheck:
+        """Record what came of a return visit; sent twice under one ``recheck_id`` it is recorded once.
+
+        Raises VisitMissing where the visit, or the visit of the new order, is not there.
+        """
+        with self._writing() as connection:
+            return rechecks.add(
+                connection,
+                content_json,
+                visit_id=visit_id,
+                outcome=outcome,
+                who_pays=who_pays,
+                new_visit_id=new_visit_id,
+                recheck_id=recheck_id,
+            )
+
+    def get_recheck(self, recheck_id: str) -> SavedRecheck:
+        """Return a recorded outcome, or raise RecheckMissing."""
+        with self._reading() as connection:
+            return rechecks.find(connection, recheck_id)
+
+    def list_rechecks(self, visit_id: str) -> list[SavedRecheck]:
+        """Return what was recorded of a visit, the last first."""
+        with self._reading() as connection:
+            return rechecks.of_visit(connection, visit_id)
 
     def save_draft(
         self,

@@ -50,6 +50,20 @@ draft = Table(
     Index("ix_draft_visit", "visit_id"),
 )
 
+recheck = Table(
+    "recheck",
+    metadata,
+    Column("id", String(32), primary_key=True),
+    Column("visit_id", String(32), ForeignKey("visit.id", ondelete="CASCADE"), nullable=False),
+    Column("at", String(32), nullable=False),
+    Column("outcome", String(20), nullable=False),
+    Column("who_pays", String(20), nullable=False),
+    Column("new_visit_id", String(32), ForeignKey("visit.id", ondelete="SET NULL")),  # the order that came of it
+    Column("content", Text, nullable=False),  # JSON, twolight-recheck-record-1
+    Index("ix_recheck_visit", "visit_id", "at"),
+    Index("ix_recheck_new_visit", "new_visit_id"),
+)
+
 setting = Table(
     "setting",
     metadata,

@@ -15,8 +15,10 @@ from advisor.web import error_pages, policy
 from advisor.web.counter import counter
 from advisor.web.desk import EXTENSION, Desk, current_desk
 from advisor.web.language import SOURCE_LANGUAGE, language
+from advisor.web.paper import install_filters
 from advisor.web.paper_pages import paper_pages
 from advisor.web.range_page import range_page
+from advisor.web.recheck import rechecks
 from advisor.web.visits import visits
 
 # Some Windows registries serve these as text/plain, which nosniff then refuses.
@@ -77,12 +79,13 @@ def _prepare_templates(app: Flask) -> None:
     app.jinja_env.trim_blocks = app.jinja_env.lstrip_blocks = True
     speaker = language(SOURCE_LANGUAGE)
     app.jinja_env.globals.update(_=speaker.gettext, ngettext=speaker.ngettext)
+    install_filters(app.jinja_env, speaker)
     app.jinja_env.globals.update(screen_language=speaker.language, screen_direction=speaker.direction)
 
 
 def _register_blueprints(app: Flask) -> None:
     """Register the blueprints, one for each noun."""
-    for noun in (counter, visits, paper_pages, range_page):
+    for noun in (counter, visits, paper_pages, rechecks, range_page):
         app.register_blueprint(noun)
 
 

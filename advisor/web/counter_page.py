@@ -13,6 +13,7 @@ from advisor.counsel.compare import answer_of, compute
 from advisor.counsel.comparison import Comparison
 from advisor.counsel.faults import Fault, Faults
 from advisor.counsel.phrases import mark
+from advisor.counsel.section_drawing import Section, sections
 from advisor.counsel.visit import Visit
 from advisor.counsel.words import PLACES, QUESTIONS
 from advisor.records.drafts import SavedDraft
@@ -66,6 +67,7 @@ class Worked:
     answer: Comparison | None = None
     faults: Mapping[str, list[Fault]] = field(default_factory=dict)
     waiting: tuple[str, ...] = ()
+    sections: tuple[Section, ...] = ()
 
 
 def blank(shelf: Shelf) -> Editing:
@@ -144,7 +146,7 @@ def work_out(fields: Mapping[str, str], shelf: Shelf) -> Worked:
     answer = answer_of(computed, translator=speaker)
     currency = shelf.stock.shop.currency or CURRENCY
     table = figure_table(computed, answer, baseline=visit.baseline or 0, currency=currency, speaker=speaker)
-    return Worked(table, answer)
+    return Worked(table, answer, sections=tuple(sections(computed)))
 
 
 def _hindered(error: Faults, fields: Mapping[str, str]) -> Worked:

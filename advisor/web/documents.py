@@ -1,4 +1,4 @@
-"""Whole pages for paper: the wearer's sheet and the order slip, from a visit to HTML; no web application needed."""
+"""Whole pages for paper: sheet, order slip and bench slip, from a visit to HTML; no web application needed."""
 
 import base64
 import datetime as dt
@@ -7,6 +7,7 @@ from collections.abc import Mapping
 from dataclasses import asdict
 from typing import Any
 
+from advisor.counsel.bench import HINTS, PLACE_TEXTS, SIDES, bench_of
 from advisor.counsel.caution_texts import CAUTION_TEXTS
 from advisor.counsel.cautions import cautions_for
 from advisor.counsel.compare import Computed, answer_of, compute, lens_light
@@ -47,7 +48,7 @@ def wearer_sheet(
     chosen = language(sheet_language(visit, code))
     computed = compute(visit, stock, today=today)
     answer = answer_of(computed, translator=chosen)
-    index = choose(computed, number=number)
+    index = choose(computed, number=number, answer=answer)
     price = computed.laid[index].price
     currency = stock.shop.currency or CURRENCY
     content = sheet_content(
@@ -124,6 +125,52 @@ def order_slip(
             "fonts": fonts,
             "cautions": _cautions(computed, index, chosen),
             "declined": [f"{part.key}{f' ({part.by})' if part.by else ''}" for part in visit.declined or ()],
+        },
+        code=chosen.language,
+    )
+
+
+def bench_slip(
+    visit: Visit,
+    stock: Range,
+    *,
+    number: int | None = None,
+    today: dt.date | None = None,
+    fonts: str = "print-fonts",
+) -> str:
+    """Return the workshop's bench slip as HTML, in the language of the screen.
+
+    Raises
+    ------
+    advisor.counsel.order.NotReady
+        With every reason, while the order is not ready.
+    """
+    chosen = language(SOURCE_LANGUAGE)
+    computed = compute(visit, stock, today=today)
+    index = choose(computed, number=number)
+    bench = bench_of(computed, index=index, translator=chosen)
+    case, laid = computed.case, computed.laid[index]
+    return page(
+        "paper/bench.html",
+        {
+            "bench": bench,
+            "eyes": [{**vars(eye), "word": EYE_WORDS[eye.order.eye]} for eye in bench.eyes],
+            "sides": [word for word, _ in SIDES],
+            "places": PLACE_TEXTS,
+            "hints": [say(hint, HINTS, chosen) for hint in bench.hints],
+            "laid": laid,
+            "shop": stock.shop,
+            "date": case.date,
+            "reference": visit.reference,
+            "keeps_add": laid.design.kind in ("bifocal", "progressive"),
+            "tilt_deg": case.tilt_deg,
+            "wrap_deg": case.wrap_deg,
+            "a_mm": case.a_mm,
+            "b_mm": case.b_mm,
+            "dbl_mm": case.dbl_mm,
+            "ed_mm": case.ed_mm,
+            "rim_word": RIM_WORDS[case.rim],
+            "fonts": fonts,
         },
         code=chosen.language,
     )

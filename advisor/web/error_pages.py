@@ -11,6 +11,7 @@ from werkzeug.exceptions import HTTPException, InternalServerError
 from advisor.counsel.phrases import mark
 from advisor.errors import TwolightError
 from advisor.records.drafts import DraftChanged, DraftMissing
+from advisor.records.rechecks import RecheckMissing
 from advisor.records.trouble import StoreError
 from advisor.records.visits import VisitChanged, VisitMissing
 
@@ -35,6 +36,7 @@ TEXTS: Mapping[int, tuple[str, str]] = {
 STATUSES: tuple[tuple[type[TwolightError], int], ...] = (
     (VisitMissing, 404),
     (DraftMissing, 404),
+    (RecheckMissing, 404),
     (VisitChanged, 409),
     (DraftChanged, 409),
     (StoreError, 503),

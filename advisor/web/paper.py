@@ -30,6 +30,11 @@ def install(made: Environment, chosen: Language) -> None:
     """Give an environment the texts and the number formats of a language."""
     made.install_gettext_callables(chosen.gettext, chosen.ngettext, newstyle=True)  # type: ignore[attr-defined]  # added by the i18n extension
     made.globals["language"] = chosen
+    install_filters(made, chosen)
+
+
+def install_filters(made: Environment, chosen: Language) -> None:
+    """Give an environment the filters that write numbers, shares, money and dates as a language does."""
     made.filters["number"] = lambda value, digits=0, signed=False: number_text(
         chosen, value, digits=digits, signed=signed
     )

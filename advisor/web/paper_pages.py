@@ -1,4 +1,4 @@
-"""Paper of a saved visit: the wearer's sheet and the order slip, as a page to print and as a PDF."""
+"""Paper of a saved visit: the wearer's sheet, the order slip and the bench slip, as a page to print and as a PDF."""
 
 from collections.abc import Callable
 
@@ -8,7 +8,7 @@ from advisor.counsel.order import NotReady
 from advisor.counsel.stock import Range
 from advisor.counsel.visit import Visit, parse_visit
 from advisor.web.desk import current_desk
-from advisor.web.documents import order_slip, wearer_sheet
+from advisor.web.documents import bench_slip, order_slip, wearer_sheet
 from advisor.web.pdf import PdfFailed, PdfUnavailable, write_pdf
 from advisor.web.stock_loader import shelf_of
 
@@ -73,6 +73,18 @@ def order(visit_id: str) -> str:
 def order_pdf(visit_id: str) -> Response:
     """Return the order slip as a PDF."""
     return _pdf(order_slip, visit_id, name="order")
+
+
+@paper_pages.get("/visits/<visit_id>/bench")
+def bench(visit_id: str) -> str:
+    """Show the bench slip for the workshop."""
+    return _html(bench_slip, visit_id, "html")
+
+
+@paper_pages.get("/visits/<visit_id>/bench.pdf")
+def bench_pdf(visit_id: str) -> Response:
+    """Return the bench slip as a PDF."""
+    return _pdf(bench_slip, visit_id, name="bench")
 
 
 @paper_pages.errorhandler(NotReady)

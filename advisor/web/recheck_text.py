@@ -35,6 +35,7 @@ OUTCOMES = {
     "refer": mark("refer"),
     "none": mark("none"),
 }
+WAYS = OUTCOMES | {"remake": mark("another lens"), "none": mark("free")}  # what a remedy takes
 PAYERS = {
     "nobody": mark("nobody"),
     "shop": mark("the shop"),
@@ -117,6 +118,6 @@ def _cause(cause: Cause, lead: str, currency: str, language: Language) -> Iterab
         yield f"{room}{reason.text}"
     for remedy in cause.remedies:
         price = "" if remedy.price is None else f" {language.money(remedy.price, currency=currency)}"
-        yield f"{room}> [{language.gettext(OUTCOMES[remedy.outcome])}] {remedy.text}{price}"
+        yield f"{room}> [{language.gettext(WAYS[remedy.outcome])}] {remedy.text}{price}"
         for part in remedy.figures:
             yield f"{room}    {part.label}: {part.before_text} \N{RIGHTWARDS ARROW} {part.after_text}"

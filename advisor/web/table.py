@@ -5,7 +5,7 @@ import io
 import unicodedata
 from collections.abc import Iterable
 
-from advisor.counsel.comparison import Comparison, EyeFigures
+from advisor.counsel.comparison import Advice, AdvisedOption, Comparison, EyeFigures
 from advisor.counsel.layout import ROWS, rows_present, two_eyes
 from advisor.web.language import Language
 
@@ -59,6 +59,8 @@ def text_table(comparison: Comparison, *, title: str, currency: str, language: L
     for option in options:
         lines += [f"{_('Option')} {option.index + 1}: {refusal.text}" for refusal in option.refused]
         lines += [f"{_('Option')} {option.index + 1}: {note.text}" for note in option.notes]
+    if comparison.advice is not None:
+        lines += [*advice_lines(comparison.advice, currency=currency, language=language), ""]
     lines += [f"{_('Warning')}: {warning.text}" for warning in comparison.warnings]
     if comparison.advice is not None:
         for caution in comparison.advice.cautions:
@@ -68,6 +70,32 @@ def text_table(comparison: Comparison, *, title: str, currency: str, language: L
     if comparison.defaults_used:
         lines.append(f"{_('Defaults used')}: {', '.join(comparison.defaults_used)}")
     return "\n".join(one_line(text) for text in lines).rstrip() + "\n"
+
+
+def advice_lines(advice: Advice, *, currency: str, language: Language) -> list[str]:
+    """Return the advice as text: what is free first, then the three pairs or the two, what they cost and why."""
+    _ = language.gettext
+
+    def named(words: str, pair: AdvisedOption) -> str:
+        place = _("option %(number)s") % {"number": pair.index + 1} if pair.index is not None else _("not laid out")
+        return f"{words}: {pair.label}, {language.money(pair.price, currency=currency)} ({place})"
+
+    lines = [f"{_('Excluded')} ({entry.option + 1}): {entry.text}" for entry in advice.excluded or []]
+    lines += [f"{_('Free first')}: {remedy.text}" for remedy in advice.free_first or []]
+    if advice.cheapest_that_meets_every_must is not None:
+        lines.append(named(_("Cheapest that meets every must"), advice.cheapest_that_meets_every_must))
+    if advice.recommended is not None:
+        lines.append(named(_("Recommended"), advice.recommended))
+        lines += [f"  + {reason.text}" for reason in advice.because or []]
+        lines += [f"  - {loss.text}" for loss in advice.gives_up or []]
+    else:
+        lines += [f"{_('Recommended')}: {reason.text}" for reason in advice.because or []]
+    lines += [f"  {pair.text} {named(_('Pair'), pair)}" for pair in advice.two_pairs or []]
+    if advice.next_best is not None:
+        lines.append(named(_("Next best"), advice.next_best))
+    if advice.robust is not None:
+        lines.append(f"{_('How sure')}: {advice.robust}.")
+    return lines + [f"{_('What would change it')}: {change.text}" for change in advice.would_change or []]
 
 
 def harmless(cell: str) -> str:

@@ -90,11 +90,12 @@ def test_a_declared_face_has_a_range_of_shapes_and_a_known_one_has_one() -> None
 @pytest.mark.parametrize(("low_nm", "high_nm", "hue"), [(430, 490, "blue"), (510, 560, "green"), (620, 780, "red")])
 def test_the_hue_word_is_that_of_the_light_a_face_mirrors(low_nm: int, high_nm: int, hue: str) -> None:
     band = [(float(nm), 0.1 if low_nm <= nm <= high_nm else 0.0) for nm in range(380, 781, 5)]
-    assert residual_colour(measured(band))[0] == hue
+    assert residual_colour(measured(band))["hue"] == hue
 
 
 def test_a_face_that_mirrors_nothing_has_the_colour_of_white() -> None:
-    hue, srgb, xy = residual_colour(measured([(float(nm), 0.0) for nm in range(380, 781, 10)]))
+    found = residual_colour(measured([(float(nm), 0.0) for nm in range(380, 781, 10)]))
+    hue, srgb, xy = found["hue"], found["srgb"], found["xy"]
     assert hue == "neutral"
     assert srgb.startswith("#")
     assert xy == pytest.approx((0.31272, 0.32903), abs=5e-5)  # D65, CIE 15
@@ -107,6 +108,17 @@ def test_every_built_in_film_takes_most_of_the_reflection_from_every_material() 
         bare = luminous_reflectance(face(BARE, material))
         for film in films:
             assert luminous_reflectance(face(film, material)) < 0.025 < bare  # ISO 8980-4's limit, from memory
+
+
+def test_a_film_has_the_hues_its_samples_have_and_a_measured_face_has_none() -> None:
+    hues = residual_colour(face(builtin_range().coating_of("broadband-green")))["as_made_hues"]
+    assert isinstance(hues, dict)
+    assert sum(hues.values()) == pytest.approx(1.0)
+    assert max(hues, key=lambda hue: hues[hue]) == "green"
+    assert (
+        residual_colour(measured([(380.0, 0.01), *((float(nm), 0.01) for nm in range(390, 781, 10))]))["as_made_hues"]
+        is None
+    )
 
 
 def test_a_declared_figure_rises_with_the_angle_like_the_film_whose_shape_it_borrows() -> None:

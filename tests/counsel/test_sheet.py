@@ -107,11 +107,40 @@ def every_sheet() -> list[Any]:
 SHEETS = every_sheet()
 
 
+@cache
+def whole(path: Path) -> dict[str, Any]:
+    """The answer as another program would read it: from JSON, with no help from the program."""
+    content: dict[str, Any] = json.loads(answer_of(path).model_dump_json(exclude_unset=True))
+    return content
+
+
 def plain(path: Path, index: int) -> dict[str, Any]:
-    """One option as another program would read it: from JSON, with no help from the program."""
-    content = json.loads(answer_of(path).model_dump_json(exclude_unset=True))
-    option: dict[str, Any] = content["options"][index]
+    option: dict[str, Any] = whole(path)["options"][index]
     return option
+
+
+def size_line(visit: Visit, option: dict[str, Any]) -> str | None:
+    """What a second comparison, of the worn pair alone, says of the size of what is seen."""
+    worn = visit.worn_now
+    if worn is None or worn.prescription is None or worn.material is None:
+        return None
+    pair = {"design": option["design"], "material": worn.material}
+    if worn.front_power_d is not None:
+        pair["front_power_d"] = worn.front_power_d
+    content = visit.model_dump(mode="json", by_alias=True, exclude_none=True)
+    content["prescription"] = worn.prescription.model_dump(mode="json", by_alias=True, exclude_none=True)
+    content |= {"options": [pair], "scenes": [], "ordered": 0, "baseline": 0}
+    if worn.fitting is not None:
+        content["fitting"] = worn.fitting.model_dump(mode="json", by_alias=True, exclude_none=True)
+    old = compare(check_visit(content), STOCK, translator=language("en"), with_advice=False, today=TODAY).options[0]
+    changes = [
+        100 * ((100 + option[eye]["magnification_percent"]) / (100 + (getattr(old, eye).magnification_percent)) - 1)
+        for eye in ("right", "left")
+    ]
+    most = max(changes, key=abs)
+    if abs(most) < 1:  # about the least difference of size that people speak of
+        return None
+    return f"Things may look about {abs(most):.1f} % {'bigger' if most > 0 else 'smaller'} than in your old pair."
 
 
 def two_figures(parts: float) -> str:
@@ -119,7 +148,7 @@ def two_figures(parts: float) -> str:
     return f"{int(float(f'{parts:.1e}')):,}"
 
 
-def expected_lines(option: dict[str, Any]) -> Iterator[str]:
+def expected_lines(option: dict[str, Any], cautions: list[dict[str, Any]]) -> Iterator[str]:
     """Say again, from the JSON alone, every sentence with a figure."""
     eye = option["right"]
     mirrors, uncoated, image = eye["luminous_reflectance"], eye["uncoated"], eye["second_image"]
@@ -144,6 +173,9 @@ def expected_lines(option: dict[str, Any]) -> Iterator[str]:
         )
     else:
         yield (f"Light mirrored twice inside a lens makes a second image: here about 1 part in {parts} of the light.")
+    blue = [caution["figures"]["blue_percent"] for caution in cautions if caution["key"] == "blue-film-no-relief"]
+    if blue and option["index"] in [at for c in cautions if c["key"] == "blue-film-no-relief" for at in c["options"]]:
+        yield f"It turns away about {blue[0]:.1f} % of the blue light. Trials found no relief for tired eyes."
     if option["price"] is not None:
         yield f"Price of the pair of lenses: €{option['price']:,.2f}"
 
@@ -152,7 +184,9 @@ def expected_lines(option: dict[str, Any]) -> Iterator[str]:
 def test_every_figure_is_the_comparisons(path: Path, index: int) -> None:
     sheet = sheet_of(path, index + 1)
     lines = [line for found in sheet.sections.values() for line in found]
-    expected = list(expected_lines(plain(path, index)))
+    expected = list(expected_lines(plain(path, index), whole(path)["advice"]["cautions"]))
+    if (size := size_line(visit_of(path), plain(path, index))) is not None:
+        expected.append(size)
     for sentence in expected:
         assert lines.count(sentence) == 1, sentence
     # and no other line holds a number, but for labels of the shop and the fixed words of care
@@ -221,7 +255,7 @@ def test_a_second_light_or_a_haze_is_told_only_where_it_was_computed(path: Path,
 
 # --- cautions ---------------------------------------------------------------------------------------------------------
 
-SAID_AMONG_THE_COATING = {"coating-adds-no-strength", "not-promise-none"}
+SAID_AMONG_THE_COATING = {"coating-adds-no-strength", "not-promise-none", "blue-film-no-relief"}
 
 
 @pytest.mark.parametrize(("path", "index"), SHEETS)
@@ -235,6 +269,7 @@ def test_the_cautions_are_exactly_those_that_apply_and_have_words_for_a_wearer(p
     for line in said:
         assert "%" not in line
     coating = " ".join(sheet.sections["What the coating does and does not do"])
+    assert ("Trials found no relief" in coating) is ("blue-film-no-relief" in apply)
     if apply & SAID_AMONG_THE_COATING:
         assert "It does not stop all reflections." in coating
         assert "It does not make the lens stronger." in coating
@@ -342,11 +377,19 @@ def test_a_refused_option_is_refused_in_a_sentence() -> None:
         wearer_sheet(check_visit(PAIR | {"options": PAIR["options"][1:2]}), STOCK, code="en", today=TODAY)
 
 
-def test_what_was_ordered_is_printed_else_the_first_that_is_not_the_baseline() -> None:
+def test_what_was_ordered_or_asked_for_is_printed() -> None:
     assert "Lens: Hard resin 1.50" in sheet(ordered=0)
-    assert "Lens: Thiourethane 1.60" in sheet()  # 0 is the baseline, 1 cannot be made
-    assert "Lens: Hard resin 1.50" in sheet(baseline=2)
-    assert "Lens: Hard resin 1.50" in sheet(1)
+    assert "Lens: Thiourethane 1.60" in sheet(ordered=2)
+    assert "Lens: Hard resin 1.50" in sheet(1, ordered=2)  # the number asked for goes before
+
+
+def test_else_what_is_recommended_or_ranked_first_is_printed() -> None:
+    advice = compare(check_visit(PAIR), STOCK, translator=language("en"), today=TODAY).advice
+    assert advice is not None
+    best = getattr(advice.recommended, "index", None)
+    first = (advice.ranking or [2])[0] if best is None else best
+    assert first in (0, 2)  # 1 cannot be made
+    assert ("Lens: Hard resin 1.50" if first == 0 else "Lens: Thiourethane 1.60") in sheet()
 
 
 # --- plain words ------------------------------------------------------------------------------------------------------

@@ -2,7 +2,6 @@ import os
 import sqlite3
 import subprocess
 import sys
-from collections.abc import Mapping
 from pathlib import Path
 from typing import Any
 
@@ -19,7 +18,7 @@ from advisor.records.trouble import StoreNewer
 
 # For every version of the tables: rows as that version held them, and what they must read as today.
 # A new version adds an entry here and changes none that is there.
-ROWS: Mapping[str, tuple[str, ...]] = {
+ROWS: dict[str, tuple[str, ...]] = {
     "0001": (
         "INSERT INTO range_version VALUES ('h1', 'key = 1', '2026-01-02T03:04:05.000000+00:00')",
         "INSERT INTO visit VALUES ('v1', '2026-01-02T03:04:05.000000+00:00', '2026-01-03T03:04:05.000000+00:00', 2,"
@@ -28,6 +27,12 @@ ROWS: Mapping[str, tuple[str, ...]] = {
         " X'7801010200fdff7b7d017500f9')",
         "INSERT INTO draft VALUES ('d1', '2026-01-04T03:04:05.000000+00:00', 3, '{}', 'v1', 2)",
         "INSERT INTO setting VALUES ('current-range', 'h1')",
+    ),
+}
+ROWS |= {
+    "0002": (
+        *ROWS["0001"],
+        "INSERT INTO recheck VALUES ('r1', 'v1', '2026-01-05T03:04:05.000000+00:00', 'remake', 'maker', 'v1', '{}')",
     ),
 }
 
@@ -91,6 +96,12 @@ def test_rows_of_every_version_are_read_after_the_upgrade(tmp_path: Path, revisi
         assert current is not None
         assert current.toml == "key = 1"
         assert [line.id for line in store.list_visits("ada")] == ["v1"]
+        kept = [
+            (r.id, r.at[:10], r.outcome, r.who_pays, r.new_visit_id, r.content_json) for r in store.list_rechecks("v1")
+        ]
+        assert kept == ([] if revision == "0001" else [("r1", "2026-01-05", "remake", "maker", "v1", "{}")])
+        added = store.save_recheck("{}", visit_id="v1", outcome="clean", who_pays="nobody")
+        assert store.get_recheck(added.id) == added
     assert query(tmp_path, "SELECT version_num FROM alembic_version") == [(REVISIONS[-1],)]
 
 

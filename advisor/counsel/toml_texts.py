@@ -1,0 +1,26 @@
+"""Finds the texts of the tables an optician reads (conditions, criteria) for translation; called by pybabel."""
+
+import tomllib
+from collections.abc import Iterator, Sequence
+from typing import IO, Any
+
+SHOWN = ("text", "label", "source")  # what people are shown of a row
+
+Message = tuple[int, str | None, str, Sequence[str]]
+
+
+def extract(file: IO[bytes], _keywords: Any, _tags: Any, options: Any = None) -> Iterator[Message]:
+    """Yield the line and the text of everything in a table that people are shown, as pybabel wants it."""
+    del options
+    content = file.read().decode("utf-8")
+    lines = content.splitlines()
+    for rows in tomllib.loads(content).values():
+        for row in rows if isinstance(rows, list) else ():
+            for name in SHOWN:
+                if name in row:
+                    place = next(
+                        k
+                        for k, line in enumerate(lines, start=1)
+                        if line.startswith(f"{name} = ") and row[name] in line
+                    )
+                    yield place, None, row[name], ()

@@ -1,0 +1,71 @@
+"""Return visits as stored rows: what came of each, beside the visit it is about."""
+
+from dataclasses import astuple, dataclass
+
+from sqlalchemy import Connection, insert, select
+
+from advisor.counsel.phrases import mark
+from advisor.errors import TwolightError
+from advisor.records import tables, visits
+
+_RECHECK = tables.recheck.c
+
+
+@dataclass(frozen=True)
+class SavedRecheck:
+    """A recorded outcome; ``new_visit_id`` is the visit of the new order, if one came of it."""
+
+    id: str
+    visit_id: str
+    at: str
+    outcome: str
+    who_pays: str
+    new_visit_id: str | None
+    content_json: str
+
+
+class RecheckMissing(TwolightError):
+    """There is no such record, or its visit has been erased."""
+
+    text = mark("There is no such record; its visit may have been erased.")
+
+    def __init__(self) -> None:
+        super().__init__(self.text)
+
+
+def add(
+    connection: Connection,
+    content_json: str,
+    *,
+    visit_id: str,
+    outcome: str,
+    who_pays: str,
+    new_visit_id: str | None,
+    recheck_id: str | None,
+) -> SavedRecheck:
+    """Store an outcome; one sent twice under the same identifier is stored once."""
+    visits.find(connection, visit_id)
+    if new_visit_id is not None:
+        visits.find(connection, new_visit_id)
+    if recheck_id is not None:
+        there = connection.execute(select(tables.recheck).where(_RECHECK.id == recheck_id)).first()
+        if there is not None:
+            return SavedRecheck(*there)
+    key = recheck_id or tables.new_id()
+    saved = SavedRecheck(key, visit_id, tables.now(), outcome, who_pays, new_visit_id, content_json)
+    connection.execute(insert(tables.recheck).values(astuple(saved)))
+    return saved
+
+
+def find(connection: Connection, recheck_id: str) -> SavedRecheck:
+    """Return a record, or raise RecheckMissing."""
+    row = connection.execute(select(tables.recheck).where(_RECHECK.id == recheck_id)).first()
+    if row is None:
+        raise RecheckMissing
+    return SavedRecheck(*row)
+
+
+def of_visit(connection: Connection, visit_id: str) -> list[SavedRecheck]:
+    """Return what was recorded of a visit, the last first."""
+    query = select(tables.recheck).where(_RECHECK.visit_id == visit_id).order_by(_RECHECK.at.desc(), _RECHECK.id)
+    return [SavedRecheck(*row) for row in connection.execute(query)]
