@@ -9,11 +9,13 @@ import numpy as np
 
 from advisor.counsel.advice_texts import ADVICE_TEXTS, ROBUST_TEXTS
 from advisor.counsel.advise import Counsel, Field, Pair
-from advisor.counsel.answer import label_of, notice, number
+from advisor.counsel.answer import caution, label_of, notice, number
+from advisor.counsel.cautions import cautions_for
 from advisor.counsel.laid_out import REFUSAL_TEXTS
 from advisor.counsel.limits import limits_of
 from advisor.counsel.musts import must_texts, musts
 from advisor.counsel.phrases import Phrase, Translator, say
+from advisor.counsel.pool import finished
 from advisor.counsel.reasons import because, beside_recommended, gives_up, would_change
 from advisor.counsel.remedies import free_first
 from advisor.counsel.value import criteria
@@ -72,6 +74,7 @@ def advised(field: Field, k: int, *, translator: Translator) -> Content:
     """Return an option by its index where it is laid out, and always by what it is made of."""
     option = field.pool.laid[k]
     tint = option.option.tint
+    lens = finished(field.computed, k, imbalance_prism_d=field.imbalance_prism_d)
     return {
         "index": k if k < field.pool.given else None,
         "label": label_of(option, translator),
@@ -80,6 +83,7 @@ def advised(field: Field, k: int, *, translator: Translator) -> Content:
         "coating": {"front": option.front.key, "back": option.back.key},
         "tint": tint if tint is None or isinstance(tint, str | float) else tint.key,
         "price": option.price,
+        "cautions": [caution(applied, translator) for applied in cautions_for(field.case, option, light=lens.light)],
         "figures": {key: number(float(values[k])) for key, values in field.figures.items() if key in field.levels},
     }
 

@@ -40,6 +40,7 @@ class Field:
     levels: Mapping[str, int]
     values: Floats
     weights: Floats
+    imbalance_prism_d: float
 
     @cached_property
     def used(self) -> list[Criterion]:
@@ -144,6 +145,7 @@ def field_of(case: Case, laid: Sequence[Laid], *, imbalance_prism_d: float) -> F
         levels=levels,
         values=values_of(np.stack([figures[key] for key in levels], axis=-1), chosen),
         weights=level_weights(list(levels.values())),
+        imbalance_prism_d=imbalance_prism_d,
     )
 
 

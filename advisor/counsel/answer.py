@@ -8,6 +8,8 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
+from advisor.counsel.caution_texts import CAUTION_TEXTS
+from advisor.counsel.cautions import Applied
 from advisor.counsel.faces import residual_colour
 from advisor.counsel.form import SMALLER_BY_MM, LensForms
 from advisor.counsel.ghosts import GhostFigures
@@ -37,6 +39,18 @@ def number(value: float) -> float | None:
 def notice(phrase: Phrase, texts: Mapping[str, str], translator: Translator) -> Content:
     """Return a phrase as the answer writes it: code, text and figures."""
     return {"code": phrase.code, "text": say(phrase, texts, translator), "figures": dict(phrase.figures)}
+
+
+def caution(applied: Applied, translator: Translator) -> Content:
+    """Return a caution as the answer writes it, without the options it applies to."""
+    words = CAUTION_TEXTS[applied.key]
+    return {
+        "key": applied.key,
+        "text": say(Phrase(applied.key, applied.figures), {applied.key: words.text}, translator),
+        "rule": translator.gettext(words.rule),
+        "source": translator.gettext(words.source),
+        "figures": dict(applied.figures),
+    }
 
 
 def label_of(option: Laid, translator: Translator) -> str:

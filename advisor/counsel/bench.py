@@ -118,7 +118,8 @@ def _eye(computed: Computed, order: EyeOrder, *, index: int, k: int) -> EyeBench
         monocular_pd_mm=float(case.pd_mm[k]),
         height_mm=float(case.height_mm[k]),
     )
-    shape, angles = forms.shape, forms.rim.angle_deg[k]
+    shape = forms.shape
+    angles = np.broadcast_to(forms.rim.angle_deg, shape.edge_mm.shape)[index, k]
     edge = shape.edge_mm[index, k]
     nose, up, temple, down = (_edge_at(edge, angles, side) for _, side in SIDES)
     return EyeBench(

@@ -8,9 +8,8 @@ from typing import Any
 from advisor import __version__
 from advisor.counsel.advice_answer import advice_content
 from advisor.counsel.advise import Counsel, advise
-from advisor.counsel.answer import Figures, notice, number, option_answer
+from advisor.counsel.answer import Figures, caution, notice, number, option_answer
 from advisor.counsel.case import Case, build_case
-from advisor.counsel.caution_texts import CAUTION_TEXTS
 from advisor.counsel.cautions import CAUTIONS, LensLight, cautions_for
 from advisor.counsel.comparison import Comparison
 from advisor.counsel.faults import Faults
@@ -20,7 +19,7 @@ from advisor.counsel.ghosts import GhostFigures, figures_of
 from advisor.counsel.laid_out import Laid, Refused, lay_out, options_of, without_film
 from advisor.counsel.light import Light, light_of
 from advisor.counsel.limits import coatings_that_reach, limits_of
-from advisor.counsel.phrases import Figure, Phrase, Translator, mark, say
+from advisor.counsel.phrases import Figure, Phrase, Translator, mark
 from advisor.counsel.prescription import EYES
 from advisor.counsel.stock import Range
 from advisor.counsel.stock_items import Tint
@@ -146,18 +145,7 @@ def _cautions(computed: Computed, translator: Translator) -> list[Content]:
     order = list(CAUTIONS)
     for option in computed.laid:
         for applied in cautions_for(computed.case, option, light=lens_light(computed, option.index)):
-            words = CAUTION_TEXTS[applied.key]
-            entry = found.setdefault(
-                applied.key,
-                {
-                    "key": applied.key,
-                    "text": say(Phrase(applied.key, applied.figures), {applied.key: words.text}, translator),
-                    "rule": translator.gettext(words.rule),
-                    "source": translator.gettext(words.source),
-                    "figures": dict(applied.figures),
-                    "options": [],
-                },
-            )
+            entry = found.setdefault(applied.key, caution(applied, translator) | {"options": []})
             entry["options"].append(option.index)
     return sorted(found.values(), key=lambda entry: order.index(entry["key"]))
 

@@ -226,6 +226,7 @@ class AdvisedOption(_Part):
     figures: dict[str, float | None] = Field(
         default_factory=dict, description="what it is weighed by; price in about as many euros"
     )
+    cautions: list[Caution] = Field(default_factory=list, description="that apply to this pair, laid out or not")
     because: list[Notice] | None = Field(default=None, description="gains against the recommended pair")
     gives_up: list[Notice] | None = Field(default=None, description="losses against the recommended pair")
     use: Literal["far", "near", "clear", "tinted"] | None = Field(default=None, description="of one of two pairs")

@@ -41,7 +41,7 @@ OUTCOMES: Mapping[str, Outcome] = {
     "film-on-faces": "remake",
     "check-coating": "none", "turn-desk": "none", "shade-light": "none", "explain": "none",
     "closer-fit": "adjust", "matt-edge": "adjust", "loosen-rim": "adjust", "adjust-fit": "adjust",
-    "adjust-heights": "adjust", "clean-right": "clean", "refer-eye": "refer", "refer-eyes-today": "refer",
+    "adjust-heights": "adjust", "clean-right": "clean", "refer-eye": "refer",
     "refer-eyes": "refer", "ask-prescriber": "refer",
 }  # fmt: skip
 

@@ -74,7 +74,9 @@ LINES: dict[str, str] = {
     # first days
     "first-wear": mark("Wear them for a few hours on the first day, then longer."),
     "first-size": mark("Things may look a little bigger, smaller or bent at first."),
-    "first-power": mark("The power is not the same as before. Floors and steps may look odd at first. Take care on stairs."),
+    "first-power": mark(
+        "The power is not the same as before. Floors and steps may look odd at first. Take care on stairs."
+    ),
     "first-axis": mark("The lens now works in another direction. Floors and walls may seem to slope at first."),
     "first-bigger": mark("Things may look about %(size_percent)s %% bigger than in your old pair."),
     "first-smaller": mark("Things may look about %(size_percent)s %% smaller than in your old pair."),

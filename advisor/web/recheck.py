@@ -14,7 +14,7 @@ from advisor.counsel.recheck_shown import finding_words
 from advisor.counsel.recheck_texts import COMPLAINTS, SIGNS, TODAY
 from advisor.counsel.stock import Range
 from advisor.counsel.visit import Visit, parse_visit
-from advisor.records.rechecks import SavedRecheck
+from advisor.records.rechecks import RecheckMissing, SavedRecheck
 from advisor.records.visits import VisitLine
 from advisor.web import labels, recheck_text
 from advisor.web.desk import current_desk
@@ -134,6 +134,8 @@ def _line(saved: SavedRecheck) -> Mapping[str, object]:
 def _slip(visit_id: str, recheck_id: str, *, fonts: str) -> str:
     visit, stock = _on_file(visit_id)
     saved = current_desk().store.get_recheck(recheck_id)
+    if saved.visit_id != visit_id:
+        raise RecheckMissing
     return maker_slip(visit, stock, RecheckRecord.model_validate_json(saved.content_json), fonts=fonts)
 
 

@@ -101,7 +101,9 @@ def record_of(asked: Asked) -> RecheckRecord:
     if not fields.get("outcome"):
         raise Faults([fault("missing", field="outcome")])
     measured = measured_of(fields)
-    cause = answer.causes[0].key if answer and answer.causes else None
+    causes = [] if answer is None else answer.causes
+    by = [cause for cause in causes if any(remedy.key == fields.get("remedy") for remedy in cause.remedies)]
+    cause = next((found.key for found in (*by, *causes)), None)
     content = {
         "says": fields["says"][:200],
         "outcome": fields["outcome"],

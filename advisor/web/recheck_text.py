@@ -35,7 +35,7 @@ OUTCOMES = {
     "refer": mark("refer"),
     "none": mark("none"),
 }
-WAYS = OUTCOMES | {"remake": mark("another lens"), "none": mark("free")}  # what a remedy takes
+WAYS = OUTCOMES | {"none": mark("free")}  # what a remedy takes
 PAYERS = {
     "nobody": mark("nobody"),
     "shop": mark("the shop"),

@@ -5,7 +5,7 @@ import io
 import unicodedata
 from collections.abc import Iterable
 
-from advisor.counsel.comparison import Advice, AdvisedOption, Comparison, EyeFigures
+from advisor.counsel.comparison import Advice, AdvisedOption, Caution, Comparison, EyeFigures
 from advisor.counsel.layout import ROWS, rows_present, two_eyes
 from advisor.web.language import Language
 
@@ -67,6 +67,7 @@ def text_table(comparison: Comparison, *, title: str, currency: str, language: L
             some = len(caution.options) < len(options)
             which = f" ({', '.join(str(index + 1) for index in caution.options)})" if some else ""
             lines.append(f"{_('Caution')}{which}: {caution.text}")
+        lines += [f"{_('Caution')} ({_('as advised')}): {caution.text}" for caution in _of_advised(comparison.advice)]
     if comparison.defaults_used:
         lines.append(f"{_('Defaults used')}: {', '.join(comparison.defaults_used)}")
     return "\n".join(one_line(text) for text in lines).rstrip() + "\n"
@@ -96,6 +97,14 @@ def advice_lines(advice: Advice, *, currency: str, language: Language) -> list[s
     if advice.robust is not None:
         lines.append(f"{_('How sure')}: {advice.robust}.")
     return lines + [f"{_('What would change it')}: {change.text}" for change in advice.would_change or []]
+
+
+def _of_advised(advice: Advice) -> list[Caution]:
+    """Return the cautions of what is recommended that apply to nothing laid out."""
+    told = {caution.key for caution in advice.cautions}
+    pairs = [advice.recommended, *(advice.two_pairs or [])]
+    found = {caution.key: caution for pair in pairs if pair is not None for caution in pair.cautions}
+    return [caution for key, caution in found.items() if key not in told]
 
 
 def harmless(cell: str) -> str:

@@ -186,6 +186,12 @@ def test_the_greatest_reflectance_is_null_where_even_bare_is_not_noticed() -> No
     assert 0.0 < weak.greatest_reflectance_per_surface < 0.04  # under a bare face of 1.5
 
 
+def test_cautions_of_a_recommended_pair_are_told_though_it_is_not_laid_out() -> None:
+    found = advice_on([{**RESIN, "coating": "bare"}], daily_life={"night_driving": "often", "impact": "never"})
+    assert "not-promise-none" in {caution.key for caution in found.recommended.cautions}
+    assert "not-promise-none" not in {caution.key for caution in found.cautions}  # nothing coated is laid out
+
+
 def test_unknown_prices_everywhere_still_give_advice() -> None:
     stock = builtin_range()
     free = stock.model_copy(update={"material": tuple(m.model_copy(update={"price": None}) for m in stock.material)})

@@ -8,14 +8,18 @@ from collections.abc import Iterator
 from pathlib import Path
 from typing import Any
 
+import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
+from advisor.counsel import ghosts
 from advisor.counsel.compare import compare
 from advisor.counsel.comparison import Comparison, EyeFigures, Ghost
 from advisor.counsel.stock import Range, builtin_range, check_range
 from advisor.counsel.visit import check_visit, read_visit
+from advisor.optics.ghost_inputs import LensOnFace
+from advisor.optics.ghost_scene import see_ghosts
 from advisor.resources import resource_dir
 from advisor.web.language import language
 
@@ -437,3 +441,64 @@ def test_the_range_of_every_verdict_holds_the_verdict(path: Path) -> None:
         moved += least < most
     if path.stem == "weak-minus-night-driver":
         assert moved > 0  # a border case says so
+
+
+def inner(compared: Comparison) -> Ghost:
+    """The twice-mirrored image in the right lens."""
+    return next(ghost for ghost in ghosts_of(compared) if ghost.path == "ahead-inner")
+
+
+@pytest.mark.parametrize("change", ["thickness", "front curve", "direction"])
+def test_a_verdict_ranges_over_what_a_lens_may_be_off_by(change: str) -> None:
+    # each change made by itself in a visit of its own: 0.3 mm of centre, 0.5 D of front, 2 degrees of direction
+    base = copy.deepcopy(WEARER)
+    base["prescription"] |= {"right": {"sphere": -0.75}, "left": {"sphere": -0.75}}
+    base["options"][0] |= {"front_power_d": 6.0}
+    flipped = 0
+    for step in range(24):
+        share = 0.002 * 1.15**step
+        base["options"][0]["coating"] = mirror(share)
+        nominal = inner(answer(base, check_range({"scene": [LAMP]})))
+        assert nominal.verdict_range is not None
+        low, high = (ORDER.index(word) for word in nominal.verdict_range)
+        for sign in (-1, 1):
+            other, scene = copy.deepcopy(base), dict(LAMP)
+            if change == "thickness":
+                other["options"][0]["centre_mm"] = 2.0 + 0.3 * sign
+            elif change == "front curve":
+                other["options"][0]["front_power_d"] = 6.0 + 0.5 * sign
+            else:
+                scene["direction_deg"] = 4 + 2 * sign
+            there = inner(answer(other, check_range({"scene": [scene]})))
+            assert low <= ORDER.index(there.verdict or "") <= high
+            flipped += there.verdict != nominal.verdict
+    assert flipped > 0  # so the change was felt
+
+
+def test_the_changes_are_made_one_at_a_time_and_the_power_is_kept(monkeypatch: pytest.MonkeyPatch) -> None:
+    seen: dict[str, Any] = {}
+
+    def watched(lens: LensOnFace, **others: Any) -> Any:
+        seen.update(lens=lens, **others)
+        return see_ghosts(lens, **others)
+
+    monkeypatch.setattr(ghosts, "see_ghosts", watched)
+    answer(WEARER, check_range({"scene": [LAMP]}))
+    section = seen["lens"].section
+    front_mm, back_mm = section.front_curvature_per_mm[:, 0, 0, 0, 0], section.back_curvature_per_mm[:, 0, 0, 0, 0]
+    thick = np.broadcast_to(section.thickness_mm[:, 0, 0, 0], front_mm.shape)
+    front = front_mm * 1000 * (N - 1)
+    changed = {
+        "mm": thick - 2.0,
+        "D": front - F1,
+        "degrees": seen["scene"].direction_deg[:, 0, 0, 0] - 4,
+        "pupil": seen["wearer"].pupil_scale[:, 0, 0, 0] - 1,
+    }
+    # thickness 0.3 mm (ANSI Z80.1 order tolerance), front 0.5 D, pupil 15 %, direction 2 degrees: modelling choices
+    for unit, amount in (("mm", 0.3), ("D", 0.5), ("degrees", 2.0), ("pupil", 0.15)):
+        moved = changed[unit][np.abs(changed[unit]) > 1e-9]
+        assert sorted(moved) == pytest.approx([-amount, amount], abs=1e-9), unit
+    assert sum(np.abs(part) > 1e-9 for part in changed.values()).max() == 1
+    assert all(abs(part[0]) < 1e-9 for part in changed.values())  # the first is the lens as it is
+    for f1, t_mm, k2 in zip(front, thick, back_mm, strict=True):  # back vertex power: F1/(1 - (t/n)F1) + F2
+        assert f1 / (1 - t_mm / 1000 / N * f1) - k2 * 1000 * (N - 1) == pytest.approx(SPHERE, abs=1e-9)

@@ -247,11 +247,11 @@ def test_every_broken_condition_can_be_said() -> None:
 
 
 def test_the_words_of_both_tables_are_found_for_translation() -> None:
-    for name, shown in (("musts.toml", "An impact material"), ("rather.toml", "the second light at night")):
+    for name, shown in (("musts.toml", "an impact material first"), ("rather.toml", "the second light at night")):
         with data_file("counsel", name).open("rb") as file:
             found = list(extract(file, (), (), {}))
         texts = [text for _, _, text, _ in found]
-        assert any(shown in text or "impact material" in text for text in texts)
+        assert any(shown in text for text in texts)
         assert all(line > 0 and text for line, _, text, _ in found)
     with data_file("counsel", "musts.toml").open("rb") as file:
         assert {must.text for must in musts()} <= {text for _, _, text, _ in extract(file, (), (), {})}

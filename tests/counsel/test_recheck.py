@@ -2,17 +2,27 @@
 
 import datetime as dt
 import json
+import math
+import re
 import tomllib
 from pathlib import Path
 from typing import Any
 
 import pytest
 
+from advisor.counsel.batch import match_share
+from advisor.counsel.faces import face_of
 from advisor.counsel.measured import check_measured
-from advisor.counsel.recheck import recheck
-from advisor.counsel.recheck_answer import RecheckAnswer
-from advisor.counsel.recheck_texts import SIGNS
-from advisor.counsel.stock import builtin_range
+from advisor.counsel.prescription import SphereCylinder
+from advisor.counsel.recheck import NotUnderstood, UnknownAnswer, recheck
+from advisor.counsel.recheck_answer import Finding, RecheckAnswer
+from advisor.counsel.recheck_remedies import OUTCOMES
+from advisor.counsel.recheck_table import CAUSES, CAUSES_OF
+from advisor.counsel.recheck_texts import CAUSES as CAUSE_TEXTS
+from advisor.counsel.recheck_texts import COMPLAINTS, REMEDIES, SIGNS, TESTS
+from advisor.counsel.recheck_words import hear
+from advisor.counsel.recheck_worn import cylinder_change_d
+from advisor.counsel.stock import builtin_range, check_range
 from advisor.counsel.visit import check_visit, read_visit, visit_to_json
 from advisor.resources import resource_dir
 from advisor.web.language import language
@@ -21,6 +31,7 @@ CASES: list[dict[str, Any]] = tomllib.loads((Path(__file__).parent / "recheck_ca
     "case"
 ]
 TODAY = dt.date(2026, 12, 20)
+WEAK_DRIVER = resource_dir("demo_patients") / "weak-minus-night-driver.json"
 
 
 def answer_of(case: dict[str, Any]) -> RecheckAnswer:
@@ -57,3 +68,208 @@ def test_a_return_visit_ends_as_a_good_dispenser_would_end_it(case: dict[str, An
             assert found.after < found.before if wanted["direction"] == "down" else found.after > found.before
     assert not {key for of in remedies.values() for key in of} & set(expect.get("never", ()))
     assert set(expect.get("notes", ())) <= {note.code for note in answer.notes}
+
+
+# --- beside the cases ------------------------------------------------------------------------------------------------
+
+
+def weak(
+    says: str = "second light", *, measured: dict[str, Any] | None = None, region: str = "", **visit: Any
+) -> RecheckAnswer:
+    """A pair of -4.00 on both eyes in hard resin, bare, measured PDs and heights."""
+    eye = {"pd_mm": 32.0, "height_mm": 20.0}
+    content: dict[str, Any] = {
+        "prescription": {"right": {"sphere": -4.0}, "left": {"sphere": -4.0}},
+        "fitting": {"right": eye, "left": eye},
+        "options": [{"design": "single-vision", "material": "hard-resin-150", "coating": "bare"}],
+    } | visit
+    stock = check_range({"shop": {"region": region}}) if region else builtin_range()
+    return recheck(
+        check_visit(content),
+        stock,
+        says=says,
+        tests=dict.fromkeys(SIGNS, "no"),
+        measured=None if measured is None else check_measured(measured),
+        translator=language("en"),
+        today=TODAY,
+    )
+
+
+def found(answer: RecheckAnswer, figure: str) -> Finding:
+    (one,) = (finding for finding in answer.as_made.findings if finding.figure == figure and finding.eye != "left")
+    return one
+
+
+def test_centres_too_far_apart_are_judged_as_the_prism_they_make() -> None:
+    # Prentice: 3 mm at -4.00 is 1.2, base in before each eye, 2.4 for the pair
+    answer = weak("headaches", measured={eye: {"pd_mm": 35.0} for eye in ("right", "left")})
+    prism = found(answer, "horizontal-prism")
+    assert prism.off == pytest.approx(2.4, abs=1e-9)
+    assert prism.within is False
+    assert answer.causes[0].key == "wrong-as-made"
+
+
+def test_both_centres_too_low_alike_make_no_imbalance() -> None:
+    answer = weak("headaches", measured={eye: {"height_mm": 17.0} for eye in ("right", "left")})
+    assert found(answer, "vertical-prism").off == pytest.approx(0.0, abs=1e-9)
+    unlike = weak("headaches", measured={"right": {"height_mm": 17.0}, "left": {"height_mm": 20.0}})
+    # Prentice: 3 mm at -4.00
+    assert abs(found(unlike, "vertical-prism").off) == pytest.approx(1.2, abs=1e-9)
+
+
+def test_prism_that_was_read_counts_before_prism_that_was_worked_out() -> None:
+    eye = {"prism": [{"amount": 0.5, "base": "in"}], "pd_mm": 35.0}
+    answer = weak("headaches", measured={"right": eye, "left": eye})
+    assert found(answer, "horizontal-prism").off == pytest.approx(1.0, abs=1e-9)
+
+
+def test_an_axis_is_turned_the_short_way_round_and_in_either_writing() -> None:
+    eye = {"sphere": -1.0, "cylinder": -1.0, "axis": 178}
+    answer = weak(
+        "headaches",
+        prescription={"right": eye, "left": eye},
+        measured={"right": {"sphere": -2.0, "cylinder": 1.0, "axis": 92}},
+    )
+    axis = found(answer, "axis")
+    assert (axis.measured, axis.off) == (2.0, 4.0)
+    assert found(answer, "sphere").off == 0.0
+
+
+def test_the_region_decides_the_tolerances() -> None:
+    measured = {"right": {"sphere": -4.13}}
+    assert found(weak("headaches", measured=measured), "sphere").within is False  # 0.12 in the ISO type
+    us = weak("headaches", measured=measured, region="us")
+    assert found(us, "sphere").within is True  # 0.13 in the ANSI type
+    assert us.as_made.tolerances == "ansi"
+
+
+def test_a_wrong_power_never_decides_who_is_referred() -> None:
+    answer = weak("second light", measured={"right": {"sphere": -5.0}})
+    assert answer.refer == weak("second light").refer
+
+
+def test_a_blind_that_passes_a_tenth_leaves_a_tenth() -> None:
+    cause = weak("things behind me").causes[0]
+    (part,) = next(remedy for remedy in cause.remedies if remedy.key == "shade-light").figures
+    assert part.after == pytest.approx(part.before / 10, rel=1e-9)
+
+
+def test_the_strength_before_is_that_of_two_bare_faces() -> None:
+    eye = {"sphere": -0.5}
+    answer = weak(prescription={"right": eye, "left": eye})
+    remedy = next(r for r in answer.causes[0].remedies if r.key == "coat-both")
+    strength = {part.figure: part for part in remedy.figures}["second_image_percent"]
+    # Fresnel at the d line: ((1.498 - 1)/(1.498 + 1))^4; dispersion under the lamp's light adds up to 0.002
+    assert strength.before == pytest.approx(100 * (0.498 / 2.498) ** 4, abs=0.002)
+    assert strength.after < strength.before
+
+
+def test_a_change_of_cylinder_counts_the_turn_of_the_axis() -> None:
+    # two cylinders as vectors of twice their angle: sqrt(a^2 + b^2 - 2 a b cos 2 turn)
+    wanted = math.sqrt(4.25**2 + 3.75**2 - 2 * 4.25 * 3.75 * math.cos(math.radians(10)))
+    now, then = SphereCylinder(-1.25, -4.25, 35.0), SphereCylinder(-1.25, -3.75, 30.0)
+    assert cylinder_change_d(now, then) == pytest.approx(wanted, abs=1e-12)
+    assert cylinder_change_d(now, SphereCylinder(-5.5, 4.25, 125.0)) == pytest.approx(0.0, abs=1e-12)
+
+
+def test_lenses_of_one_run_match_more_often_than_lenses_of_two() -> None:
+    stock = builtin_range()
+    face = face_of(stock.material_of("hard-resin-150"), stock.coating_of("broadband"))
+    apart, together = match_share(face, one_run=False), match_share(face, one_run=True)
+    assert apart is not None
+    assert together is not None
+    assert 0.0 <= apart < together <= 1.0
+    assert match_share(face_of(stock.material_of("hard-resin-150"), stock.coating_of("bare")), one_run=True) is None
+
+
+# --- words -----------------------------------------------------------------------------------------------------------
+
+
+@pytest.mark.parametrize("key", COMPLAINTS)
+def test_every_complaint_is_heard_in_its_own_key_and_in_its_own_words(key: str) -> None:
+    assert hear(key).complaints == (key,)
+    assert hear(COMPLAINTS[key]).complaints == (key,)
+    assert not [sign for sign in hear(COMPLAINTS[key]).signs if sign.startswith("today")]
+
+
+@pytest.mark.parametrize(
+    ("says", "sign"),
+    [
+        ("a curtain came down over one eye", "today-loss"),
+        ("flashes in the corner and new floaters", "today-flashes"),
+        ("Suddenly I saw double on the way here", "today-double"),
+        ("my eye is red and hurts", "today-red"),
+        ("halos round lamps and I feel sick", "today-rings"),
+        ("a new headache, and combing my scalp is sore", "today-headache"),
+        ("cleaner splashed in my eye", "today-splash"),
+        ("door frames: straight lines look bent", "today-bent"),
+    ],
+)  # fmt: skip
+def test_a_sign_for_today_is_heard_in_the_wearers_words(says: str, sign: str) -> None:
+    assert sign in hear(says).signs
+    answer = weak(says)
+    assert (answer.refer, answer.offer, answer.causes) == ("today", "nothing", [])
+    assert answer.urgent_help
+
+
+@pytest.mark.parametrize("says", ["rings, no pain", "second light, no flashes", "double headlights, without floaters"])
+def test_what_is_denied_in_the_same_breath_is_not_heard(says: str) -> None:
+    assert not [sign for sign in hear(says).signs if sign.startswith("today")]
+
+
+def test_words_nobody_knows_are_told_with_what_may_be_said() -> None:
+    with pytest.raises(NotUnderstood, match="second-light"):
+        weak("lorem ipsum")
+    with pytest.raises(UnknownAnswer, match="cover-eye"):
+        recheck(
+            read_visit(WEAK_DRIVER),
+            builtin_range(),
+            says="second light",
+            tests={"cover-eyes": "yes"},
+            translator=language("en"),
+        )
+
+
+# --- what is never said ----------------------------------------------------------------------------------------------
+
+
+def test_every_cause_and_remedy_has_its_words_and_its_outcome() -> None:
+    assert {key for keys in CAUSES_OF.values() for key in keys} == set(CAUSES)
+    assert set(CAUSES_OF) == set(COMPLAINTS)
+    assert set(CAUSES) <= set(CAUSE_TEXTS)
+    used = {key for rule in CAUSES.values() for key, _ in rule.remedies}
+    assert used <= set(REMEDIES)
+    assert used | {"remake-as-ordered"} <= set(OUTCOMES)
+    assert {test for rule in CAUSES.values() for test in rule.tells} | {"new"} == set(TESTS)
+
+
+def test_no_remedy_promises_and_none_touches_prescribed_prism() -> None:
+    promises = re.compile(
+        r"\b(gone|removes?|eliminat|invisible|never see|anti-?glare|no reflections?|cures?)\b", re.IGNORECASE
+    )
+    for text in REMEDIES.values():
+        assert not promises.search(text), text
+        assert "prism" not in text
+
+
+@pytest.mark.parametrize("case", CASES, ids=lambda case: case["name"])
+def test_an_answer_offers_no_lens_where_it_refers_and_writes_no_odd_number(case: dict[str, Any]) -> None:
+    answer = answer_of(case)
+    lenses = [r for cause in answer.causes for r in cause.remedies if r.outcome == "remake"]
+    if answer.refer is not None:
+        assert answer.offer == "nothing"
+        assert lenses == []
+    assert (answer.offer == "nothing") == (lenses == [])
+    assert RecheckAnswer.model_validate_json(answer.model_dump_json()) == answer
+    assert "nan" not in answer.model_dump_json().lower().split('"lens"')[0]
+
+
+@pytest.mark.parametrize(
+    "says", ["second light", "behind", "fringes", "smears", "not-right", "near", "yellow", "edge-rings"]
+)
+@pytest.mark.parametrize("path", sorted(resource_dir("demo_patients").glob("*.json")), ids=lambda path: path.stem)
+def test_every_demo_wearer_can_come_back(path: Path, says: str) -> None:
+    answer = recheck(read_visit(path), builtin_range(), says=says, translator=language("en"), today=TODAY)
+    assert answer.offer in ("nothing", "after-asking")  # nobody asked for the signs
+    assert all(part.after <= part.before or part.figure == "match_percent"
+               for cause in answer.causes for remedy in cause.remedies for part in remedy.figures[:1])  # fmt: skip

@@ -97,12 +97,15 @@ def test_the_worst_of_both_eyes_and_all_scenes_is_told() -> None:
     phrase = second_image(pair)
     assert phrase is not None
     assert phrase.code == "second-noticeable"
+    stage = ghost(visibility_level=90.0, verdict="plain", past_range=True)
+    assert worst_ghost(option(weak, stage)) == weak  # past the model's range nothing is ranked by it
     assert worst_ghost(option()) is None
     assert second_image(option(ghost(visibility_level=None))) is None
 
 
 @pytest.mark.parametrize(
-    ("contrast", "code"), [(0.0199, "behind-unseen"), (0.0201, "behind-seen"), (3.0, "behind-seen")]
+    ("contrast", "code"),
+    [(0.0199, "behind-unseen"), (0.0201, "behind-seen"), (0.99, "behind-seen"), (1.01, "behind-brighter")],
 )
 def test_light_from_behind_is_told_from_two_per_cent(contrast: float, code: str) -> None:
     behind = ghost(path="behind-back", separation_deg=None, contrast=contrast)

@@ -18,13 +18,17 @@ TODAY = dt.date(2026, 12, 1)
 STOCK = builtin_range()
 MATERIALS = [material.key for material in STOCK.material]
 COATINGS = ["bare", "hard-coat-only", "magnesium-fluoride", "broadband", "broadband-wide"]
-EXACT = {"rtol": 1e-9, "atol": 1e-12}
 WEARERS = ["weak-minus-night-driver", "strong-cylinder", "prescribed-prism", "high-plus-child"]
 
 
 def case_of(name: str) -> Case:
     visit = read_visit(resource_dir("demo_patients") / f"{name}.json")
     return build_case(visit.model_copy(update={"scenes": None}), STOCK, today=TODAY)
+
+
+def exactly(found: Any, k: int, alone: Any, part: str) -> None:
+    one, other = getattr(found, part)[k], getattr(alone, part)[0]
+    np.testing.assert_allclose(one, other, rtol=1e-9, atol=1e-12, err_msg=part)
 
 
 def everything(case: Case, *, design: str = "single-vision") -> WholeRange:
@@ -63,20 +67,16 @@ def test_each_option_is_what_it_is_alone(name: str) -> None:
         visit = case.visit.model_copy(update={"options": check_visit(_only(asked)).options})
         alone = compute(visit, STOCK, today=TODAY)
         for part in ("front", "back", "first_pass_loss", "whole_lens", "transmittance", "strengths", "passed"):
-            np.testing.assert_allclose(getattr(found.light, part)[k], getattr(alone.light, part)[0], **EXACT)
+            exactly(found.light, k, alone.light, part)
         for part in ("weight_g", "blank_mm", "fringe_prism_d", "magnification_percent", "smaller_thickest_mm"):
-            np.testing.assert_allclose(getattr(found.forms, part)[k], getattr(alone.forms, part)[0], **EXACT)
+            exactly(found.forms, k, alone.forms, part)
         for part in ("centre_mm", "thickest_mm", "thinnest_mm", "back_power_d", "refusal"):
-            np.testing.assert_allclose(
-                getattr(found.forms.shape, part)[k], getattr(alone.forms.shape, part)[0], **EXACT
-            )
+            exactly(found.forms.shape, k, alone.forms.shape, part)
         seen = alone.ghosts.seen
         for part in ("applies", "vergence_d", "pupil_mm", "separation_deg", "background_cd_m2", "spread"):
-            np.testing.assert_allclose(getattr(found.ghosts, part)[k], getattr(seen, part)[0], **EXACT)
+            exactly(found.ghosts, k, seen, part)
         for part in (field.name for field in fields(seen.relaxed)):
-            np.testing.assert_allclose(
-                getattr(found.ghosts.relaxed, part)[k], getattr(seen.relaxed, part)[0], **EXACT, err_msg=part
-            )
+            exactly(found.ghosts.relaxed, k, seen.relaxed, part)
 
 
 def _only(option: dict[str, Any]) -> dict[str, Any]:
