@@ -14,9 +14,9 @@ from advisor.counsel.faces import residual_colour
 from advisor.counsel.form import SMALLER_BY_MM, LensForms
 from advisor.counsel.ghosts import GhostFigures
 from advisor.counsel.laid_out import NOTE_TEXTS, REFUSAL_TEXTS, Laid
-from advisor.counsel.light import DAYLIGHT, Light, as_made_spreads, estimated_ranges, made_strengths
+from advisor.counsel.light import DAYLIGHT, Light, as_made_spreads, as_made_whole, estimated_ranges, made_strengths
 from advisor.counsel.phrases import Figure, Phrase, Translator, mark, say
-from advisor.counsel.prescription import EYES, Eye
+from advisor.counsel.prescription import EYES
 from advisor.counsel.spectra import tint_axes
 from advisor.counsel.stock_items import Scene
 from advisor.optics.ghost_scene import Ghosts, GhostView
@@ -106,8 +106,10 @@ def option_answer(option: Laid, *, figures: Figures, translator: Translator) -> 
         "notes": [notice(phrase, NOTE_TEXTS, translator) for phrase in option.notes],
     }
     if not refused:
-        for eye in EYES:
-            content[eye] = _eye(option, eye, figures=figures)
+        both_eyes = _light(option, figures=figures)
+        for e, eye in enumerate(EYES):
+            ghosts = _ghosts(option, e, figures=figures)
+            content[eye] = _form(option, e, figures=figures) | both_eyes | {"ghosts": ghosts}
     return content
 
 
@@ -130,21 +132,6 @@ def _uncoated(option: Laid, *, uncoated: Light) -> Content:
         "whole_lens": float(uncoated.whole_lens[k]),
         "second_image": float(uncoated.second_image[k]),
     }
-
-
-def _eye(option: Laid, eye: Eye, *, figures: Figures) -> Content:
-    e = EYES.index(eye)
-    content = _form(option, e, figures=figures) | _light(option, figures=figures)
-    content["observer_contrast"] = number(
-        observer_contrast(
-            figures.light.whole_lens[option.index],
-            transmittance=max(float(figures.light.transmittance[option.index]), 1e-9),
-            window_luminance_cd_m2=WINDOW_CD_M2,
-            face_luminance_cd_m2=FACE_CD_M2,
-        ).item()
-    )
-    content["ghosts"] = _ghosts(option, e, figures=figures)
-    return content
 
 
 def _form(option: Laid, e: int, *, figures: Figures) -> Content:
@@ -187,6 +174,7 @@ def _light(option: Laid, *, figures: Figures) -> Content:
     """Return the figures of light; both lenses of a pair have the same faces."""
     k, light = option.index, figures.light
     fronts, backs, both = as_made_spreads(option)
+    whole = as_made_whole(option)
     front, back = option.front_face, option.back_face
     content: Content = {
         "luminous_reflectance": {
@@ -196,13 +184,26 @@ def _light(option: Laid, *, figures: Figures) -> Content:
             "whole_lens": float(light.whole_lens[k]),
             "as_made": {
                 name: None if points is None else points.tolist()
-                for name, points in (("front", fronts), ("back", backs), ("first_pass_loss", both))
+                for name, points in (
+                    ("front", fronts),
+                    ("back", backs),
+                    ("first_pass_loss", both),
+                    ("whole_lens", whole),
+                )
             },
             "estimated": front.is_estimated or back.is_estimated,
         },
         "second_image": _second_image(option, light=light),
         "uncoated": _uncoated(option, uncoated=figures.uncoated),
         "luminous_transmittance": float(light.transmittance[k]),
+        "observer_contrast": number(
+            observer_contrast(
+                light.whole_lens[k],
+                transmittance=max(float(light.transmittance[k]), 1e-9),
+                window_luminance_cd_m2=WINDOW_CD_M2,
+                face_luminance_cd_m2=FACE_CD_M2,
+            ).item()
+        ),
         "residual_colour": {name: residual_colour(face) for name, face in (("front", front), ("back", back))},
     }
     if option.tint is not None and option.tint.luminous_transmittance_dark is not None:

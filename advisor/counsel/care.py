@@ -37,8 +37,7 @@ CARE: tuple[CareLine, ...] = (
         "salt-sand",
         "do",
         mark("After the sea or the beach, rinse off salt and sand with tap water."),
-        ("water_salt_chlorine",),
-        ("water_salt_chlorine",),
+        only_for=("water_salt_chlorine",),
     ),
     CareLine("dry-wipe", "dont", mark("Do not wipe a dry, dusty lens. Dust scratches."), ("dust",)),
     CareLine("paper-shirt", "dont", mark("No paper and no shirt. They scratch too.")),
@@ -74,8 +73,7 @@ CARE: tuple[CareLine, ...] = (
         "child-strap",
         "do",
         mark("For a small child: a soft strap behind the head, never round the neck. Take it off for sleep."),
-        ("child",),
-        ("child",),
+        only_for=("child",),
     ),
 )
 

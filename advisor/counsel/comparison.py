@@ -52,6 +52,7 @@ class AsMade(_Part):
     front: Spread | None = None
     back: Spread | None = None
     first_pass_loss: Spread | None = None
+    whole_lens: Spread | None = None
 
 
 class LuminousReflectance(_Part):

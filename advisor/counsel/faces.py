@@ -200,7 +200,8 @@ def _scaled(face: Face, estimate: EstimatedSpectrum, places: Sequence[int], angl
     films, declared = _films_on(face), luminous_mean(estimate.spectrum)
     chosen = [films[place] for place in places]
     factors = np.array([float(declared) / luminous_reflectance(film) for film in chosen])
-    return np.minimum(factors[:, None] * np.stack([nominal(film, angle_deg).outside for film in chosen]), 1.0)
+    scaled = factors[:, None] * np.stack([nominal(film, angle_deg).outside for film in chosen])
+    return np.asarray(np.minimum(scaled, 1.0))
 
 
 @lru_cache(maxsize=256)

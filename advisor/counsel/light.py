@@ -15,7 +15,7 @@ from advisor.counsel.stock_items import Scene
 from advisor.optics.as_made import spread
 from advisor.optics.ghost_strength import PATHS, lens_transmittance, path_strengths, weighted_strengths
 from advisor.optics.photometry import IlluminantName, luminous_mean
-from advisor.optics.surface import SurfaceSpectra
+from advisor.optics.surface import SurfaceSpectra, whole_lens
 
 Floats = NDArray[np.float64]
 DEFAULT_INCIDENCE_DEG = 35.0  # light from behind must pass the head; a modelling choice
@@ -127,6 +127,31 @@ def _spreads(front_face: Face, back_face: Face) -> tuple[Floats | None, Floats |
     return None if front is None else spread(front), None if back is None else spread(back), both
 
 
+def as_made_whole(option: Laid) -> Floats | None:
+    """Return the 5, 50 and 95 % points of what the whole lens mirrors, (3,), or None without layers."""
+    return _whole(option.front_face, option.back_face, tint_axes(option, dark=False) or (1.0, 1.0))
+
+
+@lru_cache(maxsize=4096)
+def _whole(front_face: Face, back_face: Face, axes: tuple[float, float]) -> Floats | None:
+    pair = _made_pair(front_face, back_face, 0.0)
+    if pair is None:
+        return None
+    fronts, backs = pair
+    both = [whole_lens(fronts, backs, internal_transmittance=tau)[0] for tau in axes]
+    return spread(luminous_mean((both[0] + both[1]) / 2.0))
+
+
+def _made_pair(front: Face, back: Face, angle_deg: float) -> tuple[SurfaceSpectra, SurfaceSpectra] | None:
+    """Return both faces of lenses as made, each coated in a run of its own, or None where neither has layers."""
+    one, other = made(front, angle_deg), made(back, angle_deg)
+    if one is None and other is None:
+        return None
+    return nominal(front, angle_deg) if one is None else one, nominal(back, angle_deg) if other is None else _rolled(
+        other
+    )
+
+
 def estimated_ranges(option: Laid, scenes: Sequence[Scene]) -> Floats | None:
     """Return the least and greatest strength over the shapes a declared figure may have, (2, scene, path), or None."""
     front_face, back_face = option.front_face, option.back_face
@@ -151,11 +176,10 @@ def estimated_ranges(option: Laid, scenes: Sequence[Scene]) -> Floats | None:
 @lru_cache(maxsize=4096)
 def made_strengths(front: Face, back: Face, axes: tuple[float, float], light: SceneLight) -> Floats | None:
     """Return the 5 and 95 % points of the strength of each path over lenses as made, (2, path), or None."""
-    one, other = made(front, light.angle_deg), made(back, light.angle_deg)
-    if one is None and other is None:
+    pair = _made_pair(front, back, light.angle_deg)
+    if pair is None:
         return None
-    fronts = nominal(front, light.angle_deg) if one is None else one
-    backs = nominal(back, light.angle_deg) if other is None else _rolled(other)
+    fronts, backs = pair
     bright, crossed = axes
     strengths = weighted_strengths(
         path_strengths(fronts, backs, internal_transmittance=bright, dark_axis_transmittance=crossed),

@@ -9,16 +9,19 @@ from advisor.counsel.caution_texts import CAUTION_TEXTS
 from advisor.counsel.cautions import BLUE_FROM, cautions_for
 from advisor.counsel.changes import changes_from_worn
 from advisor.counsel.compare import Computed, lens_light
-from advisor.counsel.comparison import Comparison, EyeFigures, OptionFigures
+from advisor.counsel.comparison import Comparison, EyeFigures, Ghost, OptionFigures
 from advisor.counsel.faces import blue_turned_away
 from advisor.counsel.laid_out import Laid
 from advisor.counsel.phrases import Figure, Phrase, mark
 from advisor.counsel.sheet_texts import HEADINGS, LINES
 from advisor.counsel.spoken import from_behind, worst_ghost
+from advisor.counsel.stock_items import IN_PLACE, Item
 from advisor.errors import TwolightError
 from advisor.optics.visibility import VERDICTS
 
 Kind = Literal["lines", "do", "dont", "urgent"]
+READS_WITH_HELP_FROM = 45  # years; common practice, no source
+MOST_PARTS = 10_000
 LEAST_COLOURED = 0.004  # luminous reflectance of a face below which its colour is too faint to name
 NOT_FOR = (
     "not-for-driving-tint",
@@ -109,6 +112,7 @@ def wearer_sheet(computed: Computed, answer: Comparison, *, index: int, price: s
         raise NoSuchOption("This option cannot be made, so there is nothing to print; choose another one.")
     visit = computed.case.visit
     applied = cautions_for(computed.case, laid, light=lens_light(computed, index))
+    answered = (*computed.case.yes_answers(), *(("child",) if computed.case.is_child else ()))
     cautions = [Phrase(a.key, a.figures) for a in applied if CAUTION_TEXTS[a.key].sheet]
     blocks = [
         Block("for", "lines", tuple(_purpose(computed, laid))),
@@ -120,8 +124,8 @@ def wearer_sheet(computed: Computed, answer: Comparison, *, index: int, price: s
             (*_facts(option.right, laid), *_ghosts(option, drives=computed.case.life("night_driving") != "never")),
         ),
         Block("coating", "lines", tuple(_coating(option.right, laid))),
-        Block("do", "do", tuple(care_lines(computed.case.yes_answers(), kind="do"))),
-        Block("dont", "dont", tuple(care_lines(computed.case.yes_answers(), kind="dont"))),
+        Block("do", "do", tuple(care_lines(answered, kind="do"))),
+        Block("dont", "dont", tuple(care_lines(answered, kind="dont"))),
         Block("first-days", "lines", tuple(_first_days(computed, laid))),
         Block("come-back", "lines", _phrases("back-fit", "back-unclear", "back-second", "back-damage", "back-soon")),
         Block("notes", "lines", tuple(c for c in cautions if c.code not in (*NOT_FOR, *SAID_ELSEWHERE))),
@@ -132,7 +136,7 @@ def wearer_sheet(computed: Computed, answer: Comparison, *, index: int, price: s
         option=option,
         before=tuple(block for block in blocks if block.lines),
         urgent=Block("today", "urgent", _phrases(*(key for key in LINES if key.startswith("today-")))),
-        bars=tuple(_bars(option.right)),
+        bars=tuple(_bars(option.right, laid)),
     )
 
 
@@ -141,14 +145,12 @@ def _phrases(*keys: str) -> tuple[Phrase, ...]:
 
 
 def _purpose(computed: Computed, laid: Laid) -> Iterable[Phrase]:
-    kind, wanted = laid.design.kind, computed.case.visit.prescription.for_
+    case = computed.case
+    kind, wanted = laid.design.kind, case.visit.prescription.for_
     if kind == "single-vision":
-        if wanted == "near":
-            yield Phrase("for-near")
-        elif wanted == "intermediate":
-            yield Phrase("for-desk")
-        else:
-            yield Phrase("for-far" if computed.case.has_add or wanted == "distance" else "for-all")
+        far_alone = case.has_add or wanted == "distance" or case.age_years >= READS_WITH_HELP_FROM
+        keys = {"near": "for-near", "intermediate": "for-desk"}
+        yield Phrase(keys.get(wanted or "", "for-far" if far_alone else "for-all"))
     else:
         keys = {
             "reading": "for-near",
@@ -157,66 +159,94 @@ def _purpose(computed: Computed, laid: Laid) -> Iterable[Phrase]:
             "progressive": "for-far-to-near",
         }
         yield Phrase(keys[kind])
-    yield Phrase("for-wear")
+
+
+def _name(item: Item) -> str:
+    """Return what an item is called on paper; one given in place has no name of its own."""
+    if item.label is not None:
+        return item.label
+    return OWN_ITEM if item.key == IN_PLACE else item.key
+
+
+OWN_ITEM = mark("as agreed")
 
 
 def _chosen(laid: Laid, price: str | None) -> Iterable[Phrase]:
-    yield Phrase("chosen-lens", {"material": laid.material.label or laid.material.key})
-    front, back = (coating.label or coating.key for coating in (laid.front, laid.back))
+    yield Phrase("chosen-design", {"design": _name(laid.design)})
+    yield Phrase("chosen-lens", {"material": _name(laid.material)})
+    front, back = _name(laid.front), _name(laid.back)
     if front == back:
         yield Phrase("chosen-coating", {"coating": front})
     else:
         yield Phrase("chosen-coating-front", {"coating": front})
         yield Phrase("chosen-coating-back", {"coating": back})
     if laid.tint is not None:
-        yield Phrase("chosen-tint", {"tint": laid.tint.label or f"{100 * laid.tint.luminous_transmittance:.0f} %"})
+        share = f"{100 * laid.tint.luminous_transmittance:.0f} %"
+        yield Phrase("chosen-tint", {"tint": share if laid.tint.key == IN_PLACE else _name(laid.tint)})
     if price is not None:
         yield Phrase("chosen-price", {"price": price})
 
 
+def is_coated(laid: Laid) -> bool:
+    """Whether either face has a film."""
+    return laid.front_face.has_film or laid.back_face.has_film
+
+
 def _facts(eye: EyeFigures, laid: Laid) -> Iterable[Phrase]:
-    """Tell the figures of the right lens; both lenses of a pair have the same faces."""
-    mirrors = eye.luminous_reflectance
-    coated = laid.front_face.has_film or laid.back_face.has_film
-    if not coated:
-        yield Phrase("mirrors-uncoated", {"mirrored_percent": 100 * mirrors.first_pass_loss})
+    """Tell three computed facts at most, of the right lens; both lenses of a pair have the same faces."""
+    mirrors, bare = eye.luminous_reflectance, {"bare_percent": 100 * eye.uncoated.whole_lens}
+    spread = mirrors.as_made.whole_lens
+    if not is_coated(laid):
+        yield Phrase("mirrors-uncoated", {"mirrored_percent": 100 * mirrors.whole_lens})
+    elif spread is None:
+        yield Phrase("mirrors-stated", {"mirrored_percent": 100 * mirrors.whole_lens} | bare)
     else:
-        key = "mirrors-hard-coat" if eye.uncoated.hard_coat_only else "mirrors-bare"
-        yield Phrase(key, {"bare_percent": 100 * eye.uncoated.first_pass_loss})
-        spread = mirrors.as_made.first_pass_loss
-        if spread is None:
-            yield Phrase("mirrors-coated-stated", {"mirrored_percent": 100 * mirrors.first_pass_loss})
-        else:
-            yield Phrase("mirrors-coated", {"low_percent": 100 * spread[0], "high_percent": 100 * spread[2]})
+        key = "mirrors-against-hard-coat" if eye.uncoated.hard_coat_only else "mirrors-against-bare"
+        yield Phrase(key, {"low_percent": 100 * spread[0], "high_percent": 100 * spread[2]} | bare)
     if laid.tint is not None:
         yield Phrase("passes", {"luminous_percent": 100 * eye.luminous_transmittance})
+    yield _second_image(eye, coated=is_coated(laid))
+
+
+def _second_image(eye: EyeFigures, *, coated: bool) -> Phrase:
+    """Tell how strong the twice-mirrored image is; beyond one part in ten thousand nobody can use the number."""
     image = eye.second_image
-    parts = {"parts": one_part_in(image.strength if image.as_made is None else image.as_made[1])}
-    if coated:
-        yield Phrase("second-image-coated", parts | {"bare_parts": one_part_in(eye.uncoated.second_image)})
-    else:
-        yield Phrase("second-image", parts)
+    strength = image.strength if image.as_made is None else image.as_made[1]
+    without = one_part_in(eye.uncoated.second_image)
+    if one_part_in(strength) <= MOST_PARTS:
+        parts = {"parts": one_part_in(strength)}
+        return (
+            Phrase("second-image-coated", parts | {"bare_parts": without}) if coated else Phrase("second-image", parts)
+        )
+    if coated and without <= MOST_PARTS:
+        return Phrase("second-image-coated-faint", {"bare_parts": without})
+    return Phrase("second-image-faint")
 
 
-def _ghosts(option: OptionFigures, *, drives: bool) -> Iterable[Phrase]:
+def _ghosts(option: OptionFigures, *, drives: bool) -> list[Phrase]:
     """Tell at most two things about ghosts, "you may" and never "you will", and only what was computed."""
-    ghost = worst_ghost(option)
-    if ghost is not None and drives:
-        noticed = VERDICTS.index(ghost.verdict or VERDICTS[0]) >= VERDICTS.index("only if looked for")
-        if not noticed:
-            yield Phrase("may-not-see-second")
-        else:
-            yield Phrase("may-see-haze" if ghost.haze else "may-see-second")
+    found: list[Phrase] = []
+    if drives and worst_ghost(option) is not None:
+        second, haze = (worst_ghost(option, haze=haze) for haze in (False, True))
+        found += [Phrase("may-see-second")] if _noticed(second) else []
+        found += [Phrase("may-see-haze")] if _noticed(haze) else []
+        found = found or [Phrase("may-not-see-second")]
     behind = from_behind(option)
     if behind is not None and behind.code != "behind-unseen":
-        yield Phrase("may-see-behind")
+        found.append(Phrase("may-see-behind"))
+    return found[:2]
+
+
+def _noticed(ghost: Ghost | None) -> bool:
+    return ghost is not None and VERDICTS.index(ghost.verdict or VERDICTS[0]) >= VERDICTS.index("only if looked for")
 
 
 def _coating(eye: EyeFigures, laid: Laid) -> Iterable[Phrase]:
-    if not (laid.front_face.has_film or laid.back_face.has_film):
+    if not is_coated(laid):
         yield Phrase("coating-none")
         return
-    yield from _phrases("coating-does", "coating-does-not", "coating-glare", "coating-smears")
+    yield from _phrases("coating-does" if laid.tint is None else "coating-does-tinted", "coating-does-not")
+    yield from _phrases("coating-glare", "coating-smears")
     blue = max(blue_turned_away(face) for face in (laid.front_face, laid.back_face))
     if blue >= BLUE_FROM:
         yield Phrase("coating-blue", {"blue_percent": 100.0 * blue})
@@ -252,15 +282,17 @@ def _first_days(computed: Computed, laid: Laid) -> Iterable[Phrase]:
     yield Phrase("first-keep-old")
 
 
-def _bars(eye: EyeFigures) -> Iterable[tuple[str, float]]:
-    """Return the shares of light mirrored away that are drawn as bars of one scale."""
-    spread = eye.luminous_reflectance.as_made.first_pass_loss
-    yield (BAR_WITHOUT, eye.uncoated.first_pass_loss)
-    yield (BAR_WITH, eye.luminous_reflectance.first_pass_loss if spread is None else spread[2])
+def _bars(eye: EyeFigures, laid: Laid) -> Iterable[tuple[str, float]]:
+    """Return the shares of light mirrored away that are drawn as bars of one scale; none without a coating."""
+    if is_coated(laid):
+        spread = eye.luminous_reflectance.as_made.whole_lens
+        yield (BAR_HARD_COAT if eye.uncoated.hard_coat_only else BAR_BARE, eye.uncoated.whole_lens)
+        yield (BAR_WITH, eye.luminous_reflectance.whole_lens if spread is None else spread[2])
 
 
-BAR_WITHOUT = mark("Mirrored away without a coating")
-BAR_WITH = mark("Mirrored away with yours")
+BAR_BARE = mark("Mirrored away by bare lenses")
+BAR_HARD_COAT = mark("Mirrored away with a hard coat only")
+BAR_WITH = mark("Mirrored away by yours, at most")
 
 
 def figures_of(sheet: Sheet) -> Mapping[str, Figure]:

@@ -28,30 +28,37 @@ LINES: dict[str, str] = {
     "for-far-to-near": mark(
         "They are made for far, screen and near. Look ahead for far. Lower your eyes, not your head, to read."
     ),
-    "for-wear": mark("Wear them when you need to see clearly at these distances."),
     # what was chosen
-    "chosen-lens": mark("Lens: %(material)s"),
+    "chosen-design": mark("Kind of lens: %(design)s"),
+    "chosen-lens": mark("Material: %(material)s"),
     "chosen-coating": mark("Coating on both sides: %(coating)s"),
     "chosen-coating-front": mark("Front side: %(coating)s"),
     "chosen-coating-back": mark("Side next to the eye: %(coating)s"),
     "chosen-tint": mark("Tint: %(tint)s"),
     "chosen-price": mark("Price of the pair of lenses: %(price)s"),
     # why: computed figures
-    "mirrors-bare": mark("Without a coating, these lenses would mirror away about %(bare_percent)s %% of the light."),
-    "mirrors-hard-coat": mark(
-        "With a hard coat only, these lenses would mirror away about %(bare_percent)s %% of the light."
+    "mirrors-against-bare": mark(
+        "Your lenses mirror away %(low_percent)s to %(high_percent)s %% of the light. Bare lenses mirror away %(bare_percent)s %%."
     ),
-    "mirrors-coated": mark(
-        "With your coating it is %(low_percent)s to %(high_percent)s %%. Each pair differs a little."
+    "mirrors-against-hard-coat": mark(
+        "Your lenses mirror away %(low_percent)s to %(high_percent)s %% of the light. With a hard coat only it is %(bare_percent)s %%."
     ),
-    "mirrors-coated-stated": mark("With your coating it is about %(mirrored_percent)s %%, by the maker's figure."),
+    "mirrors-stated": mark(
+        "Your lenses mirror away about %(mirrored_percent)s %% of the light, by the maker's figure. Without it: %(bare_percent)s %%."
+    ),
     "mirrors-uncoated": mark("These lenses mirror away about %(mirrored_percent)s %% of the light."),
     "passes": mark("The tinted lens lets about %(luminous_percent)s %% of the light through."),
     "second-image": mark(
         "Light mirrored twice inside a lens makes a second image: here about 1 part in %(parts)s of the light."
     ),
+    "second-image-faint": mark(
+        "Light mirrored twice inside a lens makes a second image. Here it has less than 1 part in 10,000 of the light."
+    ),
     "second-image-coated": mark(
         "Light mirrored twice inside a lens makes a second image. Yours has at most 1 part in %(parts)s of the light, not 1 in %(bare_parts)s."
+    ),
+    "second-image-coated-faint": mark(
+        "Light mirrored twice inside a lens makes a second image. Yours has less than 1 part in 10,000 of the light, not 1 in %(bare_parts)s."
     ),
     # ghosts: two sentences at most
     "may-see-second": mark(
@@ -62,6 +69,7 @@ LINES: dict[str, str] = {
     "may-see-behind": mark("You may see lamps or windows behind you in the lens. Turn your seat or shade the lamp."),
     # what a coating does
     "coating-does": mark("It lets more light through. Others see your eyes better."),
+    "coating-does-tinted": mark("It takes away most light mirrored off the back. Others see less glare on the front."),
     "coating-does-not": mark("It does not stop all reflections. It does not make the lens stronger."),
     "coating-glare": mark("Glare that arises inside the eye stays."),
     "coating-smears": mark("Smears show more on a coated lens. It is not dirtier; no reflection hides them."),

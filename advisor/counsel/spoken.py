@@ -44,13 +44,16 @@ def ghosts_of(option: OptionFigures, *, paths: Iterable[str]) -> list[Ghost]:
     return [ghost for eye in eyes for ghost in eye.ghosts if ghost.path in wanted]
 
 
-def worst_ghost(option: OptionFigures, *, paths: Iterable[str] = ("ahead-inner",)) -> Ghost | None:
-    """Return the ghost with the greatest visibility level, or None where none is computed.
+def worst_ghost(
+    option: OptionFigures, *, paths: Iterable[str] = ("ahead-inner",), haze: bool | None = None
+) -> Ghost | None:
+    """Return the ghost with the greatest visibility level, or None where none is computed; of haze alone or without.
 
     Scenes past the range of the threshold model (daylight, office, stage) are told by contrast and never ranked by it.
     """
     found = ghosts_of(option, paths=paths)
     known = [ghost for ghost in found if ghost.visibility_level is not None and not ghost.past_range]
+    known = [ghost for ghost in known if haze is None or bool(ghost.haze) == haze]
     return max(known, key=lambda ghost: ghost.visibility_level or 0.0, default=None)
 
 

@@ -71,7 +71,7 @@ def wearer_sheet(
 
 def _bars(sheet: Sheet, chosen: Language) -> list[dict[str, Any]]:
     """Return the bars of a sheet: lengths in drawing units on one scale, the longest filling three quarters."""
-    most = max(share for _, share in sheet.bars) or 1.0
+    most = max((share for _, share in sheet.bars), default=0.0) or 1.0
     return [
         {
             "label": label,
@@ -122,6 +122,7 @@ def order_slip(
             "dbl_mm": case.dbl_mm,
             "ed_mm": case.ed_mm,
             "rim_word": RIM_WORDS[case.rim],
+            "defaults_used": case.defaults_used,
             "fonts": fonts,
             "cautions": _cautions(computed, index, chosen),
             "declined": [f"{part.key}{f' ({part.by})' if part.by else ''}" for part in visit.declined or ()],
