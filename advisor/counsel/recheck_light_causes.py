@@ -12,9 +12,9 @@ from advisor.counsel.comparison import Ghost, OptionFigures
 from advisor.counsel.phrases import Phrase, say
 from advisor.counsel.recheck_answer import Level
 from advisor.counsel.recheck_lens import OnFile, behind_contrast, eyes_of, most, worst_second
-from advisor.counsel.sheet import HUE_WORDS
 from advisor.counsel.spoken import LEAST_CONTRAST_BEHIND, SPOKEN, ghost_phrase
 from advisor.counsel.stock import BARE
+from advisor.counsel.words import HUES
 from advisor.optics.visibility import VERDICTS
 
 LIKELY_LEVEL, POSSIBLE_LEVEL, HAZE_LEVEL = 3.0, 0.4, 1.0
@@ -183,7 +183,7 @@ def film_or_tint(lens: OnFile) -> Rating:
     eyes = eyes_of(lens.option)
     if not eyes:
         return Rating("not worked out")
-    hue = HUE_WORDS[eyes[0].residual_colour.front.hue]
+    hue = HUES[eyes[0].residual_colour.front.hue]
     why = Phrase("hue", {"hue": hue, "luminous_percent": 100.0 * eyes[0].luminous_transmittance})
     coloured = lens.laid.tint is not None or lens.laid.front_face.has_film
     return Rating("possible" if coloured else "unlikely", (why,))

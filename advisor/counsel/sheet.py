@@ -16,6 +16,7 @@ from advisor.counsel.phrases import Figure, Phrase, mark
 from advisor.counsel.sheet_texts import HEADINGS, LINES
 from advisor.counsel.spoken import from_behind, worst_ghost
 from advisor.counsel.stock_items import IN_PLACE, Item
+from advisor.counsel.words import HUES
 from advisor.errors import TwolightError
 from advisor.optics.visibility import VERDICTS
 
@@ -252,21 +253,9 @@ def _coating(eye: EyeFigures, laid: Laid) -> Iterable[Phrase]:
         yield Phrase("coating-blue", {"blue_percent": 100.0 * blue})
     hue = eye.residual_colour.front.hue
     if laid.front_face.has_film and eye.luminous_reflectance.front >= LEAST_COLOURED and hue != "neutral":
-        yield Phrase("coating-colour", {"hue": HUE_WORDS[hue]})
+        yield Phrase("coating-colour", {"hue": HUES[hue]})
     else:
         yield Phrase("coating-colour-varies")
-
-
-HUE_WORDS: Mapping[str, str] = {
-    "neutral": mark("neutral"),
-    "red": mark("red"),
-    "gold": mark("gold"),
-    "green": mark("green"),
-    "teal": mark("teal"),
-    "blue": mark("blue"),
-    "purple": mark("purple"),
-    "pink": mark("pink"),
-}
 
 
 def _first_days(computed: Computed, laid: Laid) -> Iterable[Phrase]:

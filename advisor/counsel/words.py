@@ -50,5 +50,16 @@ PLACES: Mapping[str, str] = {
     "frame.ed_mm": mark("ED"),
 }
 
+HUES: Mapping[str, str] = {
+    "neutral": mark("neutral"),
+    "red": mark("red"),
+    "gold": mark("gold"),
+    "green": mark("green"),
+    "teal": mark("teal"),
+    "blue": mark("blue"),
+    "purple": mark("purple"),
+    "pink": mark("pink"),
+}
+
 # What ``say`` looks up for figures that are lists of names.
 WORD_TEXTS: dict[str, str] = {WORD + name: text for name, text in (*QUESTIONS.items(), *PLACES.items())}

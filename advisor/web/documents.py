@@ -85,12 +85,7 @@ def _bars(sheet: Sheet, chosen: Language) -> list[dict[str, Any]]:
 
 
 def order_slip(
-    visit: Visit,
-    stock: Range,
-    *,
-    number: int | None = None,
-    today: dt.date | None = None,
-    fonts: str = "print-fonts",
+    visit: Visit, stock: Range, *, number: int | None = None, today: dt.date | None = None, fonts: str = "print-fonts"
 ) -> str:
     """Return the order slip as HTML, in the language of the screen.
 
@@ -103,41 +98,16 @@ def order_slip(
     computed = compute(visit, stock, today=today)
     index = choose(computed, number=number)
     order = order_of(computed, index=index, translator=chosen)
-    case, laid = computed.case, computed.laid[index]
-    return page(
-        "paper/order.html",
-        {
-            "order": {**asdict(order), "eyes": [_eye_row(eye) for eye in order.eyes]},
-            "laid": laid,
-            "shop": stock.shop,
-            "date": case.date,
-            "reference": visit.reference,
-            "keeps_add": laid.design.kind in ("bifocal", "progressive"),
-            "tested_vertex_mm": case.tested_vertex_mm,
-            "fitted_vertex_mm": case.fitted_vertex_mm,
-            "tilt_deg": case.tilt_deg,
-            "wrap_deg": case.wrap_deg,
-            "a_mm": case.a_mm,
-            "b_mm": case.b_mm,
-            "dbl_mm": case.dbl_mm,
-            "ed_mm": case.ed_mm,
-            "rim_word": RIM_WORDS[case.rim],
-            "defaults_used": case.defaults_used,
-            "fonts": fonts,
-            "cautions": _cautions(computed, index, chosen),
-            "declined": [f"{part.key}{f' ({part.by})' if part.by else ''}" for part in visit.declined or ()],
-        },
-        code=chosen.language,
-    )
+    own = {
+        "order": {**asdict(order), "eyes": [_eye_row(eye) for eye in order.eyes]},
+        "cautions": _cautions(computed, index, chosen),
+        "declined": [f"{part.key}{f' ({part.by})' if part.by else ''}" for part in visit.declined or ()],
+    }
+    return page("paper/order.html", _slip(computed, index, fonts=fonts) | own, code=chosen.language)
 
 
 def bench_slip(
-    visit: Visit,
-    stock: Range,
-    *,
-    number: int | None = None,
-    today: dt.date | None = None,
-    fonts: str = "print-fonts",
+    visit: Visit, stock: Range, *, number: int | None = None, today: dt.date | None = None, fonts: str = "print-fonts"
 ) -> str:
     """Return the workshop's bench slip as HTML, in the language of the screen.
 
@@ -150,31 +120,37 @@ def bench_slip(
     computed = compute(visit, stock, today=today)
     index = choose(computed, number=number)
     bench = bench_of(computed, index=index, translator=chosen)
+    own = {
+        "bench": bench,
+        "eyes": [{**vars(eye), "word": EYE_WORDS[eye.order.eye]} for eye in bench.eyes],
+        "sides": [word for word, _ in SIDES],
+        "places": PLACE_TEXTS,
+        "hints": [say(hint, HINTS, chosen) for hint in bench.hints],
+    }
+    return page("paper/bench.html", _slip(computed, index, fonts=fonts) | own, code=chosen.language)
+
+
+def _slip(computed: Computed, index: int, *, fonts: str) -> dict[str, Any]:
+    """Return what the slips for supplier and workshop have in common: the lens, the frame and how it sits."""
     case, laid = computed.case, computed.laid[index]
-    return page(
-        "paper/bench.html",
-        {
-            "bench": bench,
-            "eyes": [{**vars(eye), "word": EYE_WORDS[eye.order.eye]} for eye in bench.eyes],
-            "sides": [word for word, _ in SIDES],
-            "places": PLACE_TEXTS,
-            "hints": [say(hint, HINTS, chosen) for hint in bench.hints],
-            "laid": laid,
-            "shop": stock.shop,
-            "date": case.date,
-            "reference": visit.reference,
-            "keeps_add": laid.design.kind in ("bifocal", "progressive"),
-            "tilt_deg": case.tilt_deg,
-            "wrap_deg": case.wrap_deg,
-            "a_mm": case.a_mm,
-            "b_mm": case.b_mm,
-            "dbl_mm": case.dbl_mm,
-            "ed_mm": case.ed_mm,
-            "rim_word": RIM_WORDS[case.rim],
-            "fonts": fonts,
-        },
-        code=chosen.language,
-    )
+    return {
+        "laid": laid,
+        "shop": case.stock.shop,
+        "date": case.date,
+        "reference": case.visit.reference,
+        "keeps_add": laid.design.kind in ("bifocal", "progressive"),
+        "tested_vertex_mm": case.tested_vertex_mm,
+        "fitted_vertex_mm": case.fitted_vertex_mm,
+        "tilt_deg": case.tilt_deg,
+        "wrap_deg": case.wrap_deg,
+        "a_mm": case.a_mm,
+        "b_mm": case.b_mm,
+        "dbl_mm": case.dbl_mm,
+        "ed_mm": case.ed_mm,
+        "rim_word": RIM_WORDS[case.rim],
+        "defaults_used": case.defaults_used,
+        "fonts": fonts,
+    }
 
 
 def _eye_row(eye: Any) -> Mapping[str, Any]:
