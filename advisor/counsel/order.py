@@ -32,6 +32,7 @@ REASONS: dict[str, str] = {
     "not-asked-one_good_eye": mark("Nobody asked whether one eye is much weaker."),
     "not-asked-driving": mark("Nobody asked whether the wearer drives."),
     "not-asked-child": mark("Neither the age nor whether the wearer is a child is known."),
+    "nothing-chosen": mark("No option is marked as to be ordered."),
     "refused": mark("This option cannot be made: %(reason)s"),
 }
 EYE_WORDS: Mapping[Eye, str] = {"right": mark("right"), "left": mark("left")}

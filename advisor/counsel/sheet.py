@@ -40,6 +40,10 @@ class NoSuchOption(TwolightError):
     """An option that is not laid out, or cannot be made, was asked for on paper."""
 
 
+class NothingChosen(NoSuchOption):
+    """Several options are laid out and none is marked as to be ordered."""
+
+
 @dataclass(frozen=True)
 class Block:
     """One part of a sheet: a heading and its lines."""
@@ -67,31 +71,29 @@ class Sheet:
 
 
 def choose(computed: Computed, *, number: int | None, answer: Comparison | None = None) -> int:
-    """Return the index of the option a sheet or slip is about.
+    """Return the index of the option a paper is about.
 
-    ``number`` counts from 1. Left out: what was ordered, else what the ``answer`` recommends or ranks first among the
-    options laid out, else the first option that can be made and is not the baseline, else the first that can be made.
+    ``number`` counts from 1. Left out: what was ordered, else the only one that can be made. A sheet may go on from
+    there: with an ``answer``, what it recommends or ranks first among the options laid out. An order never guesses.
 
     Raises
     ------
     NoSuchOption
-        If it is not laid out or cannot be made.
+        If it is not laid out, cannot be made, or nobody has said which one.
     """
     laid, visit = computed.laid, computed.case.visit
-    if number is not None:
-        if number > len(laid):
-            raise NoSuchOption(f"There is no option {number}; {len(laid)} are laid out.")
-        index: int | None = number - 1
-    else:
-        index = visit.ordered
     makeable = [option.index for option in laid if not option.refused]
+    if number is not None and number > len(laid):
+        raise NoSuchOption(f"There is no option {number}; {len(laid)} are laid out.")
+    index = visit.ordered if number is None else number - 1
+    if index is None and len(makeable) == 1:
+        index = makeable[0]
     if index is None and answer is not None and answer.advice is not None:
         best = answer.advice.recommended
-        index = best.index if best is not None else None
-        index = next(iter(answer.advice.ranking or ()), None) if index is None else index
-    if index is None:
-        others = [k for k in makeable if k != (visit.baseline or 0)]
-        index = next(iter(others or makeable), None)
+        ranked = [best.index] if best is not None and best.index is not None else answer.advice.ranking or ()
+        index = next(iter(ranked), None)
+    if index is None and makeable:
+        raise NothingChosen("Nobody has said which option: mark one as to be ordered, or give its number.")
     if index is None or index not in makeable:
         raise NoSuchOption("This option cannot be made, so there is nothing to print; choose another one.")
     return index
@@ -128,7 +130,11 @@ def wearer_sheet(computed: Computed, answer: Comparison, *, index: int, price: s
         Block("do", "do", tuple(care_lines(answered, kind="do"))),
         Block("dont", "dont", tuple(care_lines(answered, kind="dont"))),
         Block("first-days", "lines", tuple(_first_days(computed, laid))),
-        Block("come-back", "lines", _phrases("back-fit", "back-unclear", "back-second", "back-damage", "back-soon")),
+        Block(
+            "come-back",
+            "lines",
+            _phrases("back-fit", "back-unclear", "back-sick", "back-second", "back-damage", "back-soon"),
+        ),
         Block("notes", "lines", tuple(c for c in cautions if c.code not in (*NOT_FOR, *SAID_ELSEWHERE))),
     ]
     return Sheet(
@@ -219,7 +225,7 @@ def _second_image(eye: EyeFigures, *, coated: bool) -> Phrase:
         return (
             Phrase("second-image-coated", parts | {"bare_parts": without}) if coated else Phrase("second-image", parts)
         )
-    if coated and without <= MOST_PARTS:
+    if coated and without <= MOST_PARTS / 2:  # else the two numbers say the same
         return Phrase("second-image-coated-faint", {"bare_parts": without})
     return Phrase("second-image-faint")
 

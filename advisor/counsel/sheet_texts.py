@@ -71,7 +71,7 @@ LINES: dict[str, str] = {
     "coating-does": mark("It lets more light through. Others see your eyes better."),
     "coating-does-tinted": mark("It takes away most light mirrored off the back. Others see less glare on the front."),
     "coating-does-not": mark("It does not stop all reflections. It does not make the lens stronger."),
-    "coating-glare": mark("Glare that arises inside the eye stays."),
+    "coating-glare": mark("Glare that starts inside the eye stays."),
     "coating-smears": mark("Smears show more on a coated lens. It is not dirtier; no reflection hides them."),
     "coating-blue": mark(
         "It turns away about %(blue_percent)s %% of the blue light. Trials found no relief for tired eyes."
@@ -95,9 +95,10 @@ LINES: dict[str, str] = {
     "first-keep-old": mark("Keep your old pair as a spare."),
     # when to come back
     "back-fit": mark("They slide, pinch or hurt. We adjust them for free."),
-    "back-unclear": mark("Things are not clear, or you feel sick or get headaches after two weeks."),
+    "back-unclear": mark("You do not see clearly in them. Come back at once."),
+    "back-sick": mark("You still feel sick or get headaches after some days."),
     "back-second": mark("You see a second light beside a lamp, or a reflection that bothers you."),
-    "back-damage": mark("The lens is loose, scratched, peeling or crazed."),
+    "back-damage": mark("The lens is loose, scratched, peeling or full of fine cracks."),
     "back-soon": mark(
         "Night glare slowly grows, or you see rings round lights without pain. Have your eyes tested soon."
     ),

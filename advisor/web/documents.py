@@ -11,10 +11,10 @@ from advisor.counsel.bench import HINTS, PLACE_TEXTS, SIDES, bench_of
 from advisor.counsel.caution_texts import CAUTION_TEXTS
 from advisor.counsel.cautions import cautions_for
 from advisor.counsel.compare import Computed, answer_of, compute, lens_light
-from advisor.counsel.order import EYE_WORDS, order_of
+from advisor.counsel.order import EYE_WORDS, NotReady, missing, order_of
 from advisor.counsel.phrases import Phrase, say
 from advisor.counsel.regions import region_of
-from advisor.counsel.sheet import SHEET_TEXTS, Sheet, choose
+from advisor.counsel.sheet import SHEET_TEXTS, NothingChosen, Sheet, choose
 from advisor.counsel.sheet import wearer_sheet as sheet_content
 from advisor.counsel.stock import Range
 from advisor.counsel.visit import Visit
@@ -96,7 +96,7 @@ def order_slip(
     """
     chosen = language(SOURCE_LANGUAGE)
     computed = compute(visit, stock, today=today)
-    index = choose(computed, number=number)
+    index = _ordered(computed, number, chosen)
     order = order_of(computed, index=index, translator=chosen)
     own = {
         "order": {**asdict(order), "eyes": [_eye_row(eye) for eye in order.eyes]},
@@ -118,7 +118,7 @@ def bench_slip(
     """
     chosen = language(SOURCE_LANGUAGE)
     computed = compute(visit, stock, today=today)
-    index = choose(computed, number=number)
+    index = _ordered(computed, number, chosen)
     bench = bench_of(computed, index=index, translator=chosen)
     own = {
         "bench": bench,
@@ -128,6 +128,14 @@ def bench_slip(
         "hints": [say(hint, HINTS, chosen) for hint in bench.hints],
     }
     return page("paper/bench.html", _slip(computed, index, fonts=fonts) | own, code=chosen.language)
+
+
+def _ordered(computed: Computed, number: int | None, chosen: Language) -> int:
+    """Return the option to be ordered; where none is marked, everything else that is missing is told with it."""
+    try:
+        return choose(computed, number=number)
+    except NothingChosen as error:
+        raise NotReady([*missing(computed), Phrase("nothing-chosen")], translator=chosen) from error
 
 
 def _slip(computed: Computed, index: int, *, fonts: str) -> dict[str, Any]:

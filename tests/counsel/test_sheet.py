@@ -172,7 +172,7 @@ def expected_lines(option: dict[str, Any], cautions: list[dict[str, Any]]) -> It
     if coated and now <= 10_000:
         parts = f"{two_figures(now)} of the light, not 1 in {two_figures(before)}"
         yield f"{twice}. Yours has at most 1 part in {parts}."
-    elif coated and before <= 10_000:
+    elif coated and before <= 5_000:
         yield f"{twice}. Yours has less than 1 part in 10,000 of the light, not 1 in {two_figures(before)}."
     elif now <= 10_000:
         yield f"{twice}: here about 1 part in {two_figures(now)} of the light."
