@@ -152,7 +152,7 @@ def _as_table(file: Path, visit: "Visit", answer: "Comparison", stock: "Range") 
     from advisor.web.table import text_table
 
     name = visit.wearer.name if visit.wearer and visit.wearer.name else file.name
-    return text_table(answer, title=name, currency=stock.shop.currency or "EUR", language=language("en")) + "\n"
+    return text_table(answer, title=name, currency=stock.currency, language=language("en")) + "\n"
 
 
 def _write(out: Path, content: bytes) -> None:
@@ -263,7 +263,7 @@ def recheck(
         return
     name = visit.wearer.name if visit.wearer and visit.wearer.name else file.name
     click.echo(
-        recheck_text(answer, title=name, currency=stock.shop.currency or "EUR", language=english), nl=False
+        recheck_text(answer, title=name, currency=stock.currency, language=english), nl=False
     )  # fmt: skip
 
 

@@ -34,12 +34,14 @@ def test_signs_stand_before_tests_and_tests_before_causes() -> None:
         text.index(words) for words in ("Signs for an eye doctor", "Quick tests", "1. Light mirrored")
     )
     assert signs < tests < cause
-    assert "No lens is offered until every sign is answered." in text
+    assert "No lens is offered until every sign is answered" in text
     assert "visibility level: " in text
 
 
 def test_an_answer_by_json_reads_back_by_its_model() -> None:
-    output = run("recheck", WEAK, "--says", "second light", "--option", 1, "--json", *NO_SIGNS).output
+    output = run(
+        "recheck", WEAK, "--says", "second light", "--option", 1, "--json", *NO_SIGNS, "--answer", "cover-eye=no"
+    ).output
     answer = RecheckAnswer.model_validate_json(output)
     assert (answer.format, answer.offer, answer.option) == ("twolight-recheck-1", "open", 0)
     assert {sign.answer for sign in answer.signs} == {"no"}
@@ -71,8 +73,26 @@ def test_a_file_of_measurements_that_cannot_be_read_is_told_in_a_line(tmp_path: 
     assert str(measured) in result.output
 
 
-def test_words_and_answers_nobody_knows_are_told(tmp_path: Path) -> None:
-    assert "second-light" in run("recheck", WEAK, "--says", "lorem", status=1).output
+def test_words_nobody_knows_are_told_with_the_signs() -> None:
+    text = run("recheck", WEAK, "--says", "lorem").output
+    assert text.index("Signs for an eye doctor") < text.index("No complaint is understood")
+    assert "a second light, double headlights" in text
+    assert "today-loss" in text
+
+
+def test_what_helps_for_nothing_is_not_headed_by_no_lens() -> None:
+    text = run("recheck", WEAK, "--says", "they slide down", *NO_SIGNS).output
+    assert "No other lens is called for: what helps stands below." in text
+    assert "No lens is offered" not in text
+    assert "Measure now" not in text
+
+
+def test_a_sign_is_told_even_where_the_option_cannot_be_worked_out() -> None:
+    text = run("recheck", WEAK, "--says", "I see flashes", "--option", 9).output
+    assert "To an eye doctor today." in text
+
+
+def test_answers_nobody_knows_are_told(tmp_path: Path) -> None:
     assert "cover-eye" in run("recheck", WEAK, "--says", "glare", "--answer", "cover-eyes=yes", status=1).output
     assert "KEY=yes" in run("recheck", WEAK, "--says", "glare", "--answer", "cover-eye", status=2).output
     assert "no such file" in run("recheck", tmp_path / "gone.json", "--says", "glare", status=1).output

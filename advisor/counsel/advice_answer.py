@@ -16,11 +16,12 @@ from advisor.counsel.limits import limits_of
 from advisor.counsel.musts import must_texts, musts
 from advisor.counsel.phrases import Phrase, Translator, say
 from advisor.counsel.pool import finished
-from advisor.counsel.reasons import because, beside_recommended, gives_up, would_change
+from advisor.counsel.reasons import because, beside_recommended, gives_up
 from advisor.counsel.remedies import free_first
 from advisor.counsel.value import criteria
 from advisor.counsel.weighed import scenes_that_count
 from advisor.counsel.whole_range import rows_of
+from advisor.counsel.would_change import would_change
 
 Content = dict[str, Any]
 TEXTS: Mapping[str, str] = ADVICE_TEXTS

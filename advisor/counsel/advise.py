@@ -18,9 +18,10 @@ from advisor.counsel.phrases import Phrase
 from advisor.counsel.pool import Pool, conditions_broken, finished, fits, pool_of
 from advisor.counsel.priorities import level_weights, levels_of, priority_sets
 from advisor.counsel.reach import wanted
+from advisor.counsel.stock_items import Scene
 from advisor.counsel.value import Criterion, criteria, leeway, values_of, worth
 from advisor.counsel.visit import DailyLife
-from advisor.counsel.weighed import figures_of, scenes_that_count
+from advisor.counsel.weighed import figures_of, scenes_that_count, with_tints_alike
 from advisor.counsel.whole_range import WholeRange, material_key, work_out
 
 Floats = NDArray[np.float64]
@@ -37,6 +38,7 @@ class Field:
     eligible: NDArray[np.bool_]
     broken: Mapping[int, Sequence[Phrase]]
     figures: Mapping[str, Floats]
+    scenes: tuple[Scene, ...]
     levels: Mapping[str, int]
     values: Floats
     weights: Floats
@@ -124,6 +126,7 @@ def field_of(case: Case, laid: Sequence[Laid], *, imbalance_prism_d: float) -> F
     computed = work_out(judged, pool.laid)
     levels = levels_of(case)
     figures = figures_of(case, computed)
+    alike = with_tints_alike(figures, computed)
     chosen = [criteria()[key] for key in levels]
     eligible = fits(computed)
     broken = {k: conditions_broken(case, computed, k, imbalance_prism_d=imbalance_prism_d) for k in range(pool.given)}
@@ -142,8 +145,9 @@ def field_of(case: Case, laid: Sequence[Laid], *, imbalance_prism_d: float) -> F
         eligible=eligible,
         broken=broken,
         figures=figures,
+        scenes=judged.scenes,
         levels=levels,
-        values=values_of(np.stack([figures[key] for key in levels], axis=-1), chosen),
+        values=values_of(np.stack([alike[key] for key in levels], axis=-1), chosen),
         weights=level_weights(list(levels.values())),
         imbalance_prism_d=imbalance_prism_d,
     )
@@ -199,7 +203,10 @@ def _if_first(field: Field, chosen: int, among: Sequence[int]) -> tuple[tuple[st
         levels = {**field.levels, key: max(field.levels.values()) + 1}
         moved = replace(field, weights=level_weights(list(levels.values())))
         best = moved.best(among)
-        if best is not None and best != chosen and not moved.level([best], chosen)[0]:
+        column = list(field.levels).index(key)
+        if best is None or best == chosen or field.values[best, column] <= field.values[chosen, column]:
+            continue  # what is no better on a criterion does not win by it, but by what then counts less
+        if not moved.level([best], chosen)[0]:
             found.setdefault(best, key)
     return tuple((key, k) for k, key in found.items())
 

@@ -15,6 +15,7 @@ from advisor.counsel.form import SMALLER_BY_MM, LensForms
 from advisor.counsel.ghosts import GhostFigures
 from advisor.counsel.laid_out import NOTE_TEXTS, REFUSAL_TEXTS, Laid
 from advisor.counsel.light import DAYLIGHT, Light, as_made_spreads, as_made_whole, estimated_ranges, made_strengths
+from advisor.counsel.names import coating_name, material_name, tint_name
 from advisor.counsel.phrases import Figure, Phrase, Translator, mark, say
 from advisor.counsel.prescription import EYES
 from advisor.counsel.spectra import tint_axes
@@ -46,7 +47,7 @@ def caution(applied: Applied, translator: Translator) -> Content:
     words = CAUTION_TEXTS[applied.key]
     return {
         "key": applied.key,
-        "text": say(Phrase(applied.key, applied.figures), {applied.key: words.text}, translator),
+        "text": say(Phrase(applied.key, applied.figures), {applied.key: words.text_for(applied.figures)}, translator),
         "rule": translator.gettext(words.rule),
         "source": translator.gettext(words.source),
         "figures": dict(applied.figures),
@@ -55,15 +56,15 @@ def caution(applied: Applied, translator: Translator) -> Content:
 
 def label_of(option: Laid, translator: Translator) -> str:
     """Return a short name of an option: material, coatings and tint, as the shop calls them."""
-    front, back = (coating.label or coating.key for coating in (option.front, option.back))
-    words = [option.material.label or option.material.key]
+    front, back = (coating_name(coating, translator) for coating in (option.front, option.back))
+    words = [material_name(option.material, translator)]
     words.append(
         front
         if front == back
         else translator.gettext(mark("%(front)s in front, %(back)s behind")) % {"front": front, "back": back}
     )
     if option.tint is not None:
-        words.append(option.tint.label or f"{translator.number(100 * option.tint.luminous_transmittance, digits=0)} %")
+        words.append(tint_name(option.tint, translator))
     if option.design.kind != "single-vision":
         words.insert(0, option.design.label or option.design.key)
     return ", ".join(words)

@@ -13,14 +13,13 @@ from numpy.typing import NDArray
 
 from advisor.counsel.answer import place
 from advisor.counsel.case import Case
-from advisor.counsel.cautions import is_glass
 from advisor.counsel.compare import Computed
-from advisor.counsel.form import is_protective
+from advisor.counsel.form import centration_pd_mm, is_protective
 from advisor.counsel.laid_out import Laid
+from advisor.counsel.materials import is_glass, is_polycarbonate, softens_with_heat
 from advisor.counsel.order import EyeOrder, order_of
 from advisor.counsel.phrases import Phrase, Translator, mark
 from advisor.counsel.prescription import EYES, in_minus_cylinder
-from advisor.counsel.stock_items import Material
 from advisor.optics.centration import optical_centre
 from advisor.optics.thickness import LEAST_EDGE_MM
 
@@ -41,7 +40,6 @@ PLACE_TEXTS: Mapping[str, str] = {
     "nose down": mark("nose down"),
 }
 THICK_EDGE_MM = 3.0
-HEAT_SOFT_FROM_INDEX = 1.70
 
 HINTS: dict[str, str] = {
     "grip-pad": mark("Slippery top layer: grip pad, and check the axis again after edging."),
@@ -88,12 +86,6 @@ class Bench:
     hints: tuple[Phrase, ...]
 
 
-def is_polycarbonate(material: Material) -> bool:
-    """Tell polycarbonate by what it is called, or as the tough material of its index and Abbe number."""
-    named = "polycarbonate" in f"{material.key} {material.label or ''}".lower()
-    return named or bool(material.tough and 1.57 <= material.index <= 1.61 and material.abbe <= 32.0)
-
-
 def bench_of(computed: Computed, *, index: int, translator: Translator) -> Bench:
     """Return the bench slip of one option.
 
@@ -115,7 +107,7 @@ def _eye(computed: Computed, order: EyeOrder, *, index: int, k: int) -> EyeBench
         case.a_mm,
         b_mm=case.b_mm,
         dbl_mm=case.dbl_mm,
-        monocular_pd_mm=float(case.pd_mm[k]),
+        monocular_pd_mm=float(centration_pd_mm(case, computed.laid)[index, k]),
         height_mm=float(case.height_mm[k]),
     )
     shape = forms.shape
@@ -167,9 +159,9 @@ def _of_the_coating(laid: Laid) -> Iterator[Phrase]:
 def _of_the_material(case: Case, laid: Laid) -> Iterator[Phrase]:
     if is_polycarbonate(laid.material):
         yield Phrase("no-acetone")
-    if laid.material.index >= HEAT_SOFT_FROM_INDEX and not is_glass(laid):
+    if softens_with_heat(laid.material):
         yield Phrase("heat-soft")
-    if is_glass(laid):
+    if is_glass(laid.material):
         yield Phrase("glass")
     if case.stock.shop.region == "us":
         yield Phrase("us-impact")

@@ -16,6 +16,7 @@ from advisor.optics.outline import outline_box
 CHILD_UNDER = 16  # restricted supply begins here in the UK; common practice elsewhere, no source
 OLDER_FROM = 65  # common practice, no source
 VERTEX_MATTERS_FROM_D = 5.0  # common practice, no source
+DAY_PAIR = "night-driving"  # what is turned down where a dark pair is ordered for the day by one who drives at night
 
 # Stated defaults; every one of them is common practice, no source.
 DEFAULTS: dict[str, float | str] = {
@@ -84,6 +85,23 @@ class Case:
     def has_add(self) -> bool:
         """Whether either eye has an add."""
         return any((self.eye(eye).add or 0.0) > 0.0 for eye in EYES)
+
+    @property
+    def has_balance(self) -> bool:
+        """Whether either lens is a balance lens, before an eye that sees little."""
+        return any(self.eye(eye).balance for eye in EYES)
+
+    @property
+    def relies_on_one_eye(self) -> bool:
+        """Whether there is one good eye: by the answer, else by a balance lens, which stands for one."""
+        answer = self.life("one_good_eye")
+        return answer == "yes" or (answer == "not-asked" and self.has_balance)
+
+    @property
+    def never_at_night(self) -> bool:
+        """Whether nobody drives at night in this pair: never at all, or a pair for the day is on file."""
+        kept = any(entry.key == DAY_PAIR for entry in self.visit.declined or ())
+        return kept or "never" in (self.life("night_driving"), self.life("driving"))
 
     @property
     def is_child(self) -> bool:

@@ -4,10 +4,13 @@ A caution always defers to local rules and licensed practice. The wearer's words
 empty the caution is for the optician alone. When each applies is decided in ``cautions.py``.
 """
 
+import re
+from collections.abc import Collection
 from dataclasses import dataclass
 
 from advisor.counsel.phrases import mark
 
+PLACEHOLDER = re.compile(r"%\((\w+)\)s")
 PRACTICE = mark("common practice, no source")
 
 
@@ -19,6 +22,11 @@ class CautionText:
     sheet: str
     rule: str
     source: str
+    other_texts: tuple[str, ...] = ()
+
+    def text_for(self, figures: Collection[str]) -> str:
+        """Return the wording whose figures these are: the text, or one of the others where some of them are not told."""
+        return next((t for t in self.other_texts if set(PLACEHOLDER.findall(t)) == set(figures)), self.text)
 
 
 CAUTION_TEXTS: dict[str, CautionText] = {
@@ -128,7 +136,7 @@ CAUTION_TEXTS: dict[str, CautionText] = {
         PRACTICE,
     ),
     "not-for-driving-design": CautionText(
-        mark("Reading and occupational lenses: not for driving, walking about or stairs."),
+        mark("Made for near or for the screen alone: not for driving, walking about or stairs."),
         mark("These are near glasses. Do not drive, walk about or use stairs in them."),
         mark("No driving, walking about or stairs."),
         PRACTICE,
@@ -174,6 +182,20 @@ CAUTION_TEXTS: dict[str, CautionText] = {
         mark("No heat above what the supplier states."),
         PRACTICE,
     ),
+    "solvent-soft-material": CautionText(
+        mark(
+            "Polycarbonate crazes where solvents touch it: no acetone, no nail varnish remover, no sprays on the lens."
+        ),
+        mark("Keep solvents and sprays off these lenses. They can craze them."),
+        mark("Where solvents are about, a tough material that bears them first; acetone never on polycarbonate."),
+        PRACTICE,
+    ),
+    "no-power": CautionText(
+        mark("No power is written for either eye: ask whether a prescription was left out."),
+        "",
+        mark("Lenses without power are ordered only where that is meant."),
+        PRACTICE,
+    ),
     "vertex-missing": CautionText(
         mark("A power of 5.00 or more without a tested vertex distance: ask the prescriber."),
         "",
@@ -211,6 +233,10 @@ CAUTION_TEXTS: dict[str, CautionText] = {
         mark("Your new lenses are quite different from the old ones. Floors and steps may look odd at first."),
         mark("Over 1.00 D or 10 degrees of axis; over 0.75 D for older or unsteady wearers."),
         PRACTICE,
+        other_texts=(
+            mark("The power changes by up to %(changed_by_d)s D against the worn pair."),
+            mark("The axis turns by up to %(turn_deg)s degrees against the worn pair."),
+        ),
     ),
     "restricted-supply": CautionText(
         mark("Supply to a person under 16 or registered sight-impaired is restricted to registered staff in the UK."),
@@ -220,7 +246,7 @@ CAUTION_TEXTS: dict[str, CautionText] = {
     ),
     "steps": CautionText(
         mark(
-            "Older or unsteady wearers and multifocals: look down with the head on steps; a distance pair for active walkers."
+            "%(why)s: on steps look down with the head, not with the eyes alone; a distance pair for those who walk outdoors a lot."
         ),
         mark("On steps, move your head down to look. Take extra care outdoors."),
         mark("A single-vision distance pair helps those who walk outdoors a lot."),

@@ -7,7 +7,8 @@ an answer of "never" could make needless (a tint at night) is shown until that a
 Choices made here, where the rule leaves one: frequent impact is the answer "often"; a balance lens stands for one good
 eye unless the wearer says otherwise; a tint is judged by the finished lens, mirrored light and all, so a strongly
 mirroring face counts as well; a photochromic lens is judged for the night in its clear state, as nothing darkens it
-then, and for the rule "never for driving" in its darkest, as the sun or the cold may bring it there on the road.
+then, and for the rule "never for driving" in its darkest, as the sun or the cold may bring it there on the road; a
+tint whose key or label says grey or brown has no strong colour to ask about, and one that names none may have.
 """
 
 import math
@@ -17,8 +18,10 @@ from dataclasses import dataclass
 from advisor.counsel.case import OLDER_FROM, VERTEX_MATTERS_FROM_D, Case
 from advisor.counsel.faces import blue_turned_away
 from advisor.counsel.laid_out import Laid
-from advisor.counsel.phrases import Figure
+from advisor.counsel.materials import is_glass, is_polycarbonate, softens_with_heat
+from advisor.counsel.phrases import Figure, mark
 from advisor.counsel.prescription import EYES, SphereCylinder, power_along_d
+from advisor.counsel.reach import near_only
 
 NIGHT_DRIVING_LEAST = 0.75  # ISO 12312-1 as quoted in public guidance
 DRIVING_LEAST = 0.08
@@ -29,7 +32,7 @@ UV_CUT_ENOUGH_NM = 380.0
 ONE_EYE_CHANGE_D = 0.5  # one eye changed by so much more than the other; a modelling choice
 ROUNDING = 1e-9  # a figure that meets a limit exactly is not beyond it
 MULTIFOCAL = ("bifocal", "progressive")
-NEAR_ONLY = ("reading", "occupational")
+PLAIN_COLOURS = ("grey", "gray", "brown")  # tints that say so in their key or label are no strong colour
 
 Figures = Mapping[str, Figure]
 Applies = Callable[[Case, Laid, "LensLight"], Figures | None]
@@ -57,11 +60,6 @@ def _when(condition: bool, figures: Figures = NOTHING) -> Figures | None:
     return figures if condition else None
 
 
-def is_glass(option: Laid) -> bool:
-    """Whether a material is glass, told by its density: no lens resin reaches 2 g/cm3."""
-    return option.material.density_g_cm3 >= 2.0
-
-
 def _has_film(option: Laid) -> bool:
     return option.front_face.has_film or option.back_face.has_film
 
@@ -87,12 +85,7 @@ def _child(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
 
 
 def _one_eye(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
-    answer = case.life("one_good_eye")
-    return _when(answer == "yes" or (answer == "not-asked" and _has_balance(case)))
-
-
-def _has_balance(case: Case) -> bool:
-    return any(case.eye(eye).balance for eye in EYES)
+    return _when(case.relies_on_one_eye)
 
 
 def _impact(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
@@ -100,7 +93,7 @@ def _impact(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
 
 
 def _glass_breaks(_case: Case, option: Laid, _light: LensLight) -> Figures | None:
-    return _when(is_glass(option))
+    return _when(is_glass(option.material))
 
 
 def _not_for_night_driving_tint(_case: Case, _option: Laid, light: LensLight) -> Figures | None:
@@ -123,7 +116,10 @@ def shown_percent(fraction: float) -> float:
 
 
 def _tint_colour_unknown(_case: Case, option: Laid, _light: LensLight) -> Figures | None:
-    return _when(_is_tinted(option))
+    if option.tint is None:
+        return None
+    called = f"{option.tint.key} {option.tint.label or ''}".lower()
+    return _when(not any(colour in called for colour in PLAIN_COLOURS))
 
 
 def _uv_not_darkness(_case: Case, option: Laid, _light: LensLight) -> Figures | None:
@@ -147,8 +143,8 @@ def _polarising(_case: Case, option: Laid, _light: LensLight) -> Figures | None:
     return _when(_kind(option) == "polarising")
 
 
-def _not_for_driving_design(_case: Case, option: Laid, _light: LensLight) -> Figures | None:
-    return _when(option.design.kind in NEAR_ONLY)
+def _not_for_driving_design(case: Case, option: Laid, _light: LensLight) -> Figures | None:
+    return _when(near_only(case, option.design))
 
 
 def _no_near(case: Case, option: Laid, _light: LensLight) -> Figures | None:
@@ -159,7 +155,7 @@ def _near_imbalance(case: Case, option: Laid, light: LensLight) -> Figures | Non
     concerned = case.has_add or case.life("first_multifocal") == "yes" or one_eye_changed(case)
     enough = not _below(light.imbalance_prism_d, IMBALANCE_FROM_PRISM_D)
     return _when(
-        concerned and enough and option.design.kind not in NEAR_ONLY and not _has_balance(case),
+        concerned and enough and not near_only(case, option.design) and not case.has_balance,
         {"imbalance_prism_d": light.imbalance_prism_d},
     )
 
@@ -202,7 +198,17 @@ def _drilled(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
 
 
 def _heat_soft(_case: Case, option: Laid, _light: LensLight) -> Figures | None:
-    return _when(option.material.index >= 1.70 and not is_glass(option))
+    return _when(softens_with_heat(option.material))
+
+
+def _solvents(case: Case, option: Laid, _light: LensLight) -> Figures | None:
+    return _when(is_polycarbonate(option.material) and case.says("sprays_solvents"))
+
+
+def _no_power(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
+    eyes = [case.eye(eye) for eye in EYES]
+    none = not any(eye.sphere or eye.cylinder or eye.add for eye in eyes)
+    return _when(none and not any(part.amount for eye in eyes for part in eye.prism or ()))
 
 
 def _vertex_missing(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
@@ -225,7 +231,7 @@ def _rx_old(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
 
 def _unequal_add(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
     right, left = (case.eye(eye).add or 0.0 for eye in EYES)
-    return _when(right != left and not _has_balance(case))
+    return _when(right != left and not case.has_balance)
 
 
 def _add_for_age(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
@@ -267,16 +273,24 @@ def _large_change(case: Case, _option: Laid, _light: LensLight) -> Figures | Non
     if changed is None:
         return None
     limit = LARGE_CHANGE_OLDER_D if is_unsteady(case) else LARGE_CHANGE_D
-    large = changed[0] > limit + ROUNDING or changed[1] > LARGE_TURN_DEG + ROUNDING
-    return _when(large, {"changed_by_d": changed[0], "turn_deg": changed[1]})
+    figures: dict[str, Figure] = {}  # what is not changed by much is not told
+    if changed[0] > limit + ROUNDING:
+        figures["changed_by_d"] = changed[0]
+    if changed[1] > LARGE_TURN_DEG + ROUNDING:
+        figures["turn_deg"] = changed[1]
+    return _when(bool(figures), figures)
 
 
 def _restricted_supply(case: Case, _option: Laid, _light: LensLight) -> Figures | None:
     return _when(case.stock.shop.region == "uk" and case.is_child)
 
 
+UNSTEADY, LOOKING_DOWN = mark("Older or unsteady wearers"), mark("Near power below")
+
+
 def _steps(case: Case, option: Laid, _light: LensLight) -> Figures | None:
-    return _when(is_unsteady(case) or option.design.kind in MULTIFOCAL)
+    unsteady = is_unsteady(case)
+    return _when(unsteady or option.design.kind in MULTIFOCAL, {"why": UNSTEADY if unsteady else LOOKING_DOWN})
 
 
 def _not_promise_none(_case: Case, option: Laid, _light: LensLight) -> Figures | None:
@@ -302,6 +316,7 @@ CAUTIONS: Mapping[str, Applies] = {
     "not-for-night-driving-tint": _not_for_night_driving_tint,
     "not-for-driving-design": _not_for_driving_design,
     "no-near": _no_near,
+    "no-power": _no_power,
     "rx-old": _rx_old,
     "vertex-missing": _vertex_missing,
     "vertex-differs": _vertex_differs,
@@ -314,6 +329,7 @@ CAUTIONS: Mapping[str, Applies] = {
     "steps": _steps,
     "drilled-caution": _drilled,
     "heat-soft-material": _heat_soft,
+    "solvent-soft-material": _solvents,
     "uv-not-darkness": _uv_not_darkness,
     "night-tint-no-benefit": _night_tint_no_benefit,
     "photochromic-windscreen": _photochromic,

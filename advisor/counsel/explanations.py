@@ -5,8 +5,9 @@ from dataclasses import dataclass
 
 from advisor.counsel.case import Case
 from advisor.counsel.laid_out import Laid
+from advisor.counsel.names import OWN_COATING
 from advisor.counsel.phrases import mark
-from advisor.counsel.stock_items import Coating
+from advisor.counsel.stock_items import IN_PLACE, Coating
 
 Given = float | str | None
 
@@ -42,7 +43,7 @@ class Explanation:
 
 
 def _film(coating: Coating) -> str:
-    return coating.label or coating.key
+    return coating.label or (OWN_COATING if coating.key == IN_PLACE else coating.key)
 
 
 SPHERE = PutIn(mark("sphere as made"), lambda at: at.laid.powers[at.eye].sphere_d, 2, "D")
@@ -87,6 +88,10 @@ _SPREAD_FORMULA = mark(
 _SPREAD_SOURCE = mark("A modelling choice of this program, not a measurement of any plant.")
 _SPREAD_LEAVES_OUT = mark("Errors of a layer's index, and a plant that is worse or better than that.")
 
+_SMALLER = mark("The same lens in a rim 4 mm narrower and lower in proportion, with the same PD and bridge.")
+_SMALLER_SOURCE = mark("Geometry, as for the thickest edge; it costs nothing beside a dearer index.")
+_SMALLER_LEAVES_OUT = mark("Whether such a frame suits the face.")
+
 EXPLANATIONS: dict[str, Explanation] = {
     "price": Explanation(
         mark(
@@ -120,6 +125,17 @@ EXPLANATIONS: dict[str, Explanation] = {
         mark("Bevel, groove and drill holes; the frame."),
         (*_LENS, DENSITY, *_RIM),
         ("centre_mm", "edge_thickest_mm"),
+    ),
+    "smaller_edge_mm": Explanation(_SMALLER, _SMALLER_SOURCE, _SMALLER_LEAVES_OUT, (*_LENS, *_RIM)),
+    "smaller_weight_g": Explanation(_SMALLER, _SMALLER_SOURCE, _SMALLER_LEAVES_OUT, (*_LENS, DENSITY, *_RIM)),
+    "reflectance_limit": Explanation(
+        mark(
+            "The most both faces may mirror alike so that the worst second image of the scene named keeps a visibility "
+            "level of 0.4, found by halving."
+        ),
+        mark("The same ghost, veil and threshold models as the second image; roads by night alone, where they hold."),
+        mark("A coating that mirrors more than its design as made; light from behind, which is told by contrast."),
+        (INDEX, TINT, AGE, VERTEX),
     ),
     "edge_thinnest_mm": Explanation(
         mark("t = centre + sag of the back − sag of the front + prism wedge, the least along the rim."),

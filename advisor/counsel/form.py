@@ -14,6 +14,7 @@ from advisor.counsel.case import Case
 from advisor.counsel.choices import for_eye
 from advisor.counsel.laid_out import Laid
 from advisor.counsel.prescription import EYES, SphereCylinder
+from advisor.counsel.reach import near_only
 from advisor.counsel.stock_items import Material
 from advisor.optics.centration import CentredRim, centred_rim, minimum_blank, optical_centre
 from advisor.optics.eye import ENTRANCE_PUPIL_MM
@@ -31,7 +32,6 @@ Floats = NDArray[np.float64]
 SMALLER_BY_MM = 4.0
 PROTECTIVE_CENTRE_MM = 2.0  # child, one good eye, frequent impact: common practice, no source
 ONE_CURVE_WITHIN_D = 1.0
-NEAR_ONLY = ("reading", "occupational")
 EYE_INDEX = np.array([0, 1])
 
 
@@ -81,7 +81,7 @@ def abbe_d(material: Material) -> float:
 
 def is_protective(case: Case) -> bool:
     """Whether a tough lens with a centre of 2.0 mm or more comes first: child, one good eye, frequent impact."""
-    return case.is_child or case.life("one_good_eye") == "yes" or case.life("impact") == "often"
+    return case.is_child or case.relies_on_one_eye or case.life("impact") == "often"
 
 
 def least_centre_mm(case: Case, material: Material) -> float:
@@ -119,7 +119,7 @@ def _box_rims(a_mm: float, b_mm: float, ed_mm: float | None) -> Floats:
 
 def centration_pd_mm(case: Case, laid: Sequence[Laid]) -> Floats:
     """Return where each lens is centred, (option, eye): a lens for near alone at the near PD, others at the PD."""
-    return np.array([case.near_pd_mm if option.design.kind in NEAR_ONLY else case.pd_mm for option in laid])
+    return np.array([case.near_pd_mm if near_only(case, option.design) else case.pd_mm for option in laid])
 
 
 def centred_rims(case: Case, laid: Sequence[Laid], *, smaller_by_mm: float = 0.0) -> CentredRim:

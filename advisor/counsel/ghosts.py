@@ -15,6 +15,7 @@ from advisor.counsel.case import Case
 from advisor.counsel.form import EYE_INDEX, LensForms
 from advisor.counsel.laid_out import Laid
 from advisor.counsel.light import Light, estimated_ranges, made_strengths, scene_light
+from advisor.counsel.reach import NEAR_DESIGNS
 from advisor.counsel.spectra import tint_axes
 from advisor.optics.eye import ENTRANCE_PUPIL_MM
 from advisor.optics.ghost_inputs import LensOnFace, Wearer
@@ -124,7 +125,7 @@ def lens_on_face(
 def wearer_of(case: Case, laid: Sequence[Laid]) -> Wearer:
     """Return the eye behind the lenses; one that looks through a near lens keeps its distance correction."""
     far = None
-    if any(option.design.kind in ("reading", "occupational") for option in laid):
+    if any(option.design.kind in NEAR_DESIGNS for option in laid):
         distance = [case.compensated(eye) for eye in ("right", "left")]
         written = np.array([(power.sphere_d, power.cylinder_d) for power in distance])
         powers, _ = principal_meridians(written[:, 0], cylinder_d=written[:, 1])

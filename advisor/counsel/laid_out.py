@@ -11,6 +11,7 @@ from advisor.counsel.faces import Face, face_of, known_coating, sold_coating
 from advisor.counsel.phrases import Figure, Phrase, mark
 from advisor.counsel.prescription import EYES, SphereCylinder, power_for_design
 from advisor.counsel.pricing import best_offer, matching_offers, outside_limits, parts_price
+from advisor.counsel.reach import add_made_d
 from advisor.counsel.stock import BARE, Range
 from advisor.counsel.stock_items import Coating, Design, Item, Material, Offer, Scene, Tint
 from advisor.errors import TwolightError
@@ -197,7 +198,7 @@ def _one(case: Case, option: Option, index: int, first: Laid | None) -> Laid:
     tint = stock.tint_of(option.tint)
     right, left = (
         power_for_design(
-            case.compensated(eye), add_d=case.eye(eye).add or 0.0, kind=design.kind, near_share=design.near_share
+            case.compensated(eye), add_d=add_made_d(case, eye, design), kind=design.kind, near_share=design.near_share
         )
         for eye in EYES
     )

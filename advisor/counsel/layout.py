@@ -8,11 +8,17 @@ from advisor.counsel.phrases import Translator, mark
 
 Value = float | None
 POINTS = mark("points")  # what percentages differ by
+TIMES = mark("times")
+ONE_PART = mark("1 in %(parts)s")
+TIMES_FROM = 1.05  # a smaller ratio is called the same
 
 
 @dataclass(frozen=True)
 class Row:
-    """One row: a stable key, its words, how the figure is read from an eye, and how it is written."""
+    """One row: a stable key, its words, how the figure is read from an eye, and how it is written.
+
+    A row in ``parts`` writes a small strength as "1 in 72,000"; such rows, and those told in times, differ by a ratio.
+    """
 
     key: str
     label: str
@@ -21,22 +27,46 @@ class Row:
     unit: str = ""
     scale: float = 1.0
     open: bool = False
+    parts: bool = False
 
     def text(self, value: Value, translator: Translator) -> str:
         """Return the figure with its unit, or a dash where there is none."""
         if value is None:
             return "–"
+        if self.parts:
+            return translator.gettext(ONE_PART) % {"parts": _parts(value, translator)}
         shown = translator.number(value * self.scale, digits=self.digits)
-        return f"{shown} {self.unit}".rstrip()
+        return f"{shown} {translator.gettext(self.unit)}".rstrip()
 
     def difference(self, value: Value, base: Value, translator: Translator) -> str:
         """Return by how much a figure as shown differs from the baseline's as shown; empty where none shows."""
         if value is None or base is None:
             return ""
+        if self.parts or self.unit == TIMES:
+            return times_apart(value, base, translator)
         shown, shown_base = (round(figure * self.scale, self.digits) for figure in (value, base))
         number = translator.number(shown - shown_base, digits=self.digits, signed=True)
         unit = translator.gettext(POINTS) if self.unit == "%" else self.unit
         return f"{number} {unit}".rstrip() if shown != shown_base else ""
+
+
+def two_digits(value: float) -> float:
+    """Round to two digits, as many as a strength is known to."""
+    return float(f"{value:.1e}")
+
+
+def _parts(strength: float, translator: Translator) -> str:
+    return translator.number(two_digits(1.0 / strength), digits=0) if strength > 0.0 else "∞"
+
+
+def times_apart(value: float, base: float, translator: Translator) -> str:
+    """Return how many times weaker or stronger one figure is than another; empty where about the same."""
+    least, most = sorted((value, base))
+    if least <= 0.0 or most / least < TIMES_FROM:
+        return ""
+    times = two_digits(most / least)
+    text = mark("%(times)s times weaker") if value < base else mark("%(times)s times stronger")
+    return translator.gettext(text) % {"times": translator.number(times, digits=1 if times < 10 else 0)}
 
 
 def ghost_strength(path: str) -> Callable[[EyeFigures], Value]:
@@ -45,6 +75,13 @@ def ghost_strength(path: str) -> Callable[[EyeFigures], Value]:
     def read(eye: EyeFigures) -> Value:
         found = [ghost.strength for ghost in eye.ghosts if ghost.path == path]
         return max(found) if found else None
+
+    return read
+
+
+def _smaller(name: str) -> Callable[[EyeFigures], Value]:
+    def read(eye: EyeFigures) -> Value:
+        return None if eye.smaller_frame is None else eye.smaller_frame.get(name)
 
     return read
 
@@ -61,6 +98,8 @@ ROWS: tuple[Row, ...] = (
     Row("edge_thickest_mm", mark("thickest edge"), lambda eye: eye.edge_thickest_mm, 1, "mm", open=True),
     Row("centre_mm", mark("centre"), lambda eye: eye.centre_mm, 1, "mm", open=True),
     Row("weight_g", mark("weight of the lens"), lambda eye: eye.weight_g, 1, "g", open=True),
+    Row("smaller_edge_mm", mark("frame 4 mm smaller: thickest edge"), _smaller("edge_thickest_mm"), 1, "mm"),
+    Row("smaller_weight_g", mark("frame 4 mm smaller: weight"), _smaller("weight_g"), 1, "g"),
     Row("edge_thinnest_mm", mark("thinnest edge"), lambda eye: eye.edge_thinnest_mm, 1, "mm"),
     Row("front_power_d", mark("front curve"), lambda eye: eye.front_power_d, 2, "D"),
     Row("blank_mm", mark("smallest blank"), lambda eye: eye.blank_mm, 0, "mm"),
@@ -75,14 +114,20 @@ ROWS: tuple[Row, ...] = (
     Row("first_pass_loss", mark("first-pass loss"), lambda eye: eye.luminous_reflectance.first_pass_loss, 2, "%", 100),
     Row("whole_lens", mark("whole lens mirrors"), lambda eye: eye.luminous_reflectance.whole_lens, 2, "%", 100),
     Row("luminous_transmittance", mark("light passed"), lambda eye: eye.luminous_transmittance, 1, "%", 100),
-    Row("ahead-inner", mark("mirrored twice inside, from ahead"), ghost_strength("ahead-inner"), 3, "%", 100),
+    Row("ahead-inner", mark("mirrored twice inside, from ahead"), ghost_strength("ahead-inner"), parts=True),
     Row("behind-back", mark("off the back, from behind"), ghost_strength("behind-back"), 2, "%", 100),
     Row("behind-front", mark("off the front, from behind"), ghost_strength("behind-front"), 2, "%", 100),
-    Row("cornea-back", mark("off the eye, then the back"), ghost_strength("cornea-back"), 3, "%", 100),
-    Row("cornea-front", mark("off the eye, then the front"), ghost_strength("cornea-front"), 3, "%", 100),
-    Row("observer_contrast", mark("window seen over the eye"), lambda eye: eye.observer_contrast, 2, ""),
+    Row("cornea-back", mark("off the eye, then the back"), ghost_strength("cornea-back"), parts=True),
+    Row("cornea-front", mark("off the eye, then the front"), ghost_strength("cornea-front"), parts=True),
+    Row("observer_contrast", mark("window over the eye behind it"), lambda eye: eye.observer_contrast, 2, TIMES),
     Row("colour_fringe_prism_d", mark("colour fringe at the side"), lambda eye: eye.colour_fringe_prism_d, 2, "Δ"),
-    Row("magnification_percent", mark("size of what is seen"), lambda eye: eye.magnification_percent, 1, "%"),
+    Row(
+        "magnification_percent",
+        mark("size of what is seen, against no glasses"),
+        lambda eye: eye.magnification_percent,
+        1,
+        "%",
+    ),
 )
 
 
@@ -95,7 +140,7 @@ def rows_present(comparison: Comparison) -> list[Row]:
 def two_eyes(row: Row, option: OptionFigures, translator: Translator) -> str:
     """Return the figure of both eyes: one where they are shown alike, else right and left parted by a stroke."""
     texts = [row.text(row.value(eye), translator) for eye in (option.right, option.left) if eye is not None]
-    return parted(texts, unit=row.unit) if texts else "–"
+    return parted(texts, unit=translator.gettext(row.unit)) if texts else "–"
 
 
 def parted(texts: Sequence[str], *, unit: str) -> str:
@@ -123,10 +168,4 @@ def second_image_strength(option: OptionFigures) -> float | None:
 
 def strength_words(strength: float, translator: Translator) -> str:
     """Return a strength as a part of the light that makes it: "1 part in 630 of the light itself"."""
-    parts = translator.number(two_digits(1.0 / strength), digits=0) if strength > 0.0 else "∞"
-    return translator.gettext(PART_OF_THE_LIGHT) % {"parts": parts}
-
-
-def two_digits(value: float) -> float:
-    """Round to two digits, as many as a strength is known to."""
-    return float(f"{value:.1e}")
+    return translator.gettext(PART_OF_THE_LIGHT) % {"parts": _parts(strength, translator)}

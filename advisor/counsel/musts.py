@@ -11,17 +11,27 @@ from dataclasses import dataclass
 from functools import cache
 
 from advisor.counsel.case import Case
-from advisor.counsel.cautions import CAUTIONS, MULTIFOCAL, ROUNDING, LensLight, is_glass, shown_percent
+from advisor.counsel.cautions import CAUTIONS, MULTIFOCAL, ROUNDING, LensLight, shown_percent
 from advisor.counsel.form import PROTECTIVE_CENTRE_MM, is_protective
 from advisor.counsel.laid_out import Laid
+from advisor.counsel.materials import is_glass
 from advisor.counsel.phrases import Figure, Phrase, mark
-from advisor.counsel.reach import blur_at, far_is_needed, near_is_needed, screen_cm, screen_is_needed, usable_d
+from advisor.counsel.reach import (
+    blur_at,
+    far_is_needed,
+    intermediate_add_d,
+    near_is_needed,
+    screen_cm,
+    screen_is_measured,
+    screen_is_needed,
+    usable_d,
+    wanted,
+)
 from advisor.resources import data_file
 
 Figures = Mapping[str, Figure]
 Limits = Mapping[str, float]
 NOTHING: Figures = {}
-CURRENCY = "EUR"
 
 
 @dataclass(frozen=True)
@@ -91,7 +101,7 @@ def _tough_child(case: Case, option: Laid, _lens: Finished, _limits: Limits) -> 
 
 
 def _tough_one_eye(case: Case, option: Laid, _lens: Finished, _limits: Limits) -> Figures | None:
-    return _when(_applies("one-eye", case, option) and option.material.tough is not True)
+    return _when(case.relies_on_one_eye and option.material.tough is not True)
 
 
 def _tough_impact(case: Case, option: Laid, _lens: Finished, _limits: Limits) -> Figures | None:
@@ -108,10 +118,9 @@ LIKELY, UNASKED = mark("a blow is likely here"), mark("whether a blow is likely 
 
 
 def _glass(case: Case, option: Laid, _lens: Finished, _limits: Limits) -> Figures | None:
-    if not is_glass(option):
+    if not is_glass(option.material):
         return None
-    known = is_protective(case) or _applies("one-eye", case, option)
-    if known or case.says("impact") or case.says("two_wheeler"):
+    if is_protective(case) or case.says("impact") or case.says("two_wheeler"):
         return {"why": LIKELY}
     return _when(case.life("impact") == "not-asked", {"why": UNASKED})
 
@@ -125,8 +134,7 @@ def _heat(case: Case, option: Laid, _lens: Finished, _limits: Limits) -> Figures
 
 
 def _night_driving_tint(case: Case, _option: Laid, lens: Finished, limits: Limits) -> Figures | None:
-    never = "never" in (case.life("night_driving"), case.life("driving"))
-    return _too_dark(lens.light.transmittance, limits) if not never else None
+    return None if case.never_at_night else _too_dark(lens.light.transmittance, limits)
 
 
 def _driving_tint(case: Case, _option: Laid, lens: Finished, limits: Limits) -> Figures | None:
@@ -144,6 +152,10 @@ def _no_far(case: Case, option: Laid, _lens: Finished, _limits: Limits) -> Figur
     return _when(far_is_needed(case) and blur_at(case, option.design, 0.0, usable=0.0) > ROUNDING)
 
 
+def _near_alone(case: Case, option: Laid, _lens: Finished, _limits: Limits) -> Figures | None:
+    return _when(not far_is_needed(case) and option.design.kind in MULTIFOCAL)
+
+
 def _no_near(case: Case, option: Laid, _lens: Finished, _limits: Limits) -> Figures | None:
     add = max(case.eye("right").add or 0.0, case.eye("left").add or 0.0)
     return _when(near_is_needed(case) and option.design.kind == "single-vision", {"add_d": add})
@@ -156,6 +168,11 @@ def _no_screen(case: Case, option: Laid, _lens: Finished, limits: Limits) -> Fig
     blur = blur_at(case, option.design, 100.0 / distance, usable=usable_d(case))
     figures: Figures = {"screen_cm": distance, "blur_d": blur, "limit_blur_d": limits["blur_d"]}
     return _when(blur > limits["blur_d"], figures)
+
+
+def _whole_add(case: Case, option: Laid, _lens: Finished, _limits: Limits) -> Figures | None:
+    unknown = not screen_is_measured(case) and intermediate_add_d(case) is None
+    return _when(wanted(case) == "intermediate" and option.design.kind == "reading" and unknown)
 
 
 def _design_without_add(case: Case, option: Laid, _lens: Finished, _limits: Limits) -> Figures | None:
@@ -194,7 +211,7 @@ def _price_unknown(case: Case, option: Laid, _lens: Finished, _limits: Limits) -
 
 def currency_of(case: Case) -> str:
     """Return the currency the shop's prices are in."""
-    return case.stock.shop.currency or CURRENCY
+    return case.stock.currency
 
 
 def _not_offered(case: Case, option: Laid, _lens: Finished, _limits: Limits) -> Figures | None:
@@ -212,8 +229,10 @@ CONDITIONS: Mapping[str, Condition] = {
     "night-driving-tint": _night_driving_tint,
     "driving-tint": _driving_tint,
     "no-far": _no_far,
+    "near-alone": _near_alone,
     "no-near": _no_near,
     "no-screen": _no_screen,
+    "whole-add": _whole_add,
     "design-without-add": _design_without_add,
     "fitting-height": _fitting_height,
     "near-imbalance": _near_imbalance,
@@ -222,8 +241,9 @@ CONDITIONS: Mapping[str, Condition] = {
     "not-offered": _not_offered,
 }
 OF_THE_FINISHED_LENS = frozenset(("protective-centre", "night-driving-tint", "driving-tint"))
-OF_THE_DESIGN = frozenset(("no-far", "no-near", "no-screen", "design-without-add", "fitting-height"))
-OF_THE_PRICE = frozenset(("price-limit", "price-unknown"))
+OF_THE_DESIGN = frozenset(
+    ("no-far", "near-alone", "no-near", "no-screen", "whole-add", "design-without-add", "fitting-height")
+)
 
 
 def declined(case: Case) -> frozenset[str]:

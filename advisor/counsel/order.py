@@ -1,7 +1,7 @@
 """The order: what the supplier must know, and why it is not ready while something is missing.
 
 Nothing on an order may be a guess: a figure that a default stands in for, or a safety question that was never asked,
-holds it back.
+holds it back. So does every condition of ``data/musts.toml`` that the chosen pair breaks and no refusal on file lifts.
 """
 
 import math
@@ -9,11 +9,13 @@ from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 
 from advisor.counsel.case import VERTEX_MATTERS_FROM_D, Case
-from advisor.counsel.compare import Computed
+from advisor.counsel.compare import Computed, lens_light
 from advisor.counsel.form import least_centre_mm
 from advisor.counsel.laid_out import REFUSAL_TEXTS
+from advisor.counsel.musts import Finished, broken_by, must_texts, musts
 from advisor.counsel.phrases import Phrase, Translator, mark, say
 from advisor.counsel.prescription import EYES, Eye, SphereCylinder, written_prism
+from advisor.counsel.reach import near_only
 from advisor.errors import TwolightError
 from advisor.optics.thickness import LEAST_EDGE_MM
 
@@ -35,6 +37,9 @@ REASONS: dict[str, str] = {
     "nothing-chosen": mark("No option is marked as to be ordered."),
     "refused": mark("This option cannot be made: %(reason)s"),
 }
+IF_DECLINED = mark("Choose another pair, or record who turned this down.")
+IF_FOR_LESS = mark("Choose another pair, or say what this one is for.")
+OF_THE_PURPOSE = ("no-far", "near-alone", "no-near")
 EYE_WORDS: Mapping[Eye, str] = {"right": mark("right"), "left": mark("left")}
 
 
@@ -43,9 +48,17 @@ class NotReady(TwolightError):
 
     def __init__(self, reasons: Sequence[Phrase], *, translator: Translator) -> None:
         self.reasons = tuple(reasons)
-        self.lines = [say(reason, REASONS, translator) for reason in reasons]
+        self.lines = [_line(reason, translator) for reason in reasons]
         head = translator.gettext(mark("Not ready to order:"))
         super().__init__("\n".join([head, *(f"- {line}" for line in self.lines)]))
+
+
+def _line(reason: Phrase, translator: Translator) -> str:
+    """Return a reason as a sentence; what a wearer may turn down says so."""
+    line = say(reason, REASONS | must_texts(), translator)
+    liftable = any(must.key == reason.code and must.lifted_by for must in musts())
+    hint = IF_DECLINED if liftable else IF_FOR_LESS if reason.code in OF_THE_PURPOSE else ""
+    return f"{line} {translator.gettext(hint)}" if hint else line
 
 
 @dataclass(frozen=True)
@@ -73,9 +86,17 @@ class Order:
     least_edge_mm: float
 
 
-def missing(computed: Computed) -> list[Phrase]:
-    """Return every reason why nothing of this visit can be ordered yet."""
-    return list(_missing_figures(computed.case)) + list(_missing_answers(computed.case))
+def missing(computed: Computed, *, index: int | None = None) -> list[Phrase]:
+    """Return every reason why nothing of this visit can be ordered yet; of one option, every must it breaks as well."""
+    found = [*_missing_figures(computed.case), *_missing_answers(computed.case)]
+    if index is not None and not computed.laid[index].refused:
+        found += broken_by(computed.case, computed.laid[index], finished_pair(computed, index))
+    return found
+
+
+def finished_pair(computed: Computed, index: int) -> Finished:
+    """Return what the conditions need to know of one option as it would be made."""
+    return Finished(lens_light(computed, index), float(computed.forms.shape.centre_mm[index].min()))
 
 
 def _missing_figures(case: Case) -> Iterable[Phrase]:
@@ -114,7 +135,7 @@ def order_of(computed: Computed, *, index: int, translator: Translator) -> Order
         With every reason, while something needed is missing or the option cannot be made.
     """
     laid = computed.laid[index]
-    reasons = missing(computed)
+    reasons = missing(computed, index=index)
     reasons += [Phrase("refused", {"reason": say(r.phrase, REFUSAL_TEXTS, translator)}) for r in laid.refused]
     if reasons:
         raise NotReady(reasons, translator=translator)
@@ -133,6 +154,8 @@ def _eye_order(computed: Computed, eye: Eye, *, index: int, k: int) -> EyeOrder:
     written = case.eye(eye)
     fitting = case.visit.fitting
     side = None if fitting is None else (fitting.right if eye == "right" else fitting.left)
+    measured_mm = None if side is None else side.near_pd_mm
+    near_alone = near_only(case, computed.laid[index].design)
     return EyeOrder(
         eye=eye,
         written=written.power,
@@ -141,7 +164,7 @@ def _eye_order(computed: Computed, eye: Eye, *, index: int, k: int) -> EyeOrder:
         prism=tuple(written_prism(written.prism_vector)),
         balance=bool(written.balance),
         pd_mm=float(case.pd_mm[k]),
-        near_pd_mm=None if side is None else side.near_pd_mm,
+        near_pd_mm=float(case.near_pd_mm[k]) if near_alone else measured_mm,  # what the lens is centred at
         height_mm=float(case.height_mm[k]),
         centre_mm=float(computed.forms.shape.centre_mm[index, k]),
     )

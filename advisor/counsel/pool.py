@@ -10,10 +10,11 @@ from numpy.typing import NDArray
 from advisor.counsel.case import Case
 from advisor.counsel.cautions import LensLight
 from advisor.counsel.choices import Faces, Option, TintRef
-from advisor.counsel.laid_out import Laid, lay_out_options
+from advisor.counsel.laid_out import DARK_FROM, Laid, lay_out_options
+from advisor.counsel.materials import is_glass
 from advisor.counsel.musts import CONDITIONS, OF_THE_DESIGN, OF_THE_FINISHED_LENS, Finished, broken_by, unfinished
 from advisor.counsel.phrases import Phrase
-from advisor.counsel.stock_items import IN_PLACE, Coating, Design, Material
+from advisor.counsel.stock_items import IN_PLACE, Coating, Design, Material, Tint
 from advisor.counsel.whole_range import WholeRange, material_key
 
 Part = TypeVar("Part", Material, Coating)
@@ -64,6 +65,8 @@ def _sold_options(case: Case, laid: Sequence[Laid]) -> Iterator[Option]:
     """Yield what a shop sells: its offers where it lists any, else every part with every other, both faces alike.
 
     Tints are only those laid out, and a clear lens only where one is: a tint is the wearer's choice, not weighed here.
+    A dark tint is also had with a bare front, as sun lenses mostly are: light from behind is what shows in them. Glass
+    is considered only where it is laid out or worn now: it is had on demand (common practice, no source).
     """
     stock = case.stock
     tints = _distinct_tints(laid)
@@ -75,15 +78,35 @@ def _sold_options(case: Case, laid: Sequence[Laid]) -> Iterator[Option]:
                 faces = offer.coating if offer.faces == "both" else Faces(back=offer.coating)
                 yield Option(design=offer.design, material=offer.material, coating=faces, tint=offer.tint)
         return
-    materials: list[str | Material] = [material.key for material in stock.material]
+    had = {option.material.key for option in (*laid, *_worn(case, laid))}
+    sold = [material for material in stock.material if not is_glass(material) or material.key in had]
+    materials: list[str | Material] = [material.key for material in sold]
     materials += _in_place(option.material for option in laid)
     coatings: list[str | Coating] = [coating.key for coating in stock.coating]
     coatings += _in_place(face for option in laid for face in (option.front, option.back))
     for design in designs:
         for material in materials:
             for coating in coatings:
+                if _is_cold(stock.coating_of(coating), stock.material_of(material)):
+                    continue
                 for tint in tints:
                     yield Option(design=design, material=material, coating=coating, tint=tint)
+                    if stock.coating_of(coating).layers != () and is_dark(stock.tint_of(tint)):
+                        yield Option(design=design, material=material, coating=Faces(back=coating), tint=tint)
+
+
+def is_dark(tint: Tint | None) -> bool:
+    """Whether a tint is dark always, not only in the sun."""
+    return tint is not None and tint.luminous_transmittance <= DARK_FROM
+
+
+def _is_cold(coating: Coating, material: Material) -> bool:
+    """Whether a single layer of magnesium fluoride would go on a resin: it is hard only when fired on hot glass.
+
+    It stays among the options where it is laid out or offered (common practice, no source).
+    """
+    films = [film for film, _ in coating.layers or ()]
+    return films == ["MgF2"] and coating.key != IN_PLACE and not is_glass(material)
 
 
 def _in_place(items: Iterable[Part]) -> list[Part]:

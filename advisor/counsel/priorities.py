@@ -11,7 +11,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from advisor.counsel.case import OLDER_FROM, Case
-from advisor.counsel.reach import wanted
+from advisor.counsel.reach import far_is_needed, wanted
 
 Floats = NDArray[np.float64]
 OFTEN, SOMETIMES, NOT_ASKED, DROPPED = 3, 2, 1, 0
@@ -76,14 +76,15 @@ def _asked(case: Case, *questions: str) -> int:
 
 
 def _second_image(case: Case) -> int:
-    if case.life("driving") == "never" and case.life("night_driving") == "not-asked":
+    if case.never_at_night or not far_is_needed(case):  # a near pair is not driven in
         return DROPPED
     return _answer(case, "night_driving")
 
 
-def _transmitted(case: Case) -> int:
+def _passed(case: Case) -> int:
     at_night = case.life("night_driving") == "often"
-    return SOMETIMES if at_night or (case.age_years >= OLDER_FROM and not case.is_default("wearer.birth_year")) else 1
+    older = case.age_years >= OLDER_FROM and not case.is_default("wearer.birth_year")
+    return SOMETIMES if at_night or older else NOT_ASKED
 
 
 def _fringe(case: Case) -> int:
@@ -97,6 +98,8 @@ def _in_between(case: Case) -> int:
 
 def _from_behind(case: Case) -> int:
     level = _answer(case, "lights_behind")
+    if case.life("sun") == "often" and level == NOT_ASKED:
+        level = SOMETIMES  # out in the sun it is behind one half of the time
     named = case.visit.scenes is not None and any(scene.where == "behind" for scene in case.scenes)
     return max(level, SOMETIMES) if named and level else level  # somebody thought of such a light for this wearer
 
@@ -108,7 +111,9 @@ IMPORTANCE: Mapping[str, Callable[[Case], int]] = {
     "thickness": lambda case: _answer(case, "bothered_thickness"),
     "weight": lambda case: _answer(case, "bothered_weight"),
     "fringe": _fringe,
-    "transmitted": _transmitted,
+    # by day a tint takes light away on purpose, and only what the faces take is unwanted
+    "transmitted": lambda case: DROPPED if case.never_at_night else _passed(case),
+    "not-mirrored": lambda case: _passed(case) if case.never_at_night else DROPPED,
     # what a life does to lenses is a fact about it; being bothered is a wish, and only a wish comes first
     "care": lambda case: max(min(_answer(case, *EXPOSURES), SOMETIMES), _answer(case, "bothered_smears")),
     "in-between": _in_between,

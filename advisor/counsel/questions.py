@@ -29,10 +29,6 @@ def _life(*names: str) -> tuple[str, ...]:
     return tuple(f"daily_life.{name}" for name in names)
 
 
-SUN = _life("sun", "light_sensitive")
-VERTEX = ("prescription.vertex_mm",)
-HEIGHTS = tuple(f"fitting.{eye}.height_mm" for eye in EYES)
-
 FIRST: tuple[Question, ...] = (
     Question("drive", mark("Do you drive, and at night?"), _life("driving", "night_driving")),
     Question(

@@ -16,6 +16,7 @@ Offer = Literal["nothing", "after-asking", "remake-as-ordered", "open"]
 Level = Literal["likely", "possible", "unlikely", "not worked out"]
 Outcome = Literal["adjust", "clean", "remake", "refer", "none"]
 Payer = Literal["nobody", "shop", "maker", "wearer"]
+OUTCOMES_TODAY: tuple[Outcome, ...] = ("refer", "none")  # all that may be recorded of a return that is for today
 SignAnswer = Literal["yes", "no", "heard", "not-asked"]
 
 
@@ -110,7 +111,10 @@ class RecheckAnswer(_Part):
     format: Literal["twolight-recheck-1"] = FORMAT
     twolight: str
     reference: str | None = None
-    option: int = Field(description="the lens on file, as an option of the visit counted from 0")
+    option: int | None = Field(
+        description="the lens on file, as an option of the visit counted from 0; null where a sign is there and it "
+        "cannot be worked out"
+    )
     lens: str
     says: str
     complaints: list[Named]

@@ -8,10 +8,12 @@ from typing import Any
 
 from advisor.counsel.case import Case
 from advisor.counsel.choices import Faces, Option
-from advisor.counsel.compare import Computed, answer_of, compare, compute
+from advisor.counsel.compare import Computed, answer_of, compute, lens_light
 from advisor.counsel.comparison import Comparison, EyeFigures, Ghost, OptionFigures
 from advisor.counsel.form import is_protective
 from advisor.counsel.laid_out import Laid
+from advisor.counsel.materials import is_glass
+from advisor.counsel.musts import OF_THE_DESIGN, Finished, broken_by
 from advisor.counsel.phrases import Translator
 from advisor.counsel.sheet import choose
 from advisor.counsel.stock import Range
@@ -19,6 +21,8 @@ from advisor.counsel.stock_items import Coating, Item, Material, Scene
 from advisor.counsel.visit import Visit
 
 NIGHT_BELOW_CD_M2 = 5.0  # about where the mesopic range ends, CIE 191:2010 (from memory)
+# What a lens on file may break already and a remedy for it leaves as it was; every other condition holds for a remedy.
+LEFT_AS_IT_IS = OF_THE_DESIGN | {"near-imbalance", "not-offered", "night-driving-tint", "driving-tint"}
 BEHIND = ("behind-back", "behind-front")
 
 
@@ -88,14 +92,29 @@ class OnFile:
 
     def laid_out(self, options: Iterable[Option], *, stock: Range | None = None, **parts: Any) -> list[OptionFigures]:
         """Return the figures of some options for this wearer, by the same call as the comparison's own."""
-        visit = self.visit.model_copy(update={"options": tuple(options), **parts})
-        answer = compare(visit, stock or self.stock, translator=self.translator, with_advice=False, today=self.today)
-        return answer.options
+        return self._figures(self._computed(options, stock=stock, **parts))
 
-    def offered(self, options: Mapping[str, Option]) -> list[tuple[str, OptionFigures]]:
-        """Return what of some named options can be made and is sold, each with its figures."""
-        found = zip(options, self.laid_out(options.values()), strict=True) if options else ()
-        return [(name, figures) for name, figures in found if not figures.refused and not _outside_offers(figures)]
+    def _computed(self, options: Iterable[Option], *, stock: Range | None = None, **parts: Any) -> Computed:
+        visit = self.visit.model_copy(update={"options": tuple(options), **parts})
+        return compute(visit, stock or self.stock, today=self.today)
+
+    def _figures(self, computed: Computed) -> list[OptionFigures]:
+        return answer_of(computed, translator=self.translator, with_advice=False).options
+
+    def offered(self, options: Mapping[str, Option], *, own_pair: bool = False) -> list[tuple[str, OptionFigures]]:
+        """Return what of some named options can be made, is sold and may be advised to this wearer, with its figures.
+
+        ``own_pair``: a second pair for one task, which need not do what the first is for.
+        """
+        if not options:
+            return []
+        computed = self._computed(options.values())
+        known = LEFT_AS_IT_IS if own_pair else LEFT_AS_IT_IS & _broken(self.computed, 0)
+        return [
+            (name, figures)
+            for k, (name, figures) in enumerate(zip(options, self._figures(computed), strict=True))
+            if not figures.refused and not _outside_offers(figures) and _broken(computed, k) <= known
+        ]
 
     def with_parts(self, **changes: Any) -> Option:
         """Return this lens as an option with some parts changed."""
@@ -106,11 +125,11 @@ class OnFile:
         return [coating for coating in self.stock.coating if coating.layers != ()]
 
     def materials(self) -> list[Material]:
-        """Return the other materials that are no step down in toughness, and tough where this wearer needs it."""
+        """Return the other materials, tough where this one is or this wearer needs it; glass only for glass."""
         here = self.laid.material
         needed = here.tough or is_protective(self.case)
         tough = [m for m in self.stock.material if m.tough or not needed]
-        return [material for material in tough if material != here]
+        return [m for m in tough if m != here and (is_glass(here) or not is_glass(m))]
 
     def night_scenes(self) -> tuple[str, ...]:
         """Return the scenes of lamps ahead at night, else of any lamps ahead."""
@@ -118,17 +137,26 @@ class OnFile:
         night = [scene for scene in ahead if scene.adapting_cd_m2 <= NIGHT_BELOW_CD_M2]
         return tuple(scene.key for scene in night or ahead)
 
-    def behind_scenes(self, *, dark: bool = False) -> tuple[str, ...]:
-        """Return the scenes of light from behind in one state of the tint: the visit's own, windows before lamps."""
-        state = "dark" if dark else "clear"
-        found = [s for s in self.case.scenes if s.where == "behind" and s.tint_state == state]
+    def behind_scenes(self) -> tuple[str, ...]:
+        """Return the scenes of light from behind a clear lens: the visit's own first, windows before lamps."""
+        found = [s for s in self.case.scenes if s.where == "behind" and s.tint_state == "clear"]
         found = [s for s in found if s.key in self.named_scenes] or found
         return tuple(s.key for s in [s for s in found if s.kind == "extended"] or found)
+
+    def scene_name(self, key: str) -> str:
+        """Return what a scene is called."""
+        return next((scene.label or scene.key for scene in self.case.scenes if scene.key == key), key)
 
     def behind_relit(self, relight: Callable[[Scene], dict[str, float]]) -> Range:
         """Return the range with the light of every scene from behind changed."""
         scenes = [s.model_copy(update=relight(s)) if s.where == "behind" else s for s in self.stock.scene]
         return self.stock.model_copy(update={"scene": tuple(scenes)})
+
+
+def _broken(computed: Computed, k: int) -> frozenset[str]:
+    """Return the conditions that an option breaks for this wearer."""
+    finished = Finished(lens_light(computed, k), float(computed.forms.shape.centre_mm[k].min()))
+    return frozenset(phrase.code for phrase in broken_by(computed.case, computed.laid[k], finished))
 
 
 def _outside_offers(option: OptionFigures) -> bool:
@@ -163,11 +191,11 @@ def worst_second(option: OptionFigures, scenes: Iterable[str]) -> Ghost | None:
     return max(found, key=lambda ghost: (ghost.visibility_level or 0.0, ghost.strength), default=None)
 
 
-def behind_contrast(option: OptionFigures, scenes: Iterable[str], paths: Iterable[str] = BEHIND) -> float | None:
-    """Return the greatest contrast of light from behind over what is looked at, or None where none is computed."""
+def worst_behind(option: OptionFigures, scenes: Iterable[str], paths: Iterable[str] = BEHIND) -> Ghost | None:
+    """Return the image of light from behind with the greatest contrast, or None where none is computed."""
     wanted, taken = set(scenes), set(paths)
-    found = [g.contrast for eye in eyes_of(option) for g in eye.ghosts if g.path in taken and g.scene in wanted]
-    return max((contrast for contrast in found if contrast is not None), default=None)
+    found = [g for eye in eyes_of(option) for g in eye.ghosts if g.path in taken and g.scene in wanted]
+    return max((g for g in found if g.contrast is not None), key=lambda ghost: ghost.contrast or 0.0, default=None)
 
 
 def most(option: OptionFigures, figure: str) -> float | None:

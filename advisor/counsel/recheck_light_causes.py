@@ -11,13 +11,14 @@ from advisor.counsel.choices import Faces
 from advisor.counsel.comparison import Ghost, OptionFigures
 from advisor.counsel.phrases import Phrase, say
 from advisor.counsel.recheck_answer import Level
-from advisor.counsel.recheck_lens import OnFile, behind_contrast, eyes_of, most, worst_second
+from advisor.counsel.recheck_lens import OnFile, eyes_of, most, worst_behind, worst_second
+from advisor.counsel.recheck_remedies import NOT_SEEN_LEVEL
 from advisor.counsel.spoken import LEAST_CONTRAST_BEHIND, SPOKEN, ghost_phrase
 from advisor.counsel.stock import BARE
 from advisor.counsel.words import HUES
 from advisor.optics.visibility import VERDICTS
 
-LIKELY_LEVEL, POSSIBLE_LEVEL, HAZE_LEVEL = 3.0, 0.4, 1.0
+LIKELY_LEVEL, HAZE_LEVEL = 3.0, 1.0
 LIKELY_BEHIND = 0.1
 FRINGE_NOTICED_PRISM_D = 0.1  # customary notice level, textbook, memory
 THICK_EDGE_MM = 3.0
@@ -46,16 +47,19 @@ def _second_level(ghost: Ghost, *, apart: bool) -> Level:
     if level >= LIKELY_LEVEL:
         return "likely"
     may = ghost.verdict_range is not None and ghost.verdict_range[1] != VERDICTS[0]
-    return "possible" if level >= POSSIBLE_LEVEL or may else "unlikely"
+    return "possible" if level >= NOT_SEEN_LEVEL or may else "unlikely"
 
 
 def _ghost_words(lens: OnFile, ghost: Ghost) -> dict[str, float | str | None]:
-    scene = next((s.label or s.key for s in lens.case.scenes if s.key == ghost.scene), ghost.scene)
     apart = lens.prescribes_prism and not ghost.spread  # then it is no haze round its lamp, however large
     phrase = ghost_phrase(ghost.model_copy(update={"haze": False}) if apart else ghost)
     level = ghost.visibility_level or 0.0
     shown = lens.translator.number(level, digits=2 if level < 1.0 else 1)
-    return {"ghost": say(phrase, SPOKEN, lens.translator), "visibility_level": shown, "scene": scene}
+    return {
+        "ghost": say(phrase, SPOKEN, lens.translator),
+        "visibility_level": shown,
+        "scene": lens.scene_name(ghost.scene),
+    }
 
 
 def ahead_ghost(lens: OnFile) -> Rating:
@@ -87,11 +91,11 @@ def bare_face(lens: OnFile) -> Rating | None:
 
 
 def _behind(lens: OnFile, path: str) -> Rating:
-    contrast = behind_contrast(lens.option, lens.behind_scenes(), (path,))
-    if contrast is None:
+    ghost = worst_behind(lens.option, lens.behind_scenes(), (path,))
+    if ghost is None or ghost.contrast is None:
         return Rating("not worked out", (Phrase("no-scene"),))
-    scenes = [s.label or s.key for s in lens.case.scenes if s.key in lens.behind_scenes()]
-    why = [Phrase("behind", {"behind_contrast_percent": 100.0 * contrast, "scene": ", ".join(scenes)})]
+    contrast, scene = ghost.contrast, lens.scene_name(ghost.scene)
+    why = [Phrase("behind", {"behind_contrast_percent": 100.0 * contrast, "scene": scene})]
     here, other = lens.laid.front_face, lens.laid.back_face
     if path == "behind-front" and other.has_film and not here.has_film:
         why.append(Phrase("other-face-coated"))

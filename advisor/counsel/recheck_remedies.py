@@ -7,13 +7,14 @@ from advisor.counsel.choices import Faces, Option
 from advisor.counsel.comparison import OptionFigures
 from advisor.counsel.phrases import Figure
 from advisor.counsel.recheck_answer import Outcome
-from advisor.counsel.recheck_lens import OnFile, behind_contrast, most, worst_second
+from advisor.counsel.recheck_lens import OnFile, eyes_of, most, worst_behind, worst_second
 from advisor.counsel.visit import Fitting
 from advisor.optics.visibility import VERDICTS
 
 LEAST_GAIN = 0.1  # a remedy is named where it takes a tenth off its figure or more; a modelling choice
 LEAST_FREE_GAIN = 0.02  # what is adjusted for nothing may gain less
 ALIKE = 1.5  # films within so much of the least are alike: as made they vary more; a modelling choice
+NOT_SEEN_LEVEL = 0.4  # below it a second image is not called one; a modelling choice
 CURVES_OFF_D = (-2.0, -1.0, 1.0, 2.0)
 CLOSER_BY_MM, LEAST_VERTEX_MM = 2.0, 8.0
 BLIND_PASSES = 0.1
@@ -39,7 +40,9 @@ OUTCOMES: Mapping[str, Outcome] = {
     "higher-abbe": "remake", "top-layer": "remake", "replace-same": "remake", "remake-as-pair": "remake",
     "keep-curve": "remake", "near-pair": "remake", "other-design": "remake", "rolled-edge": "remake",
     "film-on-faces": "remake",
-    "check-coating": "none", "turn-desk": "none", "shade-light": "none", "explain": "none",
+    "walking-pair": "remake",
+    "check-coating": "none", "turn-desk": "none", "shade-light": "none", "explain": "none", "measure-now": "none",
+    "head-down": "none",
     "closer-fit": "adjust", "matt-edge": "adjust", "loosen-rim": "adjust", "adjust-fit": "adjust",
     "adjust-heights": "adjust", "clean-right": "clean", "refer-eye": "refer",
     "refer-eyes": "refer", "ask-prescriber": "refer",
@@ -69,21 +72,38 @@ def _second_changes(lens: OnFile, after: OptionFigures) -> Changes:
     )
 
 
+def _level_unless_stronger(lens: OnFile, option: OptionFigures) -> float | None:
+    """Return the level of a second image, or None where it gets stronger and only its place makes it less visible."""
+    was, now = (worst_second(pair, lens.night_scenes()) for pair in (lens.option, option))
+    return None if was is None or now is None or now.strength > was.strength else now.visibility_level
+
+
 def _worth_it(changes: Changes) -> bool:
     """Tell whether a second image becomes so much less visible that its verdict falls a step."""
     return is_less(changes) and changes[1][2] < changes[1][1]
 
 
-def _behind(dark: bool) -> Measure:
-    def measure(lens: OnFile, option: OptionFigures) -> float | None:
-        return behind_contrast(option, lens.behind_scenes(dark=dark))
-
-    return measure
+def _behind(lens: OnFile, option: OptionFigures) -> float | None:
+    ghost = worst_behind(option, lens.behind_scenes())
+    return None if ghost is None else ghost.contrast
 
 
-def _behind_change(lens: OnFile, after: OptionFigures, *, dark: bool = False) -> Changes:
-    was, now = (_behind(dark)(lens, option) for option in (lens.option, after))
-    return () if was is None or now is None else (("behind_contrast_percent", 100.0 * was, 100.0 * now),)
+def _back(_lens: OnFile, option: OptionFigures) -> float | None:
+    return max((eye.luminous_reflectance.back for eye in eyes_of(option)), default=None)
+
+
+def _percent(figure: str, measure: Measure) -> Callable[[OnFile, OptionFigures], Changes]:
+    """Return the change of a figure that is measured as a fraction."""
+
+    def changes(lens: OnFile, after: OptionFigures) -> Changes:
+        was, now = (measure(lens, option) for option in (lens.option, after))
+        return () if was is None or now is None else ((figure, 100.0 * was, 100.0 * now),)
+
+    return changes
+
+
+_behind_change = _percent("behind_contrast_percent", _behind)
+_back_change = _percent("back_reflectance_percent", _back)
 
 
 def is_less(changes: Changes, *, by: float = LEAST_GAIN) -> bool:
@@ -111,40 +131,35 @@ def _films(lens: OnFile, *, back_only: bool) -> dict[str, Option]:
     return made
 
 
-def _coated(
-    lens: OnFile, measure: Measure, enough: float, *, back_only: bool = False
-) -> tuple[str, OptionFigures] | None:
-    """Return the cheapest film that brings a figure down to ``enough``, or as good as to the least there is."""
-    known = [(value, pair) for pair in lens.offered(_films(lens, back_only=back_only))
-             if (value := measure(lens, pair[1])) is not None]  # fmt: skip
-    if not known:
-        return None
-    limit = max(enough, ALIKE * min(value for value, _ in known))
-    reached = [pair for value, pair in known if value <= limit]
-    return min(reached, key=lambda pair: (pair[1].price is None, pair[1].price or 0.0))
+def _film(
+    measure: Measure,
+    changes: Callable[[OnFile, OptionFigures], Changes],
+    *,
+    enough: float = 0.0,
+    back_only: bool = False,
+) -> Work:
+    """Return the remedy of the cheapest film that brings a figure to ``enough``, or nearly to the least there is."""
+
+    def work(lens: OnFile) -> Worked | None:
+        known = [
+            (value, pair)
+            for pair in lens.offered(_films(lens, back_only=back_only))
+            if (value := measure(lens, pair[1])) is not None
+        ]
+        limit = max(enough, ALIKE * min((value for value, _ in known), default=0.0))
+        reached = [pair for value, pair in known if value <= limit]
+        if not reached:
+            return None
+        name, figures = min(reached, key=lambda pair: (pair[1].price is None, pair[1].price or 0.0))
+        found = changes(lens, figures)
+        return priced(Worked({"coating": name}, found), figures) if is_less(found) else None
+
+    return work
 
 
-def coat_both_ahead(lens: OnFile) -> Worked | None:
-    """Both faces coated, against the second image."""
-    found = _coated(lens, _level, 0.4)
-    return None if found is None else _with_film(found, _second_changes(lens, found[1]))
-
-
-def coat_both_behind(lens: OnFile) -> Worked | None:
-    """Both faces coated, against light from behind."""
-    found = _coated(lens, _behind(False), 0.0)
-    return None if found is None else _with_film(found, _behind_change(lens, found[1]))
-
-
-def coat_back_dark(lens: OnFile) -> Worked | None:
-    """The back coated behind a tint."""
-    found = _coated(lens, _behind(True), 0.0, back_only=True)
-    return None if found is None else _with_film(found, _behind_change(lens, found[1], dark=True))
-
-
-def _with_film(found: tuple[str, OptionFigures], changes: Changes) -> Worked | None:
-    name, figures = found
-    return priced(Worked({"coating": name}, changes), figures) if is_less(changes) else None
+coat_both_ahead = _film(_level, _second_changes, enough=NOT_SEEN_LEVEL)
+coat_both_behind = _film(_behind, _behind_change)
+coat_back_dark = _film(_back, _back_change, back_only=True)
 
 
 def other_form(lens: OnFile) -> Worked | None:
@@ -166,6 +181,8 @@ def other_form(lens: OnFile) -> Worked | None:
 def _other_material(
     measure: Measure, changes: Callable[[OnFile, OptionFigures], Changes], worth: Callable[[Changes], bool]
 ) -> Work:
+    """Return the remedy of the material with the least of a figure; its edge and weight are told beside it."""
+
     def work(lens: OnFile) -> Worked | None:
         options = {m.label or m.key: lens.with_parts(material=m.key, front_power_d=None) for m in lens.materials()}
         best = _best(lens, options, measure)
@@ -173,7 +190,11 @@ def _other_material(
             return None
         name, figures = best
         found = changes(lens, figures)
-        return priced(Worked({"material": name}, found), figures) if worth(found) else None
+        if not worth(found):
+            return None
+        told = {entry[0] for entry in found}
+        beside = [entry for figure in (EDGE, WEIGHT) if figure not in told for entry in _one(figure)(lens, figures)]
+        return priced(Worked({"material": name}, (*found, *beside)), figures)
 
     return work
 
@@ -188,10 +209,17 @@ def _one(figure: str) -> Callable[[OnFile, OptionFigures], Changes]:
     return changes
 
 
-FRINGE, EDGE = "colour_fringe_prism_d", "edge_thickest_mm"
-other_material_ahead = _other_material(_level, _second_changes, _worth_it)
+FRINGE, EDGE, WEIGHT = "colour_fringe_prism_d", "edge_thickest_mm", "weight_g"
 higher_abbe = _other_material(lambda _, option: most(option, FRINGE), _one(FRINGE), is_less)
 thinner_material = _other_material(lambda _, option: most(option, EDGE), _one(EDGE), is_less)
+_material_ahead = _other_material(_level_unless_stronger, _second_changes, _worth_it)
+
+
+def other_material_ahead(lens: OnFile) -> Worked | None:
+    """Another material against the second image, where no film does it."""
+    film = coat_both_ahead(lens)
+    does = film is not None and film.changes[0][2] <= NOT_SEEN_LEVEL
+    return None if does else _material_ahead(lens)
 
 
 def turn_desk(lens: OnFile) -> Worked | None:

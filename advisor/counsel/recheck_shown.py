@@ -88,6 +88,19 @@ def cause_of(lens: OnFile, key: str, answers: Mapping[str, str]) -> Cause | None
     )
 
 
+def the_eye_itself(translator: Translator) -> Cause:
+    """Return the cause that is left where a sign is there: no lens is judged for it."""
+    return Cause(
+        key="eye-itself",
+        kind="eye",
+        text=translator.gettext(CAUSE_TEXTS["eye-itself"]),
+        level="not worked out",
+        told=None,
+        why=[],
+        remedies=[_remedy("refer-eye", Worked(), translator)],
+    )
+
+
 def _worked(lens: OnFile, key: str, work: Work) -> Remedy | None:
     worked = work(lens)
     return None if worked is None else _remedy(key, worked, lens.translator)

@@ -35,7 +35,8 @@ from advisor.counsel.recheck_wear_remedies import (
 )
 
 Kind = Literal["lens", "made", "eye", "surroundings", "use", "fit"]
-Tells = Mapping[str, str]  # of a quick test: its answers, "yes+" for, "yes-" against, "no+", "no-", parted by a space
+# of a quick test: its answers, "yes+" for, "yes-" against, "yes!" for whatever else tells against it; parted by a space
+Tells = Mapping[str, str]
 OWN_KINDS = frozenset({"lens", "made", "use", "fit"})  # what the shop can look at and mend
 
 
@@ -73,10 +74,12 @@ CAUSES: Mapping[str, CauseRule] = {
         "surroundings", wear.only_asking_tells, {"cover-eye": "yes-", "car-only": "yes+ no-"}, _plainly("explain")
     ),
     "eyes-not-together": CauseRule("eye", wear.only_asking_tells, {"cover-eye": "yes+ no-"}, _plainly("refer-eyes")),
+    "not-measured": CauseRule("fit", wear.not_measured, {}, _plainly("measure-now")),
     "eye-itself": CauseRule(
         "eye",
         wear.only_asking_tells,
-        {"pinhole": "yes+ no-", "old-pair": "yes+", "moves": "yes-", "cover-eye": "yes-"},
+        # an image that goes through a pinhole, glasses off, is the eye's own optics: "no" tells nothing against the eye
+        {"pinhole": "yes!", "old-pair": "yes!", "moves": "yes-", "cover-eye": "yes-"},
         _plainly("refer-eye"),
     ),
     "behind-front": CauseRule("lens", light.behind_front, _BEHIND, _FROM_BEHIND),
@@ -132,8 +135,10 @@ CAUSES: Mapping[str, CauseRule] = {
     "heights": CauseRule("fit", wear.heights, {"marks-off": "yes+ no-"}, _plainly("adjust-heights")),
     "wrong-design": CauseRule("lens", wear.wrong_design, {}, _plainly("other-design")),
     "near-imbalance": CauseRule(
-        "lens", wear.near_imbalance, {}, (*_plainly("ask-prescriber"), ("near-pair", near_pair))
+        "lens", wear.near_imbalance, {"cover-eye": "no-"}, (*_plainly("ask-prescriber"), ("near-pair", near_pair))
     ),
+    "near-pd": CauseRule("fit", wear.near_pd, {"cover-eye": "no-"}, _plainly("measure-now", "ask-prescriber")),
+    "near-part-on-steps": CauseRule("lens", wear.near_part_on_steps, {}, _plainly("head-down", "walking-pair")),
     "near-power": CauseRule("lens", wear.near_power, {}, _plainly("ask-prescriber")),
     "frame-fit": CauseRule("fit", wear.frame_fit, {}, _plainly("adjust-fit")),
     "bare-back-tint": CauseRule(
@@ -145,7 +150,7 @@ CAUSES: Mapping[str, CauseRule] = {
 }
 
 CAUSES_OF: Mapping[str, tuple[str, ...]] = {
-    "second-light": ("ahead-ghost", "bare-face", "windscreen", "eyes-not-together", "eye-itself"),
+    "second-light": ("not-measured", "ahead-ghost", "bare-face", "windscreen", "eyes-not-together", "eye-itself"),
     "behind": ("behind-front", "behind-back"),
     "rings": ("eye-itself",),
     "glare": ("eye-itself", "ahead-ghost"),
@@ -157,6 +162,11 @@ CAUSES_OF: Mapping[str, tuple[str, ...]] = {
     "not-right": (
         "changed-curve", "changed-cylinder", "changed-power", "changed-size", "how-it-sits", "changed-index",
     ),
+    "steps": (
+        "near-part-on-steps", "heights", "changed-curve", "changed-cylinder", "changed-power", "changed-size",
+        "how-it-sits",
+    ),
+    "near-double": ("near-imbalance", "near-pd", "eyes-not-together", "heights", "near-power", "eye-itself"),
     "near": ("near-imbalance", "wrong-design", "heights", "near-power"),
     "fit": ("frame-fit",),
     "dark-mirror": ("bare-back-tint",),
@@ -167,8 +177,10 @@ CAUSES_OF: Mapping[str, tuple[str, ...]] = {
 
 
 def told(rule: CauseRule, answers: Mapping[str, str]) -> Literal["for", "against"] | None:
-    """Return what the quick tests say of a cause; one test against it outweighs any for it."""
+    """Return what the quick tests say of a cause; one against it outweighs any for it but the strongest."""
     marks = {
         part[-1] for test, answer in answers.items() for part in rule.tells.get(test, "").split() if part[:-1] == answer
     }
+    if "!" in marks:
+        return "for"
     return "against" if "-" in marks else "for" if "+" in marks else None

@@ -29,8 +29,10 @@ COMPLAINTS: dict[str, str] = {
     "smears": mark("never clean, smears, fog, scratched"),
     "crazed": mark("crazed, peeling"),
     "colours-differ": mark("the lenses have different colours"),
-    "not-right": mark("floors slope, swimmy, things bigger or smaller, headaches, the old ones were better"),
-    "near": mark("trouble with reading or the screen, double when reading, a jump when looking down"),
+    "not-right": mark("floors slope, blurred, swimmy, things bigger or smaller, headaches, the old ones were better"),
+    "steps": mark("trips on steps, unsure on stairs"),
+    "near": mark("trouble with reading or the screen, a jump when looking down"),
+    "near-double": mark("double when reading"),
     "fit": mark("slide, pinch, hurt, a loose lens, sore skin"),
     "dark-mirror": mark("my dark glasses mirror my face"),
     "black-screens": mark("screens go black"),
@@ -39,7 +41,7 @@ COMPLAINTS: dict[str, str] = {
 }
 
 TESTS: dict[str, str] = {
-    "cover-eye": mark("Cover each eye in turn: is the second light gone whichever eye is covered?"),
+    "cover-eye": mark("Cover each eye in turn: is the second light, or the double, gone whichever eye is covered?"),
     "new": mark("Has it begun lately?"),
     "moves": mark("Tilt or slide the glasses a little: does the second light move with them?"),
     "car-only": mark("Is it seen only through the windscreen, never on foot?"),
@@ -65,7 +67,8 @@ CAUSES: dict[str, str] = {
     "ahead-ghost": mark("Light mirrored twice inside the lens"),
     "bare-face": mark("A face that should be coated and is not"),
     "windscreen": mark("The windscreen of the car"),
-    "eyes-not-together": mark("The eyes are not working together; no lens on file does this"),
+    "eyes-not-together": mark("The eyes are not working together, unless prism, centring or powers are wrong"),
+    "not-measured": mark("Prism, centring or powers that are not as ordered"),
     "eye-itself": mark("The eye itself"),
     "behind-back": mark("Light from behind, mirrored by the back of the lens"),
     "behind-front": mark("Light from behind, mirrored by the front of the lens"),
@@ -88,6 +91,8 @@ CAUSES: dict[str, str] = {
     "how-it-sits": mark("How the frame sits: tilt, distance, height"),
     "heights": mark("Fitting heights"),
     "wrong-design": mark("A design that is not made for this task"),
+    "near-pd": mark("Centres that do not meet the eyes when reading"),
+    "near-part-on-steps": mark("A design whose lower part is for near, looked through on steps"),
     "near-power": mark("The near power or its distance"),
     "near-imbalance": mark("The lenses pull apart up and down when looking down"),
     "frame-fit": mark("The fit of the frame"),
@@ -113,8 +118,11 @@ REMEDIES: dict[str, str] = {
     "closer-fit": mark("A closer fit, by %(by_mm)s mm."),
     "explain": mark("Explain; no lens changes this."),
     "another-pair": mark("Another pair for this use."),
-    "refer-eye": mark("An eye examination before any lens."),
-    "refer-eyes": mark("To an eye doctor, today if it is new; no lens from the shop does this."),
+    "refer-eye": mark("An eye examination before any other lens."),
+    "refer-eyes": mark("To an eye doctor, today if it is new; measure these glasses as well."),
+    "measure-now": mark("Measure these glasses now; it takes minutes."),
+    "head-down": mark("On steps look down with the head, not with the eyes alone."),
+    "walking-pair": mark("A distance pair of its own for walking outdoors."),
     "ask-prescriber": mark("Ask the prescriber before anything is remade."),
     "matt-edge": mark("A matt or tinted edge first; polish can brighten the rings."),
     "rolled-edge": mark("A rolled edge."),
@@ -142,6 +150,7 @@ FIGURES: Mapping[str, tuple[str, str]] = {
     "verdict_step": (mark("verdict"), ""),
     "second_image_percent": (mark("strength of the second image"), "%"),
     "behind_contrast_percent": (mark("light from behind, of what is looked at"), "%"),
+    "back_reflectance_percent": (mark("light mirrored by the back"), "%"),
     "edge_thickest_mm": (mark("thickest edge"), "mm"),
     "colour_fringe_prism_d": (mark("colour fringe at the side"), "Δ"),
     "match_percent": (mark("pairs that match"), "%"),
@@ -163,7 +172,9 @@ WHY: dict[str, str] = {
     "ghost-spread": mark("Worked out for this lens: spread over the lens, no second light."),
     "no-scene": mark("The range holds no scene of this kind, so nothing could be worked out."),
     "prism": mark("Prescribed prism throws the image %(separation_deg)s degrees from the lamp, clear of its veil."),
-    "face-bare": mark("With one face bare it would be: %(ghost)s. Visibility level %(visibility_level)s."),
+    "face-bare": mark(
+        "With one face bare it would be: %(ghost)s. Visibility level %(visibility_level)s in “%(scene)s”."
+    ),
     "behind": mark(
         "Worked out: light from behind shows at %(behind_contrast_percent)s %% of what is looked at, in “%(scene)s”."
     ),
@@ -191,6 +202,14 @@ WHY: dict[str, str] = {
     "height-low": mark("Fitting height %(height_mm)s mm; this design needs %(least_height_mm)s mm."),
     "design-near": mark("This design is not made for reading and the prescription has an add."),
     "design-screen": mark("This design has no part for the screen."),
+    "near-part": mark("Looking down at a step goes through the part for near, where the step is blurred."),
+    "near-only": mark("This lens is for near alone: a step is blurred in it."),
+    "near-pd": mark(
+        "Reading, the eyes look %(off_mm)s mm further in than the centres, both together; that makes %(near_prism_d)s Δ sideways."
+    ),
+    "near-part-in": mark("The part for near is set in by the maker: look whether it meets this wearer's near PD."),
+    "pd-unknown": mark("The PD on file is a default, not a measurement."),
+    "prism-unmeasured": mark("Prism is prescribed and nothing was measured; a wrong prism alone doubles what is seen."),
     "has-add": mark("Add %(add_d)s D for %(working_distance_cm)s cm."),
     "imbalance": mark(
         "The lenses differ by %(imbalance_prism_d)s prism dioptres up and down, 10 mm below the centres."
@@ -208,11 +227,18 @@ NOTES: dict[str, str] = {
     "ask-signs-first": mark("Ask the signs first; until every one is answered no lens is offered."),
     "do-not-drive": mark("No driving until an eye doctor has looked."),
     "no-lens-before": mark("No lens is offered before an eye examination."),
-    "lens-cannot-explain": mark("The lens on file cannot explain this. Refer, and offer no lens."),
-    "cover-eye-first": mark(
-        "Cover each eye in turn now: a second light that is new and goes with either eye covered is for today."
+    "not-understood": mark(
+        "No complaint is understood from these words: ask the signs, then say it in one of these: %(complaints)s."
     ),
-    "measure-first": mark("Measure first: power, axis, prism, PDs and heights, of these and of the old pair."),
+    "heard-but-no": mark("Heard in the words, answered no: %(signs)s."),
+    "falls": mark("Falls come first: on steps the head down and a hand on the rail until this is mended."),
+    "lens-cannot-explain": mark(
+        "The lens as ordered cannot explain this, unless prism, centring or powers are wrong. Refer, and offer no lens."
+    ),
+    "cover-eye-first": mark(
+        "Cover each eye in turn now: a second light, or double, that is new and goes with either eye covered is for today."
+    ),
+    "measure-first": mark("Measure now: power, axis, prism, PDs and heights, of these and of the old pair."),
     "remake-first": mark("Wrong as made comes first: no other lens is offered until these are right."),
     "never-gone": mark("A remedy makes it less. Never promise that it is gone."),
     "prism-may-stay": mark(

@@ -4,6 +4,8 @@ from collections.abc import Mapping
 
 from advisor.counsel.cautions import MULTIFOCAL
 from advisor.counsel.phrases import Phrase, mark
+from advisor.counsel.prescription import EYES, power_along_d
+from advisor.counsel.reach import near_only
 from advisor.counsel.recheck_answer import Level
 from advisor.counsel.recheck_lens import OnFile, most
 from advisor.counsel.recheck_light_causes import Rating
@@ -13,6 +15,7 @@ from advisor.counsel.recheck_worn import abbe_change, curve_change, power_change
 CURVE_D, CYLINDER_D, MEAN_POWER_D, SIZE_PERCENT = 1.0, 0.5, 0.5, 2.0  # modelling choices; half of each is "possible"
 ABBE_LOWER_BY = 8.0
 IMBALANCE_PRISM_D = 1.0
+NEAR_PRISM_D = 1.0  # sideways, for the pair; a modelling choice
 UNKNOWN = Rating("not worked out", (Phrase("worn-unknown"),))
 HABITS = {
     "heat_steam": mark("heat or steam"),
@@ -135,6 +138,30 @@ def wrong_design(lens: OnFile) -> Rating:
     return Rating("unlikely")
 
 
+def near_part_on_steps(lens: OnFile) -> Rating:
+    """Judge a near part that lies where a step is looked at; a lens for near alone is worse still."""
+    kind = lens.laid.design.kind
+    if kind in MULTIFOCAL:
+        return Rating("likely", (Phrase("near-part"),))
+    alone = near_only(lens.case, lens.laid.design)
+    return Rating("likely", (Phrase("near-only"),)) if alone else Rating("unlikely")
+
+
+def near_pd(lens: OnFile) -> Rating:
+    """Judge the horizontal prism of lenses that are not centred where the eyes look when reading."""
+    case, kind = lens.case, lens.laid.design.kind
+    if any(case.is_default(f"fitting.{eye}.pd_mm") for eye in EYES):
+        return Rating("possible", (Phrase("pd-unknown"),))
+    if kind in MULTIFOCAL:  # its near part is set in by the maker for an eye that turns as most do
+        return Rating("possible", (Phrase("near-part-in"),))
+    centred = case.near_pd_mm if near_only(case, lens.laid.design) else case.pd_mm
+    off_mm = [float(off) for off in centred - case.near_pd_mm]
+    prism = sum(power_along_d(power, meridian_deg=180.0) * off / 10.0
+                for power, off in zip(lens.laid.powers, off_mm, strict=True))  # fmt: skip
+    why = Phrase("near-pd", {"off_mm": sum(off_mm), "near_prism_d": abs(prism)})
+    return Rating("possible" if abs(prism) >= NEAR_PRISM_D else "unlikely", (why,))
+
+
 def near_power(lens: OnFile) -> Rating:
     """Judge the add against the distance it is used at."""
     add = max(lens.case.eye(eye).add or 0.0 for eye in ("right", "left"))
@@ -157,6 +184,11 @@ def frame_fit(lens: OnFile) -> Rating:
     """Judge the fit: looked at, never worked out."""
     weight = most(lens.option, "weight_g")
     return Rating("possible", () if weight is None else (Phrase("weight", {"weight_g": weight}),))
+
+
+def not_measured(lens: OnFile) -> Rating | None:
+    """Judge prescribed prism that nobody has measured in the finished glasses."""
+    return Rating("possible", (Phrase("prism-unmeasured"),)) if lens.prescribes_prism else None
 
 
 def only_asking_tells(_lens: OnFile) -> Rating:

@@ -33,7 +33,7 @@ def near_pair(lens: OnFile) -> Worked | None:
     reading = next((design.key for design in lens.stock.design if design.kind == "reading"), None)
     if kind == "reading" or not has_add or reading is None:
         return None
-    sold = lens.offered({"near": lens.with_parts(design=reading)})
+    sold = lens.offered({"near": lens.with_parts(design=reading)}, own_pair=True)
     return Worked(price=sold[0][1].price) if sold else None
 
 

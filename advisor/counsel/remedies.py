@@ -6,12 +6,11 @@ import numpy as np
 
 from advisor.counsel.advice_texts import CLEANING_TEXTS
 from advisor.counsel.advise import Counsel
-from advisor.counsel.cautions import is_glass
 from advisor.counsel.form import SMALLER_BY_MM
+from advisor.counsel.materials import is_glass
 from advisor.counsel.musts import currency_of
 from advisor.counsel.phrases import Figure, Phrase
-from advisor.counsel.reasons import Label
-from advisor.counsel.spoken import LEAST_CONTRAST_BEHIND
+from advisor.counsel.reasons import Label, behind_told
 
 THICK_FROM_MM = 6.0  # an edge that is seen, whoever asks; a modelling choice
 LEAST_SAVING_MM = 0.5
@@ -28,11 +27,14 @@ def free_first(counsel: Counsel, k: int, label: Label) -> list[Phrase]:
 
 
 def _turn_desk(counsel: Counsel, k: int) -> Iterator[Phrase]:
+    """Yield what to do about the light that shows most: a window before a lamp, for the desk can be turned."""
     field = counsel.field
-    shown = float(field.figures["from-behind"][k])
-    if not field.case.says("lights_behind") or shown < LEAST_CONTRAST_BEHIND:
+    if not field.case.says("lights_behind"):
         return
-    yield Phrase("turn-desk", {"this_times": shown})
+    windows = {scene.label or scene.key for scene in field.scenes if scene.kind == "extended"}
+    for scene, (shown,) in behind_told(field, k)[:1]:
+        code = "turn-desk" if scene in windows else "move-lamp"
+        yield Phrase(code, {"scene": scene, "this_percent": 100.0 * shown})
 
 
 def _smaller_frame(counsel: Counsel, k: int, label: Label) -> Iterator[Phrase]:
@@ -72,7 +74,7 @@ def _thinner(counsel: Counsel, k: int) -> int | None:
         and (field.pool.laid[j].design.key, field.pool.laid[j].front.key, field.pool.laid[j].back.key)
         == (own.design.key, own.front.key, own.back.key)
         and field.pool.laid[j].tint == own.tint
-        and is_glass(field.pool.laid[j]) == is_glass(own)
+        and is_glass(field.pool.laid[j].material) == is_glass(own.material)
     ]
     return field.top(found)
 

@@ -1,7 +1,8 @@
-"""Cross-sections of lenses to scale: a level cut through the optical centre, all in one common scale of millimetres.
+"""Lenses to scale, all in one common scale of millimetres: cut level through the optical centre, and from in front.
 
-The front is to the left of the picture's depth axis, the nose side on top. Points are computed here; a template macro
-prints them.
+In a cut the front is to the left of the picture's depth axis, the nose side on top. From in front a lens is seen as a
+person facing the wearer sees it, its edge thickness laid inwards from the rim. Points are computed here; template
+macros print them.
 """
 
 from dataclasses import dataclass
@@ -9,6 +10,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from advisor.counsel.answer import place as edge_place
 from advisor.counsel.compare import Computed
 from advisor.counsel.prescription import EYES, Eye
 from advisor.optics.lens_form import curvature_along, sag
@@ -66,6 +68,89 @@ def sections(computed: Computed) -> list[Section]:
             )
         )
     return found
+
+
+@dataclass(frozen=True)
+class Outline:
+    """One lens from in front: rim, band of edge thickness, optical centre, thickest and thinnest place; sizes in mm."""
+
+    index: int
+    eye: Eye
+    rim: str
+    band: str
+    centre: tuple[float, float]
+    thickest: tuple[float, float]
+    thinnest: tuple[float, float]
+    thickest_mm: float
+    thinnest_mm: float
+    thickest_at: str
+    thinnest_at: str
+    centre_mm: float
+    width_mm: float
+    height_mm: float
+
+
+def outlines(computed: Computed) -> list[Outline]:
+    """Return every lens that can be made from in front, in one common scale and box."""
+    shape, rims = computed.forms.shape, computed.forms.rim
+    found: list[tuple[int, int, NDArray[np.float64], NDArray[np.float64]]] = []
+    for option in computed.laid:
+        if option.refused:
+            continue
+        for e in range(len(EYES)):
+            k = option.index
+            turn = np.radians(rims.angle_deg[k, e])
+            inside = np.maximum(rims.radius_mm[k, e] - shape.edge_mm[k, e], 0.0)
+            found.append((k, e, _seen(rims.radius_mm[k, e], turn, e), _seen(inside, turn, e)))
+    if not found:
+        return []
+    every = np.concatenate([rim for _, _, rim, _ in found])
+    low, high = every.min(axis=0) - MARGIN_MM, every.max(axis=0) + MARGIN_MM
+    width, height = (round(float(size), 2) for size in high - low)
+
+    def place(points: NDArray[np.float64]) -> NDArray[np.float64]:
+        """Return places on the drawing, down the page."""
+        return np.stack([points[..., 0] - low[0], high[1] - points[..., 1]], axis=-1)
+
+    drawn = []
+    for k, e, rim, inner in found:
+        thick, thin = (
+            place(rim[int(np.argmin(np.abs(rims.angle_deg[k, e] - at[k, e])))])
+            for at in (shape.thickest_deg, shape.thinnest_deg)
+        )
+        drawn.append(
+            Outline(
+                index=k,
+                eye=EYES[e],
+                rim=_closed(place(rim)),
+                band=f"{_closed(place(rim))} {_closed(place(inner)[::-1])}",
+                centre=_pair(place(np.zeros(2))),
+                thickest=_pair(thick),
+                thinnest=_pair(thin),
+                thickest_mm=float(shape.thickest_mm[k, e]),
+                thinnest_mm=float(shape.thinnest_mm[k, e]),
+                thickest_at=str(edge_place(shape.thickest_deg[k, e])["word"]),
+                thinnest_at=str(edge_place(shape.thinnest_deg[k, e])["word"]),
+                centre_mm=float(shape.centre_mm[k, e]),
+                width_mm=width,
+                height_mm=height,
+            )
+        )
+    return drawn
+
+
+def _seen(radius_mm: NDArray[np.float64], turn_rad: NDArray[np.float64], e: int) -> NDArray[np.float64]:
+    """Return points as a person facing the wearer sees them: the nose to the right of the right eye's lens."""
+    x = radius_mm * np.cos(turn_rad)
+    return np.stack([x if e == 0 else -x, radius_mm * np.sin(turn_rad)], axis=-1)
+
+
+def _closed(points: NDArray[np.float64]) -> str:
+    return "M" + " ".join(f"{x:.2f},{y:.2f}" for x, y in points) + " Z"
+
+
+def _pair(point: NDArray[np.float64]) -> tuple[float, float]:
+    return round(float(point[0]), 2), round(float(point[1]), 2)
 
 
 def _cut(computed: Computed, k: int, e: int) -> tuple[NDArray[np.float64], NDArray[np.float64], NDArray[np.float64]]:

@@ -81,11 +81,13 @@ def second_image(option: OptionFigures) -> Phrase | None:
 def from_behind(option: OptionFigures) -> Phrase | None:
     """Return what shows of light from behind, by its contrast, or None where no such scene is laid out."""
     found = [ghost.contrast for ghost in ghosts_of(option, paths=("behind-back", "behind-front")) if ghost.contrast]
-    if not found:
-        return None
-    most = max(found)
-    if most < LEAST_CONTRAST_BEHIND:
+    return behind_phrase(max(found)) if found else None
+
+
+def behind_phrase(contrast: float) -> Phrase:
+    """Return light from behind in words, by its contrast to what is looked at."""
+    if contrast < LEAST_CONTRAST_BEHIND:
         return Phrase("behind-unseen")
-    if most > 1.0:
+    if contrast > 1.0:
         return Phrase("behind-brighter")
-    return Phrase("behind-seen", {"contrast_percent": 100.0 * most})
+    return Phrase("behind-seen", {"contrast_percent": 100.0 * contrast})

@@ -17,6 +17,7 @@ from advisor.counsel.toml_writing import toml_text
 from advisor.errors import TwolightError
 from advisor.resources import data_file
 
+CURRENCY = "EUR"  # where a range names none
 BARE = Coating(key="bare", label="Bare", price=0.0, layers=())
 
 K = TypeVar("K", bound=Item | Scene)
@@ -52,6 +53,11 @@ class Range(Strict):
     offer: tuple[Offer, ...] = ()
     scene: tuple[Scene, ...] = ()
     shop: Shop = Shop()
+
+    @property
+    def currency(self) -> str:
+        """The currency that prices are in."""
+        return self.shop.currency or CURRENCY
 
     def material_of(self, ref: MaterialRef) -> Material:
         """Return the material of a key, or the one given in place."""

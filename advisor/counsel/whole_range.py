@@ -9,10 +9,11 @@ from numpy.typing import NDArray
 
 from advisor.counsel.case import Case
 from advisor.counsel.choices import Option
-from advisor.counsel.form import NEAR_ONLY, LensForms, forms_of
+from advisor.counsel.form import LensForms, forms_of
 from advisor.counsel.ghosts import ghosts_of
 from advisor.counsel.laid_out import Laid, lay_out_options
 from advisor.counsel.light import Light, light_of
+from advisor.counsel.reach import near_only
 from advisor.counsel.stock_items import IN_PLACE, Material
 from advisor.optics.ghost_scene import Ghosts
 
@@ -38,7 +39,7 @@ def whole_range(case: Case, *, design: str, materials: Sequence[str], coatings: 
 
 def work_out(case: Case, laid: Sequence[Laid]) -> WholeRange:
     """Work out these options on nominal spectra; what two of them share is worked out once."""
-    formed, form_row = _distinct([_form_key(option) for option in laid])
+    formed, form_row = _distinct([_form_key(case, option) for option in laid])
     lit, light_row = _distinct([(option.front_face, option.back_face, option.tint) for option in laid])
     seen, ghost_row = _distinct(list(zip(form_row.tolist(), light_row.tolist(), strict=True)))
     forms = forms_of(case, _picked(laid, formed))
@@ -54,11 +55,11 @@ def work_out(case: Case, laid: Sequence[Laid]) -> WholeRange:
     )
 
 
-def _form_key(option: Laid) -> Hashable:
+def _form_key(case: Case, option: Laid) -> Hashable:
     """Return everything the form of a lens depends on beside the wearer and the frame."""
     blanks = option.offer.blank_diameters_mm if option.offer else None
     asked = (option.option.front_power_d, option.option.centre_mm)
-    return option.powers, material_key(option.material), asked, option.made, blanks, option.design.kind in NEAR_ONLY
+    return option.powers, material_key(option.material), asked, option.made, blanks, near_only(case, option.design)
 
 
 def material_key(material: Material) -> Hashable:

@@ -1,6 +1,6 @@
 """Return visits as stored rows: what came of each, beside the visit it is about."""
 
-from dataclasses import astuple, dataclass
+from dataclasses import astuple, dataclass, replace
 
 from sqlalchemy import Connection, insert, select
 
@@ -33,6 +33,15 @@ class RecheckMissing(TwolightError):
         super().__init__(self.text)
 
 
+class RecheckChanged(TwolightError):
+    """Another outcome was recorded under this identifier before."""
+
+    text = mark("An outcome was recorded from this form before, and it was another one; nothing was overwritten.")
+
+    def __init__(self) -> None:
+        super().__init__(self.text)
+
+
 def add(
     connection: Connection,
     content_json: str,
@@ -43,16 +52,18 @@ def add(
     new_visit_id: str | None,
     recheck_id: str | None,
 ) -> SavedRecheck:
-    """Store an outcome; one sent twice under the same identifier is stored once."""
+    """Store an outcome; one sent twice under the same identifier is stored once, another one is refused."""
     visits.find(connection, visit_id)
     if new_visit_id is not None:
         visits.find(connection, new_visit_id)
-    if recheck_id is not None:
-        there = connection.execute(select(tables.recheck).where(_RECHECK.id == recheck_id)).first()
-        if there is not None:
-            return SavedRecheck(*there)
     key = recheck_id or tables.new_id()
     saved = SavedRecheck(key, visit_id, tables.now(), outcome, who_pays, new_visit_id, content_json)
+    there = connection.execute(select(tables.recheck).where(_RECHECK.id == key)).first()
+    if there is not None:
+        stored = SavedRecheck(*there)
+        if replace(saved, at=stored.at) != stored:
+            raise RecheckChanged
+        return stored
     connection.execute(insert(tables.recheck).values(astuple(saved)))
     return saved
 

@@ -14,9 +14,11 @@ from advisor.resources import resource_dir
 from advisor.web import error_pages, policy
 from advisor.web.counter import counter
 from advisor.web.desk import EXTENSION, Desk, current_desk
+from advisor.web.figure_rows import unbroken
 from advisor.web.language import SOURCE_LANGUAGE, language
 from advisor.web.paper import install_filters
 from advisor.web.paper_pages import paper_pages
+from advisor.web.pictures_page import pictures_page
 from advisor.web.range_page import range_page
 from advisor.web.recheck import rechecks
 from advisor.web.visits import visits
@@ -80,12 +82,13 @@ def _prepare_templates(app: Flask) -> None:
     speaker = language(SOURCE_LANGUAGE)
     app.jinja_env.globals.update(_=speaker.gettext, ngettext=speaker.ngettext)
     install_filters(app.jinja_env, speaker)
+    app.jinja_env.filters["unbroken"] = unbroken
     app.jinja_env.globals.update(screen_language=speaker.language, screen_direction=speaker.direction)
 
 
 def _register_blueprints(app: Flask) -> None:
     """Register the blueprints, one for each noun."""
-    for noun in (counter, visits, paper_pages, rechecks, range_page):
+    for noun in (counter, visits, paper_pages, pictures_page, rechecks, range_page):
         app.register_blueprint(noun)
 
 

@@ -20,11 +20,12 @@ from advisor.records.drafts import SavedDraft
 from advisor.records.store import Store
 from advisor.records.visits import SavedVisit
 from advisor.web import demo_wearers, labels
+from advisor.web.advice_view import LAY, AdviceView, advice_view, laid_out_fields
+from advisor.web.asked import first_questions, further_questions, opened_by
 from advisor.web.figure_rows import FigureTable, figure_table
 from advisor.web.forms import (
     COUNT,
     EYES,
-    LIFE,
     MOST_OPTIONS,
     Fields,
     by_field,
@@ -35,12 +36,12 @@ from advisor.web.forms import (
     visit_from_fields,
     visit_to_fields,
     with_option_added,
+    with_option_laid_out,
     with_option_removed,
 )
 from advisor.web.language import SOURCE_LANGUAGE, language
 from advisor.web.stock_loader import Shelf
 
-CURRENCY = "EUR"
 WAITING = {"right": mark("the right sphere"), "left": mark("the left sphere")}
 
 
@@ -68,6 +69,8 @@ class Worked:
     faults: Mapping[str, list[Fault]] = field(default_factory=dict)
     waiting: tuple[str, ...] = ()
     sections: tuple[Section, ...] = ()
+    advice: AdviceView | None = None
+    opened: frozenset[str] | None = None
 
 
 def blank(shelf: Shelf) -> Editing:
@@ -127,9 +130,11 @@ def keep(store: Store, editing: Editing) -> Editing:
 
 
 def changed(editing: Editing, wish: str) -> Editing:
-    """Return the form after a button: ``add``, ``remove-2``, or none."""
+    """Return the form after a button: ``add``, ``remove-2``, ``lay:`` with an option's fields, or none."""
     if wish == "add":
         return replace(editing, fields=with_option_added(editing.fields))
+    if wish.startswith(LAY):
+        return replace(editing, fields=with_option_laid_out(editing.fields, laid_out_fields(wish)))
     if wish.startswith("remove-") and (place := _whole(wish.removeprefix("remove-"))) is not None:
         return replace(editing, fields=with_option_removed(editing.fields, place))
     return editing
@@ -144,9 +149,15 @@ def work_out(fields: Mapping[str, str], shelf: Shelf) -> Worked:
     except Faults as error:
         return _hindered(error, fields)
     answer = answer_of(computed, translator=speaker)
-    currency = shelf.stock.shop.currency or CURRENCY
+    currency = shelf.stock.currency
     table = figure_table(computed, answer, baseline=visit.baseline or 0, currency=currency, speaker=speaker)
-    return Worked(table, answer, sections=tuple(sections(computed)))
+    return Worked(
+        table,
+        answer,
+        sections=tuple(sections(computed)),
+        advice=advice_view(computed, answer, currency=currency, speaker=speaker),
+        opened=opened_by(computed.case),
+    )
 
 
 def _hindered(error: Faults, fields: Mapping[str, str]) -> Worked:
@@ -171,12 +182,13 @@ def context(
         "places": {name: _place_words(name) for name in worked.faults},
         "notes": _notes(worked.answer),
         "stock": shelf.stock,
-        "currency": shelf.stock.shop.currency or CURRENCY,
+        "currency": shelf.stock.currency,
         "count": option_count(editing.fields),
         "most": MOST_OPTIONS,
         "labels": labels,
         "question_words": QUESTIONS,
-        "life": LIFE,
+        "first_questions": first_questions(),
+        "further_questions": further_questions(editing.fields, worked.opened or frozenset()),
         "demos": demo_wearers.names(),
         "notice": notice,
         "saved": saved,

@@ -17,12 +17,12 @@ from advisor.counsel.regions import region_of
 from advisor.counsel.sheet import SHEET_TEXTS, NothingChosen, Sheet, choose
 from advisor.counsel.sheet import wearer_sheet as sheet_content
 from advisor.counsel.stock import Range
-from advisor.counsel.visit import Visit
+from advisor.counsel.visit import Declined, Visit
 from advisor.resources import resource_dir
+from advisor.web.labels import DECLINABLE, DECLINERS
 from advisor.web.language import SOURCE_LANGUAGE, Language, language, languages
 from advisor.web.paper import page
 
-CURRENCY = "EUR"
 BAR_UNITS = 100  # length of a whole bar in drawing units
 RIM_WORDS = {"full": "full", "grooved": "grooved (nylon)", "drilled": "drilled (rimless)"}
 
@@ -50,7 +50,7 @@ def wearer_sheet(
     answer = answer_of(computed, translator=chosen)
     index = choose(computed, number=number, answer=answer)
     price = computed.laid[index].price
-    currency = stock.shop.currency or CURRENCY
+    currency = stock.currency
     content = sheet_content(
         computed, answer, index=index, price=None if price is None else chosen.money(price, currency=currency)
     )
@@ -101,7 +101,7 @@ def order_slip(
     own = {
         "order": {**asdict(order), "eyes": [_eye_row(eye) for eye in order.eyes]},
         "cautions": _cautions(computed, index, chosen),
-        "declined": [f"{part.key}{f' ({part.by})' if part.by else ''}" for part in visit.declined or ()],
+        "declined": [_declined(part, chosen) for part in visit.declined or ()],
     }
     return page("paper/order.html", _slip(computed, index, fonts=fonts) | own, code=chosen.language)
 
@@ -128,6 +128,12 @@ def bench_slip(
         "hints": [say(hint, HINTS, chosen) for hint in bench.hints],
     }
     return page("paper/bench.html", _slip(computed, index, fonts=fonts) | own, code=chosen.language)
+
+
+def _declined(part: Declined, chosen: Language) -> str:
+    """Return what was turned down, and by whom, in words where there are some."""
+    words = chosen.gettext(DECLINABLE.get(part.key, part.key))
+    return words if part.by is None else f"{words} ({chosen.gettext(DECLINERS.get(part.by, part.by))})"
 
 
 def _ordered(computed: Computed, number: int | None, chosen: Language) -> int:
@@ -165,14 +171,23 @@ def _eye_row(eye: Any) -> Mapping[str, Any]:
     return {**{name: getattr(eye, name) for name in eye.__dataclass_fields__}, "word": EYE_WORDS[eye.eye]}
 
 
-ORDER_CAUTIONS = ("child", "one-eye", "impact", "vertex-differs", "heat-soft-material", "drilled-caution")
+ORDER_CAUTIONS = (
+    "child",
+    "one-eye",
+    "impact",
+    "not-for-driving-design",
+    "vertex-differs",
+    "heat-soft-material",
+    "solvent-soft-material",
+    "drilled-caution",
+)
 
 
 def _cautions(computed: Computed, index: int, chosen: Language) -> list[str]:
     """Return the cautions a maker or a workshop must know of."""
     applied = cautions_for(computed.case, computed.laid[index], light=lens_light(computed, index))
     return [
-        say(Phrase(a.key, a.figures), {a.key: CAUTION_TEXTS[a.key].text}, chosen)
+        say(Phrase(a.key, a.figures), {a.key: CAUTION_TEXTS[a.key].text_for(a.figures)}, chosen)
         for a in applied
         if a.key in ORDER_CAUTIONS
     ]

@@ -1,5 +1,6 @@
 """The rows of the Counter ready to be shown: words, figures, differences from the baseline, and what each opens to."""
 
+import re
 from collections.abc import Callable, Iterable
 from dataclasses import dataclass
 
@@ -9,32 +10,24 @@ from advisor.counsel.explanations import EXPLANATIONS, At, Explanation, PutIn
 from advisor.counsel.layout import (
     POINTS,
     ROWS,
-    VERDICTS,
+    TIMES,
     Row,
     parted,
     rows_present,
     second_image_strength,
     strength_words,
-    two_digits,
+    times_apart,
     two_eyes,
 )
-from advisor.counsel.phrases import mark, say
-from advisor.counsel.spoken import SPOKEN, from_behind, ghost_phrase, worst_ghost
+from advisor.counsel.phrases import mark
+from advisor.counsel.second_image_words import beside, lead
+from advisor.counsel.stock import Range
+from advisor.counsel.words import HUES
 from advisor.web.language import MINUS, Language
 
 SAME = mark("same")
 ROW_OF = {row.key: row for row in ROWS}
-TIMES_FROM = 1.05  # a smaller ratio is called the same
-HUES = {
-    "neutral": mark("neutral"),
-    "red": mark("red"),
-    "gold": mark("gold"),
-    "green": mark("green"),
-    "teal": mark("teal"),
-    "blue": mark("blue"),
-    "purple": mark("purple"),
-    "pink": mark("pink"),
-}
+SHOWN = frozenset({"edge_thickest_mm", "centre_mm", "weight_g", "smaller_edge_mm", "smaller_weight_g"})  # not folded
 
 
 @dataclass(frozen=True)
@@ -125,7 +118,7 @@ class _Desk:
     def _written(self, part: PutIn, at: At) -> str:
         value = part.read(at)
         if value is None or isinstance(value, str):
-            return value or "–"
+            return self.speaker.gettext(value) if value else "–"
         signed = part.unit == "D"
         number = self.speaker.number(value, digits=part.digits, signed=signed)
         return f"{number} {self.speaker.gettext(part.unit)}".rstrip()
@@ -142,8 +135,7 @@ def figure_table(
     common = tuple(caution for caution in cautions if len(caution.options) == len(answer.options))
     rows = [_price(desk), *_edge_and_centre(desk), *_plain(desk, [row for row in present if row.key == "weight_g"])]
     rows += [*_second_image(desk), _seen_by_others(desk), _cannot(desk, cautions, common)]
-    shown = {"edge_thickest_mm", "centre_mm", "weight_g"}
-    folded = _plain(desk, [row for row in present if row.key not in shown])
+    folded = [*_limit(desk), *_plain(desk, [row for row in present if row.key not in SHOWN])]
     return FigureTable(tuple(rows), tuple(folded), tuple(short(caution.text) for caution in common))
 
 
@@ -174,6 +166,8 @@ def _difference(desk: _Desk, row: Row, option: OptionFigures) -> str:
     texts = [row.difference(value, base, desk.speaker) for value, base in pairs]
     if not any(texts):
         return desk.speaker.gettext(SAME)
+    if row.parts or row.unit == TIMES:
+        return parted([text or desk.speaker.gettext(SAME) for text in texts], unit="")
     unit = desk.speaker.gettext(POINTS) if row.unit == "%" else row.unit
     return parted([text or f"0 {unit}".rstrip() for text in texts], unit=unit)
 
@@ -198,9 +192,17 @@ def _edge_and_centre(desk: _Desk) -> list[FigureRow]:
     def cell(option: OptionFigures) -> Cell:
         thick = [value for value in (_value(edge, option.right), _value(edge, option.left)) if value is not None]
         lines = (_line(desk, edge, option), _line(desk, centre, option, words))
-        return Cell(lines, bar_mm=max(thick, default=None))
+        return Cell(lines, _smaller_frame(desk, option), bar_mm=max(thick, default=None))
 
     return [desk.row("edge_thickest_mm", mark("thickest edge, and centre"), desk.cells(cell))]
+
+
+def _smaller_frame(desk: _Desk, option: OptionFigures) -> tuple[str, ...]:
+    """Say what the same lens comes to in a frame 4 mm smaller, which costs nothing, beside every index."""
+    edge, weight = (two_eyes(ROW_OF[key], option, desk.speaker) for key in ("smaller_edge_mm", "smaller_weight_g"))
+    known = option.right is not None and option.right.smaller_frame is not None and "–" not in (edge, weight)
+    figures = {"edge": edge, "weight": weight}
+    return (desk.speaker.gettext(mark("in a frame 4 mm smaller: %(edge)s, %(weight)s")) % figures,) if known else ()
 
 
 def _second_image(desk: _Desk) -> list[FigureRow]:
@@ -210,29 +212,50 @@ def _second_image(desk: _Desk) -> list[FigureRow]:
 
 
 def _ghost_cell(desk: _Desk, option: OptionFigures) -> Cell:
-    """Say whether the second image is noticed, where a light ahead is laid out, and how strong it is."""
+    """Say aloud what is seen of the second image, where a light ahead is laid out; how strong it is stands under it."""
     strength, base = second_image_strength(option), second_image_strength(desk.base)
     if strength is None:
         return Cell((Line("–"),))
-    difference = "" if base is None or option is desk.base else _times(desk, strength, base)
-    ghost, behind = worst_ghost(option), from_behind(option)
-    words = strength_words(strength, desk.speaker)
-    spoken = [behind] if behind else []
-    if ghost is None or ghost.verdict is None:
-        return Cell((Line(words, difference=difference),), tuple(say(one, SPOKEN, desk.speaker) for one in spoken))
-    spoken = [ghost_phrase(ghost), *spoken]
-    verdict = Line(desk.speaker.gettext(VERDICTS[ghost.verdict]), difference=difference)
-    return Cell((verdict,), (words, *(say(one, SPOKEN, desk.speaker) for one in spoken)))
+    difference = ""
+    if base is not None and option is not desk.base:
+        difference = times_apart(strength, base, desk.speaker) or desk.speaker.gettext(SAME)
+    words, spoken = strength_words(strength, desk.speaker), lead(option, desk.speaker)
+    notes = tuple(beside(option, desk.speaker))
+    if spoken is None:
+        return Cell((Line(words, difference=difference),), notes)
+    return Cell((Line(capital(spoken)), Line(words, difference=difference)), notes)
 
 
-def _times(desk: _Desk, strength: float, base: float) -> str:
-    """Return how many times weaker or stronger a ghost is than the baseline's."""
-    if min(strength, base) <= 0.0 or max(strength, base) / min(strength, base) < TIMES_FROM:
-        return desk.speaker.gettext(SAME)
-    times = two_digits(max(strength, base) / min(strength, base))
-    number = desk.speaker.number(times, digits=1 if times < 10 else 0)
-    text = mark("%(times)s times weaker") if strength < base else mark("%(times)s times stronger")
-    return desk.speaker.gettext(text) % {"times": number}
+def _limit(desk: _Desk) -> list[FigureRow]:
+    """Return how much each face may mirror before the second image is noticed, and which coatings stay below."""
+    if all(option.reflectance_limit is None for option in desk.answer.options):
+        return []
+
+    def cell(option: OptionFigures) -> Cell:
+        limit = option.reflectance_limit
+        if limit is None:
+            return Cell((Line("–"),))
+        if limit.not_noticed is None:
+            return Cell((Line(desk.speaker.gettext(mark("even bare faces are not noticed"))),))
+        most = desk.speaker.gettext(mark("at most %(percent)s %% a face"))
+        first = Line(most % {"percent": desk.speaker.number(100.0 * limit.not_noticed, digits=2)})
+        reached = coating_words(limit.reached_by, desk.computed.case.stock) or desk.speaker.gettext(mark("none sold"))
+        scenes = {scene.key: scene.label or scene.key for scene in desk.computed.case.scenes}
+        notes = [f"{desk.speaker.gettext(mark('reached by'))}: {reached}", scenes.get(limit.scene, limit.scene)]
+        return Cell((first,), tuple(notes))
+
+    return [desk.row("reflectance_limit", mark("reflectance limit, second image not noticed"), desk.cells(cell))]
+
+
+def coating_words(keys: Iterable[str], stock: Range) -> str:
+    """Return the names of coatings sold, as the shop calls them."""
+    labels = {coating.key: coating.label or coating.key for coating in stock.coating}
+    return ", ".join(labels.get(key, key) for key in keys)
+
+
+def capital(text: str) -> str:
+    """Return a text that begins with a capital letter."""
+    return text[:1].upper() + text[1:]
 
 
 def _seen_by_others(desk: _Desk) -> FigureRow:
@@ -263,8 +286,16 @@ def _cannot(desk: _Desk, cautions: Iterable[Caution], common: Iterable[Caution])
 
 
 def short(text: str) -> str:
-    """Return the first sentence, or what stands before its colon."""
+    """Return the first sentence, or what stands before its semicolon; what follows a colon is what counts."""
     for place, letter in enumerate(text):
-        if letter in ".:;" and text[place + 1 : place + 2] in ("", " ") and place > 12:
+        if letter in ".;" and text[place + 1 : place + 2] in ("", " ") and place > 12:
             return text[:place] + "."
     return text
+
+
+_UNIT = re.compile(r"(?<=\d) (?=(?:mm|g|D|Δ|cm|m|%|times|EUR|prism)(?![\w]))|(?<=\d) (?=/ )|(?<=\d\u00a0/) (?=\d)")
+
+
+def unbroken(text: str) -> str:
+    """Return a text in which no line ends between a number and its unit."""
+    return _UNIT.sub("\N{NO-BREAK SPACE}", _UNIT.sub("\N{NO-BREAK SPACE}", text))

@@ -13,6 +13,7 @@ from werkzeug.datastructures import MultiDict
 from advisor.counsel.choices import Option
 from advisor.counsel.faults import Fault, Faults, fault
 from advisor.counsel.files import parse_json
+from advisor.counsel.musts import musts
 from advisor.counsel.prescription import written_prism
 from advisor.counsel.visit import DailyLife, Visit, check_visit
 
@@ -37,7 +38,10 @@ def _prescription_names(start: str) -> Iterator[str]:
 
 
 LIFE = tuple(name for name in DailyLife.model_fields if name != "cleaning")
-WORDS = frozenset({"daily_life.cleaning", "scenes"})  # several words in one field, parted by spaces
+# What a wearer may turn down, each ticked in one field, with a field of its own for who turned it down.
+DECLINABLE = tuple(dict.fromkeys(must.lifted_by for must in musts() if must.lifted_by is not None))
+DECLINED = ("declined", *(f"declined_by.{key}" for key in DECLINABLE))
+WORDS = frozenset({"daily_life.cleaning", "scenes", "declined"})  # several words in one field, parted by spaces
 NUMBERS = frozenset({"fitting.working_distance_cm"})  # several numbers in one field, parted by spaces
 TRUTHS = frozenset(f"{start}.{eye}.balance" for start in ("prescription", "worn_now.prescription") for eye in EYES)
 
@@ -70,7 +74,7 @@ def option_count(fields: Mapping[str, str]) -> int:
 
 def names_of(fields: Mapping[str, str]) -> list[str]:
     """List the names of every field that the form has now."""
-    return [*PLAIN, *(f"options.{k}.{name}" for k in range(option_count(fields)) for name in OPTION)]
+    return [*PLAIN, *DECLINED, *(f"options.{k}.{name}" for k in range(option_count(fields)) for name in OPTION)]
 
 
 def fields_from_form(form: MultiDict[str, str]) -> Fields:
@@ -118,6 +122,7 @@ def visit_to_fields(visit: Visit, *, default_options: Sequence[Option] = ()) -> 
     options = given[:MOST_OPTIONS]
     fields: Fields = {COUNT: str(max(len(options), 1))}
     kept: Content = {"options": given[MOST_OPTIONS:]} if given[MOST_OPTIONS:] else {}
+    fields |= _declined_fields(content.pop("declined", None), kept)
     names = frozenset(PLAIN)
     for key, value in _worn_apart(_with_two_prisms(content, visit)).items():
         _split(key, value, names, fields, kept)
@@ -140,6 +145,18 @@ def _split(path: str, value: Any, names: frozenset[str], fields: Fields, kept: C
         return
     for key, part in children.items():
         _split(f"{path}.{key}", part, names, fields, kept)
+
+
+def _declined_fields(declined: Sequence[Content] | None, kept: Content) -> Fields:
+    """Return the fields of what was turned down; what the form does not ask goes into what is kept."""
+    if declined is None:
+        return {}
+    first = {part["key"]: part for part in reversed(declined) if part["key"] in DECLINABLE}
+    others = [part for part in declined if first.get(part["key"]) is not part]
+    if others or not first:
+        kept["declined"] = others
+    by = {f"declined_by.{key}": part.get("by") or "" for key, part in first.items()}
+    return {"declined": " ".join(first), **by}
 
 
 def _with_two_prisms(content: Content, visit: Visit) -> Content:
@@ -227,7 +244,18 @@ def fields_to_content(fields: Mapping[str, str]) -> Content:
     if "worn_now" in content:
         _join(content["worn_now"])
     content["options"] = [_option(fields, k) for k in range(option_count(fields))]
+    if declined := list(_declined(fields)):
+        content["declined"] = declined
     return _with_kept(content, fields.get(KEPT, ""))
+
+
+def _declined(fields: Mapping[str, str]) -> Iterator[Content]:
+    """Yield what is ticked as turned down, in the form's order, with who turned it down where that is written."""
+    ticked = fields.get("declined", "").split()
+    for key in DECLINABLE:
+        by = fields.get(f"declined_by.{key}", "").strip()
+        if key in ticked:
+            yield {"key": key, "by": by} if by else {"key": key}
 
 
 def _option(fields: Mapping[str, str], k: int) -> Content:
@@ -260,10 +288,11 @@ def _with_kept(content: Content, text: str) -> Content:
     kept = parse_json(text)
     if not isinstance(kept, dict):
         raise Faults([fault("not-an-object", field=KEPT)])
-    more = kept.pop("options", [])
-    if not isinstance(more, list):
-        raise Faults([fault("not-a-list", field=KEPT)])
-    content["options"] += more
+    for name in kept.keys() & {"options", "declined"}:
+        more = kept.pop(name)
+        if not isinstance(more, list):
+            raise Faults([fault("not-a-list", field=KEPT)])
+        content[name] = content.get(name, []) + more
     worn = kept.get("worn_now")
     if isinstance(worn, dict) and "prescription" not in content.get("worn_now", {}):
         worn.pop("prescription", None)
@@ -321,6 +350,15 @@ def with_option_added(fields: Mapping[str, str]) -> Fields:
         return dict(fields)
     copied = {f"options.{last + 1}.{name}": fields.get(f"options.{last}.{name}", "") for name in OPTION}
     return {**fields, **copied, COUNT: str(last + 2)}
+
+
+def with_option_laid_out(fields: Mapping[str, str], parts: Mapping[str, str]) -> Fields:
+    """Return the form with one more option made of these fields, up to the most there may be."""
+    place = option_count(fields)
+    if place >= MOST_OPTIONS or not parts or not parts.keys() <= set(OPTION):
+        return dict(fields)
+    laid = {f"options.{place}.{name}": parts.get(name, "") for name in OPTION}
+    return {**fields, **laid, COUNT: str(place + 1)}
 
 
 def with_option_removed(fields: Mapping[str, str], place: int) -> Fields:

@@ -41,6 +41,25 @@ CLEANING: Mapping[str, str] = {
     "alcohol-wipe": mark("alcohol wipe"),
     "window-cleaner": mark("window cleaner"),
 }
+# What a wearer may turn down, and who may.
+DECLINABLE: Mapping[str, str] = {
+    "tough-material": mark("an impact material (child, one good eye, knocks)"),
+    "near-pair": mark("a near pair of its own (very unequal eyes)"),
+    "night-driving": mark("driving at night in this pair (it is for the day)"),
+    "screen-distance": mark("a clear screen between far and near"),
+}
+DECLINERS: Mapping[str, str] = {"wearer": mark("the wearer"), "parent": mark("a parent or guardian")}
+# The cautions that a wearer may turn down, by what is then recorded.
+DECLINED_CAUTIONS: Mapping[str, str] = {
+    **dict.fromkeys(("child", "one-eye", "impact"), "tough-material"),
+    "near-vertical-imbalance": "near-pair",
+    "not-for-night-driving-tint": "night-driving",
+}
+OTHER_FIELDS: Mapping[str, str] = {
+    "fitting.working_distance_cm": mark("works at"),
+    "worn_now.liked": mark("liked"),
+    "worn_now.disliked": mark("disliked"),
+}
 
 # What stands in a field while it is empty: the stated default, so that nothing is assumed unseen.
 _SAME_AS = {f"fitting.{eye}.pd_mm": "fitting.pd_mm" for eye in ("right", "left")}

@@ -10,7 +10,7 @@ from advisor.counsel.faults import Fault, Faults
 from advisor.counsel.phrases import mark
 from advisor.counsel.stock import Range
 from advisor.web import range_editing as editing
-from advisor.web.counter_page import CURRENCY, sentence
+from advisor.web.counter_page import sentence
 from advisor.web.desk import current_desk
 from advisor.web.stock_loader import current_shelf
 
@@ -22,7 +22,7 @@ NOT_REMOVED = mark("Nothing was changed: something else names this item.")
 
 def _overview(faults: list[str] | None = None, notice: str = "", status: int = 200) -> Response:
     shelf = current_shelf(current_desk().store)
-    values = {"shelf": shelf, "currency": shelf.stock.shop.currency or CURRENCY, "editing": editing}
+    values = {"shelf": shelf, "currency": shelf.stock.currency, "editing": editing}
     return make_response(render_template("range.html", faults=faults or [], notice=notice, **values), status)
 
 

@@ -2,32 +2,34 @@
 
 import secrets
 from collections.abc import Mapping
+from dataclasses import replace
 
 from flask import Blueprint, Response, make_response, redirect, render_template, request, url_for
 from werkzeug.wrappers import Response as AnyResponse
 
 from advisor.counsel.choices import Option
-from advisor.counsel.faults import Fault, Faults
-from advisor.counsel.recheck_answer import RecheckRecord
+from advisor.counsel.faults import Faults
+from advisor.counsel.phrases import mark
+from advisor.counsel.recheck_answer import OUTCOMES_TODAY, RecheckRecord
 from advisor.counsel.recheck_shown import EYES as EYE_WORDS
 from advisor.counsel.recheck_shown import finding_words
 from advisor.counsel.recheck_texts import COMPLAINTS, SIGNS, TODAY
 from advisor.counsel.stock import Range
 from advisor.counsel.visit import Visit, parse_visit
-from advisor.records.rechecks import RecheckMissing, SavedRecheck
-from advisor.records.visits import VisitLine
+from advisor.records.rechecks import RecheckChanged, RecheckMissing, SavedRecheck
+from advisor.records.visits import VisitLine, VisitMissing
 from advisor.web import labels, recheck_text
 from advisor.web.desk import current_desk
 from advisor.web.language import SOURCE_LANGUAGE, language
 from advisor.web.pdf import PdfFailed, PdfUnavailable, write_pdf
-from advisor.web.recheck_form import TOKEN, Asked, ask, fields_of, record_of
+from advisor.web.recheck_form import TOKEN, Asked, NotToday, ask, fields_of, record_of, sentence_of
 from advisor.web.recheck_paper import maker_slip
 from advisor.web.stock_loader import shelf_of
 
 rechecks = Blueprint("rechecks", __name__)
 
-CURRENCY = "EUR"
 LIKELY_ORDERS = 20
+RECORD_AGAIN = mark("To record this one beside it, press “Record the outcome” once more.")
 
 
 def _on_file(visit_id: str) -> tuple[Visit, Range]:
@@ -46,14 +48,36 @@ def recheck(visit_id: str) -> str:
 def work_out(visit_id: str) -> AnyResponse:
     """Work a return visit out, or record what came of it."""
     asked = ask(fields_of(request.form), *_on_file(visit_id))
-    if request.form.get("do") == "record" and asked.answer is not None:
-        try:
-            _record(visit_id, record_of(asked))
-        except Faults as error:
-            faults = {fault.field: [fault] for fault in error.faults}
-            return make_response(_page(visit_id, Asked(asked.fields, asked.answer, faults)), 422)
-        return redirect(url_for("rechecks.recheck", visit_id=visit_id, _anchor="recorded"), 303)
-    return make_response(_page(visit_id, asked), 200 if asked.answer else 422)
+    if request.form.get("do") != "record" or asked.faults:
+        return make_response(_page(visit_id, asked), 422 if asked.faults else 200)
+    try:
+        faults = _recorded(visit_id, asked)
+    except RecheckChanged as error:
+        sentences = [language(SOURCE_LANGUAGE).gettext(text) for text in (error.text, RECORD_AGAIN)]
+        again = replace(asked, faults={"record": sentences})
+        return make_response(_page(visit_id, again, token=_new_token()), 409)
+    if faults:
+        return make_response(_page(visit_id, replace(asked, faults=faults)), 422)
+    return redirect(url_for("rechecks.recheck", visit_id=visit_id, _anchor="recorded"), 303)
+
+
+def _recorded(visit_id: str, asked: Asked) -> dict[str, list[str]]:
+    """Record an outcome, or return what keeps it from that, by field."""
+    faults: dict[str, list[str]] = {}
+    try:
+        _record(visit_id, record_of(asked))
+    except Faults as error:
+        for fault in error.faults:
+            faults.setdefault(fault.field, []).append(sentence_of(fault))
+    except NotToday as error:
+        faults["outcome"] = [language(SOURCE_LANGUAGE).gettext(error.text)]
+    except VisitMissing as error:  # that of the new order; the form's own was read before
+        faults["new_visit"] = [language(SOURCE_LANGUAGE).gettext(error.text)]
+    return faults
+
+
+def _new_token() -> str:
+    return secrets.token_urlsafe(16)
 
 
 def _record(visit_id: str, record: RecheckRecord) -> SavedRecheck:
@@ -69,11 +93,11 @@ def _record(visit_id: str, record: RecheckRecord) -> SavedRecheck:
     )
 
 
-def _page(visit_id: str, asked: Asked) -> str:
+def _page(visit_id: str, asked: Asked, *, token: str = "") -> str:
     visit, stock = _on_file(visit_id)
     screen = language(SOURCE_LANGUAGE)
     recorded = [_line(saved) for saved in current_desk().store.list_rechecks(visit_id)]
-    token = request.form.get("token", "")
+    token = token or request.form.get("token", "")
     return render_template(
         "recheck.html",
         visit_id=visit_id,
@@ -82,8 +106,8 @@ def _page(visit_id: str, asked: Asked) -> str:
         options=_option_words(visit, stock),
         fields=asked.fields,
         answer=asked.answer,
-        sentence=asked.sentence,
-        faults={place: [_sentence(one) for one in found] for place, found in asked.faults.items()},
+        faults=asked.faults,
+        outcomes=_outcomes(asked),
         signs=SIGNS,
         today=TODAY,
         complaints=COMPLAINTS,
@@ -91,15 +115,17 @@ def _page(visit_id: str, asked: Asked) -> str:
         words=recheck_text,
         eye_words=EYE_WORDS,
         finding_words=lambda finding, value: finding_words(finding, value, screen),
-        money=lambda amount: screen.money(amount, currency=stock.shop.currency or CURRENCY),
+        money=lambda amount: screen.money(amount, currency=stock.currency),
         recorded=recorded,
         orders=_orders(visit_id, visit),
-        token=token if TOKEN.fullmatch(token) else secrets.token_urlsafe(16),
+        token=token if TOKEN.fullmatch(token) else _new_token(),
     )
 
 
-def _sentence(fault: Fault) -> str:
-    return Fault("", "", fault.phrase).line(language(SOURCE_LANGUAGE).gettext)
+def _outcomes(asked: Asked) -> Mapping[str, str]:
+    """Return the outcomes that may be recorded: of a return for today a referral or none."""
+    today = asked.answer is not None and asked.answer.refer == "today"
+    return {key: text for key, text in recheck_text.OUTCOMES.items() if not today or key in OUTCOMES_TODAY}
 
 
 def _option_words(visit: Visit, stock: Range) -> dict[str, str]:

@@ -10,11 +10,14 @@ from werkzeug.datastructures import MultiDict
 
 from advisor.counsel.faults import Fault, Faults, fault, faults_from
 from advisor.counsel.measured import Measured, check_measured
-from advisor.counsel.recheck import NotUnderstood, recheck
-from advisor.counsel.recheck_answer import RecheckAnswer, RecheckRecord
+from advisor.counsel.phrases import mark
+from advisor.counsel.recheck import recheck
+from advisor.counsel.recheck_answer import OUTCOMES_TODAY, RecheckAnswer, RecheckRecord
 from advisor.counsel.recheck_texts import SIGNS, TESTS
+from advisor.counsel.recheck_words import hear
 from advisor.counsel.stock import Range
 from advisor.counsel.visit import Visit
+from advisor.errors import TwolightError
 from advisor.web.language import SOURCE_LANGUAGE, language
 
 EYES = ("right", "left")
@@ -24,17 +27,26 @@ MEASURED = tuple(f"measured.{eye}.{name}" for eye in EYES for name in (*PLAIN, *
 OTHERS = ("says", "option", "none_of_these", "outcome", "who_pays", "new_visit", "new_reference", "remedy", "note")
 ANSWERS = tuple(f"answer.{key}" for key in SIGNS | TESTS)
 MOST_LETTERS = 4000
+MOST_SAID = 200
 TOKEN = re.compile(r"[A-Za-z0-9_-]{20,32}")
+
+
+class NotToday(TwolightError):
+    """An outcome that sells or mends something was to be recorded of a return that is for today."""
+
+    text = mark("This is for an eye doctor today: record that the wearer was referred, or that nothing came of it.")
+
+    def __init__(self) -> None:
+        super().__init__(self.text)
 
 
 @dataclass(frozen=True)
 class Asked:
-    """A form as sent; ``answer`` is None where something keeps it from being worked out."""
+    """A form as sent, with sentences beside its fields; ``answer`` is None where nothing has been sent yet."""
 
     fields: Mapping[str, str]
     answer: RecheckAnswer | None = None
-    faults: Mapping[str, list[Fault]] = field(default_factory=dict)
-    sentence: str = ""
+    faults: Mapping[str, list[str]] = field(default_factory=dict)
 
 
 def fields_of(form: MultiDict[str, str]) -> dict[str, str]:
@@ -43,10 +55,14 @@ def fields_of(form: MultiDict[str, str]) -> dict[str, str]:
 
 
 def answers_of(fields: Mapping[str, str]) -> dict[str, str]:
-    """Return the answers to signs and tests; one tick answers every sign that has none with no."""
+    """Return the answers to signs and tests; one tick answers every sign with no that has no answer and was not heard.
+
+    A sign that is heard in the wearer's words is answered by itself.
+    """
     given = {key: fields.get(f"answer.{key}", "") for key in SIGNS | TESTS}
     if fields.get("none_of_these"):
-        given |= {key: "no" for key in SIGNS if not given[key]}
+        heard = hear(fields.get("says", "")).signs
+        given |= {key: "no" for key in SIGNS if not given[key] and key not in heard}
     return {key: answer for key, answer in given.items() if answer in ("yes", "no")}
 
 
@@ -67,45 +83,60 @@ def _eye(fields: Mapping[str, str], start: str) -> dict[str, object]:
 
 
 def ask(fields: Mapping[str, str], visit: Visit, stock: Range) -> Asked:
-    """Work the form out, or say beside its fields what keeps it from that."""
-    screen, number = language(SOURCE_LANGUAGE), fields.get("option", "")
+    """Work the form out; measurements that cannot be read hold up no sign, they are told beside their fields."""
+    number = fields.get("option", "")
     chosen = int(number) if number.isascii() and number.isdigit() and len(number) < 3 else None
+    faults: Mapping[str, list[str]] = {}
     try:
-        answer = recheck(
-            visit,
-            stock,
-            says=fields.get("says", "")[:200],
-            tests=answers_of(fields),
-            measured=measured_of(fields),
-            number=chosen or None,
-            translator=screen,
-        )
+        measured = measured_of(fields)
     except Faults as error:
-        return Asked(fields, faults=_beside(error.faults))
-    except NotUnderstood as error:
-        return Asked(fields, sentence=screen.gettext(error.text) % error.figures)
-    return Asked(fields, answer)
+        measured, faults = None, _beside(error.faults)
+    answer = recheck(
+        visit,
+        stock,
+        says=fields.get("says", ""),
+        tests=answers_of(fields),
+        measured=measured,
+        number=chosen or None,
+        translator=language(SOURCE_LANGUAGE),
+    )
+    return Asked(fields, answer, faults)
 
 
-def _beside(faults: tuple[Fault, ...]) -> dict[str, list[Fault]]:
-    found: dict[str, list[Fault]] = {}
+def _beside(faults: tuple[Fault, ...]) -> dict[str, list[str]]:
+    found: dict[str, list[str]] = {}
     for one in faults:
         place = "measured." + re.sub(r"\[(\d+)\]", r".\1", one.field)
-        found.setdefault(place if place in MEASURED else "measured", []).append(one)
+        found.setdefault(place if place in MEASURED else "measured", []).append(sentence_of(one))
     return found
 
 
+def sentence_of(one: Fault) -> str:
+    """Return what is wrong, without the field it stands beside."""
+    return Fault("", "", one.phrase).line(language(SOURCE_LANGUAGE).gettext)
+
+
 def record_of(asked: Asked) -> RecheckRecord:
-    """Return the outcome to be kept; raises Faults where none is chosen."""
+    """Return the outcome to be kept.
+
+    Raises
+    ------
+    NotToday
+        If the return is for today and the outcome is another than a referral or none.
+    Faults
+        If no outcome is chosen, or something of it cannot be kept.
+    """
     fields, answer = asked.fields, asked.answer
     if not fields.get("outcome"):
         raise Faults([fault("missing", field="outcome")])
+    if answer is not None and answer.refer == "today" and fields["outcome"] not in OUTCOMES_TODAY:
+        raise NotToday
     measured = measured_of(fields)
     causes = [] if answer is None else answer.causes
     by = [cause for cause in causes if any(remedy.key == fields.get("remedy") for remedy in cause.remedies)]
     cause = next((found.key for found in (*by, *causes)), None)
     content = {
-        "says": fields["says"][:200],
+        "says": fields["says"][:MOST_SAID],
         "outcome": fields["outcome"],
         "who_pays": fields.get("who_pays") or "nobody",
         "new_reference": fields.get("new_reference") or None,

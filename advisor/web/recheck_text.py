@@ -10,15 +10,18 @@ from advisor.web.table import one_line
 
 REFER = {
     "today": mark("To an eye doctor today."),
-    "soon": mark("An eye examination soon, before any lens."),
+    "soon": mark("An eye examination soon, before any other lens."),
     "refer": mark("Refer for an eye examination."),
 }
 OFFER = {
     "nothing": mark("No lens is offered."),
-    "after-asking": mark("No lens is offered until every sign is answered."),
+    "after-asking": mark(
+        "No lens is offered until every sign is answered, and for a second light or double the cover test."
+    ),
     "remake-as-ordered": mark("Remake as ordered; no other lens until these are right."),
     "open": mark("A lens may be offered where a remedy below says so."),
 }
+FREE = mark("No other lens is called for: what helps stands below.")
 LEVELS = {
     "likely": mark("likely"),
     "possible": mark("possible"),
@@ -44,6 +47,13 @@ PAYERS = {
 }
 
 
+def offer_words(answer: RecheckAnswer) -> str:
+    """Return what heads the answer: what may be offered, or that what helps is no lens at all."""
+    remedies = {remedy.outcome for cause in answer.causes for remedy in cause.remedies}
+    free = answer.offer == "nothing" and answer.refer is None and bool(remedies & {"adjust", "clean", "none"})
+    return FREE if free else OFFER[answer.offer]
+
+
 def recheck_text(answer: RecheckAnswer, *, title: str, currency: str, language: Language) -> str:
     """Return the whole answer as text."""
     lines = [title, "=" * len(one_line(title)), answer.lens, ""]
@@ -67,7 +77,7 @@ def _signs(answer: RecheckAnswer, language: Language) -> Iterable[str]:
         yield gettext(REFER[answer.refer])
     if answer.urgent_help:
         yield answer.urgent_help
-    yield gettext(OFFER[answer.offer])
+    yield gettext(offer_words(answer))
     yield ""
     yield gettext(mark("Signs for an eye doctor, asked always")) + ":"
     for sign in answer.signs:

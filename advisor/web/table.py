@@ -3,13 +3,17 @@
 import csv
 import io
 import unicodedata
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 
-from advisor.counsel.comparison import Advice, AdvisedOption, Caution, Comparison, EyeFigures
+from advisor.counsel.comparison import Advice, AdvisedOption, Caution, Comparison, EyeFigures, OptionFigures
 from advisor.counsel.layout import ROWS, rows_present, two_eyes
+from advisor.counsel.phrases import mark
+from advisor.counsel.second_image_words import beside, lead
+from advisor.web.figure_rows import unbroken
 from advisor.web.language import Language
 
 WIDTH = 26
+SECOND_IMAGE = mark("second image")
 CSV_HEAD = ["file", "reference", "option", "eye", "row", "value"]
 
 
@@ -30,11 +34,11 @@ def _padded(text: str, width: int, *, right: bool = False) -> str:
 
 def _wrapped(text: str, width: int) -> list[str]:
     lines = [""]
-    for word in text.split():
+    for word in unbroken(" ".join(text.split())).split(" "):
         if lines[-1] and shown_width(lines[-1]) + 1 + shown_width(word) > width:
             lines.append("")
         lines[-1] = f"{lines[-1]} {word}".strip()
-    return lines
+    return [one.replace("\N{NO-BREAK SPACE}", " ") for one in lines]
 
 
 def text_table(comparison: Comparison, *, title: str, currency: str, language: Language) -> str:
@@ -43,7 +47,8 @@ def text_table(comparison: Comparison, *, title: str, currency: str, language: L
     options = comparison.options
     heads = [_wrapped(f"{option.index + 1}  {option.label}", WIDTH) for option in options]
     rows = rows_present(comparison)
-    first = max([shown_width(_(row.label)) for row in rows] + [shown_width(_("price of the pair"))]) + 2
+    labels = [_(row.label) for row in rows] + [_("price of the pair"), _(SECOND_IMAGE)]
+    first = max(shown_width(label) for label in labels) + 2
 
     def line(label: str, cells: Iterable[str]) -> str:
         return (_padded(label, first) + "  ".join(_padded(cell, WIDTH, right=True) for cell in cells)).rstrip()
@@ -55,6 +60,10 @@ def text_table(comparison: Comparison, *, title: str, currency: str, language: L
     lines.append("-" * (first + (WIDTH + 2) * len(options) - 2))
     lines.append(line(_("price of the pair"), [language.money(option.price, currency=currency) for option in options]))
     lines += [line(_(row.label), [two_eyes(row, option, language) for option in options]) for row in rows]
+    for label, cells in _second_image(options, language):
+        broken = [_wrapped(cell, WIDTH) for cell in cells]
+        for k in range(max(len(cell) for cell in broken)):
+            lines.append(line(label if k == 0 else "", [cell[k] if k < len(cell) else "" for cell in broken]))
     lines.append("")
     for option in options:
         lines += [f"{_('Option')} {option.index + 1}: {refusal.text}" for refusal in option.refused]
@@ -71,6 +80,19 @@ def text_table(comparison: Comparison, *, title: str, currency: str, language: L
     if comparison.defaults_used:
         lines.append(f"{_('Defaults used')}: {', '.join(comparison.defaults_used)}")
     return "\n".join(one_line(text) for text in lines).rstrip() + "\n"
+
+
+def _second_image(options: Sequence[OptionFigures], language: Language) -> list[tuple[str, list[str]]]:
+    """Return the second image in words, what is seen and where, then how sure it is; no row where nothing is told."""
+    _ = language.gettext
+    spoken = [lead(option, language) or "–" for option in options]
+    beneath = [beside(option, language) for option in options]
+    if set(spoken) == {"–"} and not any(beneath):
+        return []
+    rows = [(_(SECOND_IMAGE), spoken)]
+    for k in range(max(len(notes) for notes in beneath)):
+        rows.append(("", [notes[k] if k < len(notes) else "" for notes in beneath]))
+    return rows
 
 
 def advice_lines(advice: Advice, *, currency: str, language: Language) -> list[str]:

@@ -5,8 +5,9 @@ from typing import Any
 
 import pytest
 
-from advisor.counsel.bench import HINTS, PLACE_TEXTS, Bench, bench_of, is_polycarbonate
+from advisor.counsel.bench import HINTS, PLACE_TEXTS, Bench, bench_of
 from advisor.counsel.compare import compute
+from advisor.counsel.materials import is_polycarbonate
 from advisor.counsel.order import NotReady
 from advisor.counsel.stock import builtin_range, check_range
 from advisor.counsel.visit import check_visit
@@ -39,6 +40,24 @@ def test_the_move_from_the_box_centre_is_that_of_the_box_system() -> None:
     # (a + DBL)/2 - PD = 35 - 31 inwards, height - b/2 = 21 - 19 upwards
     for eye in bench().eyes:
         assert (eye.inward_mm, eye.upward_mm) == (4.0, 2.0)
+
+
+def test_a_lens_for_near_alone_is_moved_to_the_near_pd() -> None:
+    # (52 + 18)/2 - 29 = 6 inwards; a reading lens, and single vision made to a near power
+    eye = {"pd_mm": 31.0, "near_pd_mm": 29.0, "height_mm": 21.0}
+    fitting = {"right": eye, "left": eye}
+    made_near = {"for": "near", "right": {"sphere": 1.5}, "left": {"sphere": 1.5}}
+    reading = {"for": "near", "right": {"sphere": 1.0, "add": 2.0}, "left": {"sphere": 1.0, "add": 2.0}}
+    option = {"design": "reading", "material": "hard-resin-150", "coating": "bare"}
+    for found in (
+        bench(prescription=made_near, fitting=fitting),
+        bench(prescription=reading, fitting=fitting, options=[option]),
+    ):
+        for lens in found.eyes:
+            assert lens.inward_mm == pytest.approx(6.0)
+            assert lens.order.near_pd_mm == 29.0
+    far = made_near | {"for": "distance"}
+    assert bench(prescription=far, fitting=fitting).eyes[0].inward_mm == pytest.approx(4.0)
 
 
 def test_a_pd_wider_than_the_frame_moves_outwards() -> None:

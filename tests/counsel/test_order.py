@@ -17,7 +17,7 @@ COMPLETE: dict[str, Any] = {
     "date": "2026-12-01",
     "wearer": {"birth_date": "1980-05-04"},
     "prescription": {
-        "vertex_mm": 14.0,
+        "vertex_mm": 14.0, "for": "distance",
         "right": {"sphere": -6.0, "cylinder": -2.0, "axis": 30, "add": 2.0,
                   "prism": [{"amount": 1.0, "base": "in"}, {"amount": 0.5, "base": "up"}]},
         "left": {"sphere": -5.25, "balance": True},
@@ -181,6 +181,7 @@ def test_a_published_vertex_figure() -> None:
 def test_near_designs_are_made_with_their_share_of_the_add(design: str, share: float) -> None:
     content = without()
     content["options"][0]["design"] = design
+    content["prescription"]["for"] = {"single-vision": "distance", "progressive": "all"}.get(design, "near")
     content["prescription"]["vertex_mm"] = 12.0  # nothing to compensate
     right, left = order(content).eyes
     assert right.made.sphere_d == pytest.approx(-6.0 + 2.0 * share, abs=1e-12)
@@ -199,7 +200,80 @@ def test_the_rest_of_the_order_is_what_was_measured() -> None:
     assert (right.balance, left.balance) == (False, True)
     assert placed.least_edge_mm == 1.8  # grooved; common practice, no source
     assert placed.least_centre_mm == 1.2  # thiourethane 1.67 of the built-in range
-    child = without()
+    child = without(declined=[{"key": "tough-material", "by": "parent"}])
     child["daily_life"]["child"] = "yes"
     assert order(child).least_centre_mm == 2.0
     assert order(child).eyes[0].centre_mm >= 2.0
+
+
+PLAIN = {"right": {"sphere": -2.0}, "left": {"sphere": -2.0}}
+RESIN = {"design": "single-vision", "material": "hard-resin-150", "coating": "bare"}
+TEEN = {"birth_date": "2012-05-05"}
+DECLINED_TOUGH = [{"key": "tough-material", "by": "parents"}]
+
+
+def against(option: dict[str, Any], **more: Any) -> list[str]:
+    """The musts that hold an otherwise complete order back, by key."""
+    life = COMPLETE["daily_life"] | more.pop("daily_life", {})
+    content = without(options=[option], daily_life=life, **{"prescription": PLAIN, **more})
+    return [reason.code for reason in missing(computed(content), index=0)]
+
+
+LOW = {"right": {"pd_mm": 31, "height_mm": 17}, "left": {"pd_mm": 31, "height_mm": 20}, "vertex_mm": 12}
+HIGH = {"right": {"pd_mm": 31, "height_mm": 18}, "left": {"pd_mm": 31, "height_mm": 20}, "vertex_mm": 12}
+ADDED = {"right": {"sphere": -2.0, "add": 2.0}, "left": {"sphere": -2.0, "add": 2.0}}
+
+
+@pytest.mark.parametrize(
+    ("option", "visit", "expected"),
+    [
+        (RESIN, {"wearer": TEEN, "daily_life": {"impact": "often"}}, ["tough-child", "tough-impact"]),
+        (RESIN, {"wearer": TEEN, "daily_life": {"impact": "often"}, "declined": DECLINED_TOUGH}, []),
+        (RESIN | {"material": "polycarbonate-159"}, {"wearer": TEEN, "daily_life": {"impact": "often"}}, []),
+        (RESIN, {"daily_life": {"one_good_eye": "yes"}}, ["tough-one-eye"]),
+        # 7.5 % is never for driving, 15 % never by night; neither where nobody drives
+        (RESIN | {"tint": 0.075}, {"daily_life": {"night_driving": "never"}}, ["driving-tint"]),
+        (RESIN | {"tint": 0.075}, {"daily_life": {"driving": "never"}}, []),
+        (RESIN | {"tint": 0.15}, {"daily_life": {"night_driving": "often"}}, ["night-driving-tint"]),
+        (RESIN | {"tint": 0.15}, {"daily_life": {"night_driving": "never"}}, []),
+        # a day pair for one who drives at night is ordered once that is on file
+        (RESIN | {"tint": 0.15}, {"daily_life": {"night_driving": "often"}, "declined": [{"key": "night-driving"}]}, []),
+        (RESIN | {"tint": 0.075}, {"declined": [{"key": "night-driving"}]}, ["driving-tint"]),
+        (RESIN | {"design": "progressive"}, {"prescription": ADDED, "fitting": LOW}, ["fitting-height"]),
+        (RESIN | {"design": "progressive"}, {"prescription": ADDED, "fitting": HIGH}, []),
+        (RESIN, {"prescription": ADDED}, ["no-near"]),
+        (RESIN, {"prescription": ADDED | {"for": "distance"}}, []),
+        (RESIN | {"design": "reading"}, {"prescription": ADDED}, ["no-far"]),
+        (RESIN | {"design": "reading"}, {"prescription": ADDED | {"for": "near"}}, []),
+        (RESIN | {"material": "crown-glass-152"}, {"daily_life": {"impact": "sometimes"}}, ["glass"]),
+        (RESIN, {"daily_life": {"price_limit": 70}}, ["price-limit"]),  # hard resin 20 and single vision 60
+        (RESIN, {"daily_life": {"price_limit": 80}}, []),
+    ],
+)  # fmt: skip
+def test_a_must_that_the_chosen_pair_breaks_holds_the_order_back(
+    option: dict[str, Any], visit: dict[str, Any], expected: list[str]
+) -> None:
+    assert against(option, **visit) == expected
+
+
+def test_only_the_chosen_pair_must_keep_the_musts() -> None:
+    content = without(wearer=TEEN, prescription=PLAIN, options=[RESIN, RESIN | {"material": "polycarbonate-159"}])
+    assert missing(computed(content)) == []
+    assert [reason.code for reason in missing(computed(content), index=0)] == ["tough-child"]
+    assert order(content, index=1).least_centre_mm == 2.0
+    with pytest.raises(NotReady, match="impact material first"):
+        order(content, index=0)
+
+
+def test_an_order_says_what_may_be_done_about_a_must() -> None:
+    with pytest.raises(NotReady, match="or record who turned this down"):
+        order(without(wearer=TEEN, prescription=PLAIN, options=[RESIN]))
+    with pytest.raises(NotReady, match="or say what this one is for"):
+        order(without(prescription=ADDED, options=[RESIN]))
+
+
+def test_an_option_that_cannot_be_made_gives_that_reason_alone() -> None:
+    assert missing(computed(without(wearer=TEEN)), index=1) == []
+    with pytest.raises(NotReady) as caught:
+        order(without(wearer=TEEN), index=1)
+    assert len(caught.value.lines) == 1

@@ -1,11 +1,12 @@
 import sqlite3
 from collections.abc import Iterator
 from pathlib import Path
+from typing import Any
 
 import pytest
 
 from advisor.records.location import FILE_NAME
-from advisor.records.rechecks import RecheckMissing
+from advisor.records.rechecks import RecheckChanged, RecheckMissing
 from advisor.records.store import Store
 from advisor.records.visits import VisitMissing
 
@@ -50,6 +51,23 @@ def test_an_outcome_sent_twice_is_recorded_once(store: Store, tmp_path: Path) ->
     for _ in range(2):
         store.save_recheck(CONTENT, visit_id=key, outcome="clean", who_pays="shop", recheck_id="once")
     assert len(rows(tmp_path)) == 1
+
+
+@pytest.mark.parametrize(
+    "change",
+    [{"outcome": "remake"}, {"who_pays": "maker"}, {"content_json": '{"says": "rings"}'}, {"new_visit_id": True}],
+)
+def test_another_outcome_under_the_same_identifier_is_refused_not_lost(
+    store: Store, tmp_path: Path, change: dict[str, Any]
+) -> None:
+    key, new = visit(store), visit(store)
+    first = {"content_json": CONTENT, "visit_id": key, "outcome": "clean", "who_pays": "shop", "recheck_id": "once"}
+    store.save_recheck(**first)
+    if "new_visit_id" in change:
+        change = {"new_visit_id": new}
+    with pytest.raises(RecheckChanged, match="nothing was overwritten"):
+        store.save_recheck(**first | change)
+    assert rows(tmp_path) == [(key, "clean", "shop", None, CONTENT)]
 
 
 def test_it_goes_with_its_visit_and_only_forgets_an_erased_new_order(store: Store, tmp_path: Path) -> None:

@@ -47,4 +47,6 @@ def test_the_stronger_eye_counts() -> None:
 def test_a_caution_is_shortened_to_its_first_sentence() -> None:
     assert short("An ordinary lens is no shield. Ask.") == "An ordinary lens is no shield."
     assert short("Child: a tough lens first, 2.0 mm or more; ask.") == "Child: a tough lens first, 2.0 mm or more."
+    text = "Reading lenses: not for driving, walking or stairs. Never."
+    assert short(text) == "Reading lenses: not for driving, walking or stairs."  # a heading alone says nothing
     assert short("No stop at all") == "No stop at all"

@@ -1,34 +1,15 @@
 """The paper of a saved visit: previews under the policy, PDFs, and a sentence where a PDF cannot be made."""
 
 import json
-from pathlib import Path
 
 import pytest
-from flask import Flask
 from flask.testing import FlaskClient
 
 from advisor.counsel.stock import builtin_range, range_to_toml
 from advisor.records.store import Store
 from advisor.resources import resource_dir
 from advisor.web import paper_pages
-from advisor.web.app import create_app
-from advisor.web.desk import desk_of
 from advisor.web.pdf import PdfUnavailable
-
-
-@pytest.fixture
-def app(tmp_path: Path) -> Flask:
-    return create_app(data_dir=tmp_path, testing=True)
-
-
-@pytest.fixture
-def client(app: Flask) -> FlaskClient:
-    return app.test_client()
-
-
-@pytest.fixture
-def store(app: Flask) -> Store:
-    return desk_of(app).store
 
 
 def saved(store: Store, name: str, *, toml: str = "") -> str:

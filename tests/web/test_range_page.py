@@ -2,33 +2,14 @@
 
 import io
 import re
-from pathlib import Path
 
 import pytest
-from flask import Flask
 from flask.testing import FlaskClient
 from werkzeug.test import TestResponse
 
 from advisor.counsel.stock import Range, builtin_range, parse_range, range_to_toml
 from advisor.records.store import Store
 from advisor.web import range_editing as editing
-from advisor.web.app import create_app
-from advisor.web.desk import desk_of
-
-
-@pytest.fixture
-def app(tmp_path: Path) -> Flask:
-    return create_app(data_dir=tmp_path, testing=True)
-
-
-@pytest.fixture
-def client(app: Flask) -> FlaskClient:
-    return app.test_client()
-
-
-@pytest.fixture
-def store(app: Flask) -> Store:
-    return desk_of(app).store
 
 
 def stored(store: Store) -> Range:

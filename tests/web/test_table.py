@@ -7,6 +7,7 @@ import pytest
 
 from advisor.counsel.compare import compare
 from advisor.counsel.comparison import Comparison
+from advisor.counsel.form import SMALLER_BY_MM
 from advisor.counsel.layout import ROWS
 from advisor.counsel.stock import builtin_range
 from advisor.counsel.visit import check_visit
@@ -117,3 +118,40 @@ def test_the_head_is_written_once_where_asked_and_lines_end_as_the_standard_says
 def test_a_refused_option_has_no_rows_of_figures() -> None:
     rows = csv_rows(answer({}, {"material": "crown-glass-152", "tint": 0.5}), file="a.json")
     assert {row[3] for row in rows if row[2] == 2} <= {"both"}
+
+
+NIGHT = ["oncoming-headlamps-dark-road"]
+
+
+def test_a_weak_ghost_is_one_part_in_many_and_never_nothing_per_cent() -> None:
+    lines = table(answer({}, {"coating": "broadband"}, scenes=NIGHT))
+    # Fresnel at n = 1.498: 0.0397 squared is 1 in 634; two digits are told.
+    assert "1 in 630" in line(lines, "mirrored twice inside")
+    assert "0.000" not in "\n".join(lines)
+
+
+def test_the_second_image_stands_in_words_with_its_place() -> None:
+    weak = {"right": {"sphere": -0.75}, "left": {"sphere": -0.75}}
+    lines = table(answer({}, {"coating": "broadband"}, prescription=weak, scenes=NIGHT))
+    rule = next(k for k, one in enumerate(lines) if one.startswith("second image "))
+    words = " ".join(" ".join(lines[rule : rule + 5]).split())
+    assert "second light" in words
+    assert "beside the" in words
+    width = len(next(one for one in lines if set(one) == {"-"}))
+    assert all(len(one) <= width for one in lines[rule : rule + 5])
+    assert not [one for one in table(answer()) if one.startswith("second image")]  # no scene, no words
+
+
+def test_the_smaller_frame_has_rows_of_its_own() -> None:
+    lines = table(answer(frame={"a_mm": 52, "b_mm": 36}))
+    less = table(answer(frame={"a_mm": 48, "b_mm": 36 * 48 / 52}))  # the smaller frame laid out as the frame itself
+    edge, weight = (line(lines, f"frame 4 mm smaller: {name}").split()[-2] for name in ("thickest edge", "weight"))
+    assert edge == line(less, "thickest edge").split()[-2]
+    assert weight == line(less, "weight of the lens").split()[-2]
+    assert SMALLER_BY_MM == 4.0  # the label says so
+
+
+def test_rows_say_what_they_are_measured_against() -> None:
+    lines = table(answer({}))
+    assert line(lines, "window over the eye behind it").endswith(" times")
+    assert line(lines, "size of what is seen, against no glasses")

@@ -2,17 +2,12 @@
 
 import json
 import re
-from pathlib import Path
 
-import pytest
-from flask import Flask
 from flask.testing import FlaskClient
 
 from advisor import __version__
 from advisor.counsel.stock import builtin_range, range_to_toml
 from advisor.records.store import Store
-from advisor.web.app import create_app
-from advisor.web.desk import desk_of
 
 LIVE = {"HX-Request": "true"}
 FORM = {
@@ -27,21 +22,6 @@ FORM = {
     "options.0.material": "hard-resin-150",
     "options.0.coating.front": "broadband",
 }
-
-
-@pytest.fixture
-def app(tmp_path: Path) -> Flask:
-    return create_app(data_dir=tmp_path, testing=True)
-
-
-@pytest.fixture
-def client(app: Flask) -> FlaskClient:
-    return app.test_client()
-
-
-@pytest.fixture
-def store(app: Flask) -> Store:
-    return desk_of(app).store
 
 
 def saved_id(client: FlaskClient, **changes: str) -> str:
