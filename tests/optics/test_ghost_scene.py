@@ -414,6 +414,13 @@ def test_nothing_is_infinite_or_missing(on_face: LensOnFace, where: Scene, age: 
                 assert np.isfinite(value).all(), name
                 assert value.shape[:1] == (5,), name
     assert (got.relaxed.luminance_cd_m2[~got.applies] == 0.0).all()
+
+
+@settings(max_examples=200)
+@given(on_face=lenses, where=scenes, age=ages, reflectance=st.floats(0, 0.3))
+def test_focusing_on_a_ghost_never_dims_it(on_face: LensOnFace, where: Scene, age: float, reflectance: float) -> None:
+    # of one lamp: the blurred ghosts of several lie over each other and may add up to more than one sharp ghost
+    got = seen(on_face, dataclasses.replace(where, lamps=np.array(1.0)), wearer(age), reflectance=reflectance)
     assert (got.accommodated.luminance_cd_m2 >= got.relaxed.luminance_cd_m2 * (1 - 1e-9))[
         got.relaxed.defocus_d[:, 0] == got.relaxed.defocus_d[:, 1]
     ].all()

@@ -120,4 +120,11 @@ def test_flat_strengths_are_those_of_a_lens_with_two_even_faces() -> None:
 def test_values_outside_the_range_are_refused_by_name(field: str, value: float) -> None:
     values = {"bare_reflectance": BARE, "visibility_level": 1.0, "internal_transmittance": 1.0, field: value}
     with pytest.raises(ValueError, match=field):
-        reflectance_limit(fitted(), scene=scenes(), wearer=WEARER, **values)
+        reflectance_limit(
+            fitted(),
+            scene=scenes(),
+            wearer=WEARER,
+            bare_reflectance=values["bare_reflectance"],
+            visibility_level=values["visibility_level"],
+            internal_transmittance=values["internal_transmittance"],
+        )
