@@ -5,6 +5,7 @@ from dataclasses import dataclass
 from typing import Literal
 
 from advisor.counsel.care import CARE_TEXTS, care_lines
+from advisor.counsel.case import Case
 from advisor.counsel.caution_texts import CAUTION_TEXTS
 from advisor.counsel.cautions import BLUE_FROM, cautions_for
 from advisor.counsel.changes import changes_from_worn
@@ -13,6 +14,7 @@ from advisor.counsel.comparison import Comparison, EyeFigures, Ghost, OptionFigu
 from advisor.counsel.faces import blue_turned_away
 from advisor.counsel.laid_out import Laid
 from advisor.counsel.phrases import Figure, Phrase, mark
+from advisor.counsel.reach import near_only
 from advisor.counsel.sheet_texts import HEADINGS, LINES
 from advisor.counsel.spoken import from_behind, worst_ghost
 from advisor.counsel.stock_items import IN_PLACE, Item
@@ -124,7 +126,7 @@ def wearer_sheet(computed: Computed, answer: Comparison, *, index: int, price: s
         Block(
             "why",
             "lines",
-            (*_facts(option.right, laid), *_ghosts(option, drives=computed.case.life("night_driving") != "never")),
+            (*_facts(option.right, laid), *_ghosts(option, drives=_is_driven_in_at_night(computed.case, laid))),
         ),
         Block("coating", "lines", tuple(_coating(option.right, laid))),
         Block("do", "do", tuple(care_lines(answered, kind="do"))),
@@ -156,16 +158,20 @@ def _purpose(computed: Computed, laid: Laid) -> Iterable[Phrase]:
     kind, wanted = laid.design.kind, case.visit.prescription.for_
     if kind == "single-vision":
         far_alone = case.has_add or wanted == "distance" or case.age_years >= READS_WITH_HELP_FROM
-        keys = {"near": "for-near", "intermediate": "for-desk"}
-        yield Phrase(keys.get(wanted or "", "for-far" if far_alone else "for-all"))
+        near = "for-desk" if wanted == "intermediate" else "for-near"
+        yield Phrase(near if near_only(case, laid.design) else "for-far" if far_alone else "for-all")
     else:
         keys = {
-            "reading": "for-near",
+            "reading": "for-desk" if wanted == "intermediate" else "for-near",
             "occupational": "for-desk",
             "bifocal": "for-far-and-near-line",
             "progressive": "for-far-to-near",
         }
         yield Phrase(keys[kind])
+
+
+def _is_driven_in_at_night(case: Case, laid: Laid) -> bool:
+    return not case.never_at_night and not near_only(case, laid.design)
 
 
 def _name(item: Item) -> str:
@@ -272,7 +278,7 @@ def _first_days(computed: Computed, laid: Laid) -> Iterable[Phrase]:
         yield Phrase("first-of-kind")
     if laid.design.kind in ("bifocal", "progressive"):
         yield Phrase("first-multifocal")
-    if computed.case.life("driving") != "never" and laid.design.kind not in ("reading", "occupational"):
+    if computed.case.life("driving") != "never" and not near_only(computed.case, laid.design):
         yield Phrase("first-drive")
     yield Phrase("first-keep-old")
 

@@ -9,7 +9,8 @@ from typing import Any
 
 import pytest
 
-from advisor.counsel.compare import compare
+from advisor.counsel.advise import Field, advise, field_of
+from advisor.counsel.compare import compare, compute
 from advisor.counsel.comparison import AdvisedOption, Comparison
 from advisor.counsel.stock import builtin_range, check_range
 from advisor.counsel.visit import check_visit, read_visit
@@ -91,7 +92,15 @@ def test_the_advice_is_what_a_good_dispenser_would_give(case: dict[str, Any]) ->
     if "robust" in expect:
         assert advice.robustness is not None
         assert advice.robustness.code in expect.pop("robust")
+    if best is not None:
+        assert set(expect.pop("own_cautions", [])) <= {caution.key for caution in best.cautions}
+    near = [pair.design for pair in advice.two_pairs or [] if pair.use == "near"]
+    assert set(near) <= set(expect.pop("near_design", near)), near
+    reasons = {reason.code for reason in advice.because}
+    assert set(expect.pop("because", [])) <= reasons, reasons
     changes = {change.code for change in advice.would_change or []}
+    told_of = reasons | changes | {loss.code for loss in advice.gives_up or []}
+    assert not set(expect.pop("not_told", [])) & told_of, told_of
     assert set(expect.pop("would_change", [])) <= changes, changes
     assert not expect, f"the test does not know {sorted(expect)}"
 
@@ -235,3 +244,134 @@ def test_every_demo_wearer_gets_advice_without_promises(file: Path) -> None:
         for word in ("fit to drive", "unbreakable", "get used to", "protects your", "no reflections", "gone")
         if word in said
     ]
+
+
+def field_on(options: list[dict[str, Any]], **visit: Any) -> Field:
+    content = {"prescription": {"right": {"sphere": -3.0}, "left": {"sphere": -3.0}}, "options": options, **visit}
+    computed = compute(check_visit(content), builtin_range(), today=TODAY)
+    return field_of(computed.case, computed.laid, imbalance_prism_d=0.0)
+
+
+def sold(field: Field) -> set[tuple[str, str, str]]:
+    return {(laid.material.key, laid.front.key, laid.back.key) for laid in field.pool.laid[field.pool.given :]}
+
+
+def test_a_single_layer_and_glass_are_advised_only_where_they_are_laid_out() -> None:
+    life = {"impact": "never"}
+    plain = sold(field_on([RESIN], daily_life=life))
+    assert plain
+    assert not [parts for parts in plain if "magnesium-fluoride" in parts or "glass" in parts[0]]
+    with_glass = sold(field_on([{**RESIN, "material": "crown-glass-152"}], daily_life=life))
+    layered = {material for material, front, _ in with_glass if front == "magnesium-fluoride"}
+    assert layered == {"crown-glass-152"}
+    worn = sold(field_on([RESIN], daily_life=life, worn_now={"material": "crown-glass-152"}))
+    assert "crown-glass-152" in {material for material, _, _ in worn}
+
+
+def test_a_dark_tint_is_also_had_with_a_bare_front_and_a_clear_lens_is_not() -> None:
+    life = {"night_driving": "never", "impact": "never"}
+    dark = sold(field_on([{**RESIN, "tint": "grey-15"}], daily_life=life))
+    assert ("hard-resin-150", "bare", "broadband") in dark
+    assert ("hard-resin-150", "bare", "broadband") not in sold(field_on([RESIN], daily_life=life))
+    turning = sold(field_on([{**RESIN, "tint": "photochromic-grey"}], daily_life=life))
+    assert ("hard-resin-150", "bare", "broadband") not in turning
+
+
+def test_a_tint_is_weighed_alike_on_every_index_and_shown_as_computed() -> None:
+    options = [{**RESIN, "tint": 0.8}, {**RESIN, "material": "thiourethane-167", "tint": 0.8}]
+    field = field_on(options, daily_life={"night_driving": "often", "impact": "never"})
+    column = list(field.levels).index("transmitted")
+    shown = field.figures["transmitted"][:2]
+    # one figure for bare faces: the higher index is taken to be tinted less, by what its bare faces mirror more
+    low, high = (1 - ((n - 1) / (n + 1)) ** 2 for n in (1.498, 1.665))
+    assert shown[1] / shown[0] == pytest.approx((low / high) ** 2, abs=0.01)
+    assert abs(field.values[0, column] - field.values[1, column]) < 0.03  # what is left is the two films
+
+
+def test_what_others_see_is_told_by_the_figure_of_the_table() -> None:
+    content = {
+        "prescription": {"right": {"sphere": -3.0}, "left": {"sphere": -3.0}},
+        "options": [{**RESIN, "tint": "grey-15"}, {**RESIN, "tint": "grey-15", "coating": "bare"}, RESIN],
+        "daily_life": {"night_driving": "never", "impact": "never"},
+    }
+    computed = compute(check_visit(content), builtin_range(), today=TODAY)
+    field = field_of(computed.case, computed.laid, imbalance_prism_d=0.0)
+    answer = compare(check_visit(content), builtin_range(), translator=language("en"), today=TODAY)
+    for k, option in enumerate(answer.options):
+        assert option.right is not None
+        assert option.right.observer_contrast == pytest.approx(float(field.figures["seen-by-others"][k]))
+
+
+def words_of(advice: Any) -> str:
+    parts = [*advice.because, *advice.gives_up, *advice.would_change, *advice.free_first]
+    for pair in (advice.next_best, advice.cheapest_that_meets_every_must):
+        parts += [*(pair.because or []), *(pair.gives_up or [])] if pair is not None else []
+    return " ".join(part.text for part in parts)
+
+
+@pytest.mark.parametrize("case", CASES, ids=lambda case: case["name"])
+def test_reasons_are_in_an_opticians_words(case: dict[str, Any]) -> None:
+    advice = answer_to(case["name"]).advice
+    assert advice is not None
+    if advice.recommended is not None:
+        said = words_of(advice)
+        assert not [word for word in ("visibility level", "as a count", " 0.00 D", "%(") if word in said]
+
+
+def test_care_is_told_in_words_that_name_what_harms() -> None:
+    advice = answer_to("nail technician with one good eye").advice
+    assert advice is not None
+    care = [reason for reason in advice.because or [] if reason.code == "figure-care"]
+    assert [reason.text for reason in care] == [
+        "Care in this life (sprays or solvents): easier than with the next best."
+    ]
+
+
+def test_polycarbonate_beside_solvents_carries_its_caution() -> None:
+    advice = answer_to("nail technician with one good eye").advice
+    assert advice is not None
+    assert advice.next_best is not None
+    assert advice.next_best.material == "polycarbonate-159"
+    assert "solvent-soft-material" in {caution.key for caution in advice.next_best.cautions}
+
+
+def test_the_scene_of_a_light_behind_is_named_and_the_window_comes_first() -> None:
+    advice = answer_to("window and lamp behind").advice
+    assert advice is not None
+    texts = [part.text for part in (*(advice.because or []), *(advice.free_first or [])) if "behind" in part.text]
+    assert texts
+    assert all("window behind" in text for text in texts)
+
+
+def test_what_decides_against_the_next_best_is_told() -> None:
+    for name in ("football at fourteen", "minus twelve, thickness and weight disliked", "bifocal for a child"):
+        advice = answer_to(name).advice
+        assert advice is not None
+        assert [reason for reason in advice.because or [] if "the next best" in reason.text], name
+
+
+def test_a_lens_that_relies_on_one_eye_is_two_millimetres_thick() -> None:
+    advice = answer_to("balance lens, one good eye not asked").advice
+    assert advice is not None
+    (reason,) = (reason for reason in advice.because or [] if reason.code == "is-tough")
+    assert float(str(reason.figures["centre_mm"])) >= 2.0
+
+
+def test_two_pairs_instead_are_priced_by_their_parts() -> None:
+    # hard resin 20 and broadband 70 twice, single vision 60, reading 60
+    advice = answer_to("first multifocal at 76, with falls").advice
+    assert advice is not None
+    assert advice.recommended is not None
+    assert (advice.recommended.material, coating(advice.recommended)) == ("hard-resin-150", "broadband")
+    (change,) = (change for change in advice.would_change or [] if change.code == "if-two-pairs")
+    assert change.figures["price"] == 2 * (20 + 70) + 60 + 60
+
+
+def test_an_order_of_priorities_is_named_only_by_what_is_better_there() -> None:
+    for case in CASES:
+        computed = compute(check_visit(case["visit"]), builtin_range(), today=TODAY)
+        counsel = advise(computed.case, computed.laid, imbalance_prism_d=computed.vertical_imbalance_prism_d)
+        for key, other in counsel.if_first:
+            column = list(counsel.field.levels).index(key)
+            assert counsel.recommended is not None
+            assert counsel.field.values[other, column] > counsel.field.values[counsel.recommended, column]

@@ -11,7 +11,7 @@ import pytest
 
 from advisor.counsel.caution_texts import CAUTION_TEXTS
 from advisor.counsel.cautions import CAUTIONS
-from advisor.counsel.compare import compare
+from advisor.counsel.compare import compare, compute
 from advisor.counsel.comparison import Caution
 from advisor.counsel.stock import Range, builtin_range, check_range
 from advisor.counsel.visit import check_visit
@@ -71,6 +71,7 @@ def mirror(share: float) -> dict[str, Any]:
 BOTH = ("prescription.right.sphere", "prescription.left.sphere")
 TINT, COATING, MATERIAL, DESIGN = ("options.0.tint", "options.0.coating", "options.0.material", "options.0.design")
 ADDS: Change = {"prescription.right.add": 2.0, "prescription.left.add": 2.0}
+SOLVENTS: Change = {"daily_life.sprays_solvents": "often"}
 UNEQUAL: Change = {"prescription.left.sphere": -3.0}
 
 
@@ -141,6 +142,30 @@ PAIRS: dict[str, list[tuple[Change, Change]]] = {
     "not-for-driving-design": [
         ({**ADDS, DESIGN: "reading"}, {**ADDS, DESIGN: "progressive"}),
         ({**ADDS, DESIGN: "occupational"}, {**ADDS, DESIGN: "bifocal"}),
+        # single vision made to a near power is no better for driving than a reading lens
+        ({"prescription.for": "near"}, {"prescription.for": "distance"}),
+        ({"prescription.for": "intermediate"}, {}),
+        # with an add the sphere is the distance power, whatever the pair is said to be for
+        ({"prescription.for": "near"}, {**ADDS, "prescription.for": "near"}),
+    ],
+    "no-power": [
+        (spheres(0.0), {"prescription.right.sphere": 0.0}),
+        (spheres(0.0), {**spheres(0.0), **ADDS}),
+        (spheres(0.0), toric(0.0, -0.25, 90)),
+        (spheres(0.0), {**spheres(0.0), "prescription.right.prism": [{"amount": 1.0, "base": "in"}]}),
+    ],
+    "solvent-soft-material": [
+        ({MATERIAL: "polycarbonate-159", **SOLVENTS}, {MATERIAL: "polyurethane-urea-153", **SOLVENTS}),
+        ({MATERIAL: "polycarbonate-159", **SOLVENTS}, {MATERIAL: "polycarbonate-159"}),
+        (
+            {MATERIAL: "polycarbonate-159", "daily_life.sprays_solvents": "sometimes"},
+            {MATERIAL: "polycarbonate-159", "daily_life.sprays_solvents": "never"},
+        ),
+        # told by its figures where the name does not say it
+        (
+            {MATERIAL: material(n_d=1.59, abbe=30, tough=True), **SOLVENTS},
+            {MATERIAL: material(n_d=1.59, abbe=30), **SOLVENTS},
+        ),
     ],
     "no-near": [
         (ADDS, {}),
@@ -188,7 +213,10 @@ PAIRS: dict[str, list[tuple[Change, Change]]] = {
         (worn(-3.25), {}),
         (worn(-0.95), worn(-1.0)),  # 1.05 D
         # each eye against its own lens
-        ({"prescription.left.sphere": -4.0, **worn(-2.0, -2.5)}, {"prescription.left.sphere": -4.0, **worn(-2.0, -4.0)}),
+        (
+            {"prescription.left.sphere": -4.0, **worn(-2.0, -2.5)},
+            {"prescription.left.sphere": -4.0, **worn(-2.0, -4.0)},
+        ),
         # the axis of a weak cylinder says little; from 0.50 on both it counts
         (
             {**toric(-2.0, -0.5, 60), **worn(-2.0, cylinder=-0.5, axis=20)},
@@ -280,7 +308,12 @@ PAIRS: dict[str, list[tuple[Change, Change]]] = {
     ],
     "photochromic-windscreen": [({TINT: tint(0.85, kind="photochromic")}, {TINT: tint(0.85, kind="fixed")})],
     "polarising": [({TINT: tint(0.15, kind="polarising")}, {TINT: tint(0.15, kind="fixed")})],
-    "tint-colour-unknown": [({TINT: 0.85}, {})],
+    "tint-colour-unknown": [
+        ({TINT: 0.85}, {}),
+        ({TINT: 0.85}, {TINT: "grey-50"}),  # nobody asks whether plain grey or brown is a strong pink
+        ({TINT: "light-85"}, {TINT: "brown-75"}),
+        ({TINT: tint(0.8, label="Yellow 80")}, {TINT: tint(0.8, label="Smoky gray 80")}),
+    ],
     "blue-film-no-relief": [
         ({COATING: "blue-reflecting"}, {COATING: "broadband"}),
         ({COATING: mirror(0.081)}, {COATING: mirror(0.079)}),
@@ -364,7 +397,7 @@ def test_a_caution_reads_as_a_sentence_with_its_figures_rule_and_source(key: str
     assert caution.source
     assert re.fullmatch(r"[A-Z].*\.", caution.text)
     assert not re.search(r"%\(|%%|–|nan|None", caution.text)
-    placeholders = re.findall(r"%\((\w+)\)", CAUTION_TEXTS[key].text)
+    placeholders = re.findall(r"%\((\w+)\)", CAUTION_TEXTS[key].text_for(caution.figures))
     assert sorted(placeholders) == sorted(caution.figures)
 
 
@@ -374,7 +407,7 @@ def test_figures_are_written_as_a_person_writes_them() -> None:
     assert "passes 15.0 % of the light, below 75 %:" in cautions({TINT: tint(0.15)})["not-for-night-driving-tint"].text
     # a figure just below a limit is cut, never rounded up to the limit it is said to be below
     assert "passes 74.9 % of" in cautions({TINT: tint(0.7499)})["not-for-night-driving-tint"].text
-    assert "by up to 1.25 D and" in cautions(worn(-0.75))["large-change"].text  # a size, without a sign
+    assert "changes by up to 1.25 D against" in cautions(worn(-0.75))["large-change"].text  # a size, without a sign
     low = cautions({DESIGN: "progressive", "fitting.left.height_mm": 17.9})["fitting-height-too-low"].text
     assert low == "The fitting height of 17.9 mm is below the 18.0 mm this design needs."
     assert "differ by 1.00 prism" in cautions({**ADDS, **UNEQUAL})["near-vertical-imbalance"].text
@@ -404,3 +437,29 @@ def test_the_wearer_is_told_of_everything_grave() -> None:
     for key in ("not-eye-protection", "child", "one-eye", "not-for-driving-tint", "not-for-night-driving-tint",
                 "not-for-driving-design", "new-glare-exam", "steps", "no-near", "glass-breaks"):  # fmt: skip
         assert CAUTION_TEXTS[key].sheet
+
+
+def test_a_large_change_tells_only_what_is_large() -> None:
+    turned: Change = {**toric(-2.0, -1.0, 91), **worn(-2.0, cylinder=-1.0, axis=80)}
+    both: Change = {**toric(-4.0, -1.0, 91), **worn(-2.0, cylinder=-1.0, axis=80)}
+    texts = [cautions(call)["large-change"].text for call in (worn(-0.75), turned, both)]
+    assert ["axis" in text for text in texts] == [False, True, True]
+    assert ["power" in text for text in texts] == [True, False, True]
+    assert not [text for text in texts if " 0.0 " in text or "0.00" in text]
+
+
+def test_the_caution_on_steps_names_the_wearer_it_is_about() -> None:
+    child: Change = {**ADDS, DESIGN: "bifocal", "wearer": {"birth_date": "2018-03-01"}}
+    assert "Older" not in cautions(child)["steps"].text
+    assert cautions({"wearer.birth_year": 1950})["steps"].text.startswith("Older or unsteady wearers:")
+
+
+def test_one_function_says_who_relies_on_one_eye() -> None:
+    # the caution, the centre and the must agree for a balance lens without an answer
+    balanced: Change = {"prescription.left.balance": True, MATERIAL: "polycarbonate-159", "daily_life.impact": "never"}
+    assert "one-eye" in cautions(balanced)
+    assert compute(check_visit(changed(balanced)), builtin_range()).forms.shape.centre_mm.min() >= 2.0
+    two_eyes = changed({**balanced, "daily_life.one_good_eye": "no"})
+    assert "one-eye" not in cautions({**balanced, "daily_life.one_good_eye": "no"})
+    # the material's own least centre
+    assert compute(check_visit(two_eyes), builtin_range()).forms.shape.centre_mm.min() == pytest.approx(1.5)

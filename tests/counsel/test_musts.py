@@ -148,6 +148,10 @@ def test_a_photochromic_lens_is_judged_clear_for_the_night_and_dark_for_driving(
         ("reading", "near", set()),
         ("occupational", "all", {"no-far"}),
         ("occupational", "intermediate", set()),
+        ("reading", "intermediate", {"whole-add", "no-screen"}),  # and 2.25 is 0.58 too strong at 60 cm
+        ("bifocal", "near", {"near-alone"}),
+        ("progressive", "near", {"near-alone"}),
+        ("progressive", "intermediate", {"near-alone"}),
         ("bifocal", "all", set()),
         ("progressive", "all", set()),
         (None, "all", {"no-near"}),
@@ -181,6 +185,37 @@ def test_the_screen_between_the_two_parts_of_a_bifocal() -> None:
     assert "no-screen" not in codes(*build({"design": "bifocal"}, prescription=ADD, **young))
     unasked: dict[str, Any] = {"fitting": life["fitting"], "wearer": life["wearer"]}
     assert "no-screen" not in codes(*build({"design": "bifocal"}, prescription=ADD, **unasked))
+
+
+def test_a_reading_lens_serves_the_screen_where_its_add_is_known_to_fit() -> None:
+    # 66 years, no focusing left. The screen at 70 cm asks for 1.43 D, at 45 cm for 2.22 D
+    old: dict[str, Any] = {"wearer": {"birth_year": 1960}}
+    screen = {**ADD, "for": "intermediate"}
+
+    def found(cm: float | None, **prescription: Any) -> set[str]:
+        fitting: dict[str, Any] = {} if cm is None else {"fitting": {"working_distance_cm": [cm]}}
+        return codes(*build({"design": "reading"}, prescription=screen | prescription, **fitting, **old))
+
+    assert "whole-add" in found(None)
+    assert found(70) == {"no-screen"}  # 2.25 is 0.82 D too strong
+    assert found(45) == set()
+    assert found(70, intermediate_add=1.5) == set()
+    assert found(None, intermediate_add=1.5) == set()  # 60 cm, 1.67 D
+    assert found(45, intermediate_add=1.5) == {"no-screen"}  # 0.72 D too weak
+
+
+def test_what_is_on_file_as_turned_down_lifts_its_own_must_alone() -> None:
+    by_day = [{"key": "night-driving", "by": "wearer"}]
+    case, laid = build({"tint": 0.15}, daily_life={"night_driving": "often"}, declined=by_day)
+    assert codes(case, laid, light(0.15)) == set()
+    assert codes(case, laid, light(0.05)) == {"driving-tint"}
+    life: dict[str, Any] = {
+        "daily_life": {"screen_work": "often"},
+        "fitting": {"working_distance_cm": [65]},
+        "wearer": {"birth_year": 1960},
+    }
+    kept = [{"key": "screen-distance", "by": "wearer"}]
+    assert "no-screen" not in codes(*build({"design": "bifocal"}, prescription=ADD, declined=kept, **life))
 
 
 def test_a_design_with_an_add_needs_one() -> None:
@@ -237,6 +272,8 @@ def test_every_broken_condition_can_be_said() -> None:
             fitting={"right": {"height_mm": 10}},
         ),
         build({"design": "reading"}, prescription=ADD),
+        build({"design": "reading"}, prescription={**ADD, "for": "intermediate"}),
+        build({"design": "bifocal"}, prescription={**ADD, "for": "near"}),
         build({"material": "episulfide-174"}, daily_life={"heat_steam": "often"}),
     ]
     for case, laid in many:

@@ -209,6 +209,7 @@ def test_the_rest_of_the_order_is_what_was_measured() -> None:
 PLAIN = {"right": {"sphere": -2.0}, "left": {"sphere": -2.0}}
 RESIN = {"design": "single-vision", "material": "hard-resin-150", "coating": "bare"}
 TEEN = {"birth_date": "2012-05-05"}
+BY_DAY = [{"key": "night-driving", "by": "wearer"}]
 DECLINED_TOUGH = [{"key": "tough-material", "by": "parents"}]
 
 
@@ -237,8 +238,8 @@ ADDED = {"right": {"sphere": -2.0, "add": 2.0}, "left": {"sphere": -2.0, "add": 
         (RESIN | {"tint": 0.15}, {"daily_life": {"night_driving": "often"}}, ["night-driving-tint"]),
         (RESIN | {"tint": 0.15}, {"daily_life": {"night_driving": "never"}}, []),
         # a day pair for one who drives at night is ordered once that is on file
-        (RESIN | {"tint": 0.15}, {"daily_life": {"night_driving": "often"}, "declined": [{"key": "night-driving"}]}, []),
-        (RESIN | {"tint": 0.075}, {"declined": [{"key": "night-driving"}]}, ["driving-tint"]),
+        (RESIN | {"tint": 0.15}, {"daily_life": {"night_driving": "often"}, "declined": BY_DAY}, []),
+        (RESIN | {"tint": 0.075}, {"declined": BY_DAY}, ["driving-tint"]),
         (RESIN | {"design": "progressive"}, {"prescription": ADDED, "fitting": LOW}, ["fitting-height"]),
         (RESIN | {"design": "progressive"}, {"prescription": ADDED, "fitting": HIGH}, []),
         (RESIN, {"prescription": ADDED}, ["no-near"]),
@@ -277,3 +278,20 @@ def test_an_option_that_cannot_be_made_gives_that_reason_alone() -> None:
     with pytest.raises(NotReady) as caught:
         order(without(wearer=TEEN), index=1)
     assert len(caught.value.lines) == 1
+
+
+def test_a_reading_lens_for_the_screen_is_made_with_the_add_written_for_it() -> None:
+    screen = {"for": "intermediate", "intermediate_add": 1.25, "vertex_mm": 12, **ADDED}
+    content = without(prescription=screen, options=[RESIN | {"design": "reading"}])
+    for eye in order(content).eyes:
+        assert eye.made.sphere_d == pytest.approx(-2.0 + 1.25, abs=1e-12)
+    content["prescription"] = screen | {"for": "near"}
+    assert order(content).eyes[0].made.sphere_d == pytest.approx(0.0, abs=1e-12)
+
+
+def test_a_lens_for_near_alone_is_ordered_with_the_pd_it_is_centred_at() -> None:
+    # measured on the right; on the left by similar triangles from the centre of rotation: 400/(400 + 12 + 15) x 32
+    made_near = {"for": "near", "right": {"sphere": 2.0}, "left": {"sphere": 2.0}}
+    right, left = order(without(prescription=made_near, options=[RESIN])).eyes
+    assert right.near_pd_mm == 29.5
+    assert left.near_pd_mm == pytest.approx(32.0 * 400 / 427, abs=1e-9)

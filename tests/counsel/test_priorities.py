@@ -100,6 +100,25 @@ def test_one_who_never_drives_has_no_second_light_to_weigh() -> None:
     assert "second-image" in levels_of(case())
 
 
+def test_a_pair_for_near_alone_has_no_second_light_to_weigh() -> None:
+    for wanted in ("near", "intermediate"):
+        content = {"prescription": {"for": wanted, "right": {"sphere": 1.75}, "left": {"sphere": 1.75}}}
+        near = build_case(check_visit(content), builtin_range(), today=dt.date(2026, 12, 1))
+        assert "second-image" not in levels_of(near)
+
+
+def test_what_faces_and_tint_take_is_weighed_by_night_and_what_faces_take_by_day() -> None:
+    night, day = levels_of(case()), levels_of(case(night_driving="never"))
+    assert ("transmitted" in night, "not-mirrored" in night) == (True, False)
+    assert ("transmitted" in day, "not-mirrored" in day) == (False, True)
+
+
+def test_one_often_in_the_sun_has_it_behind_unless_that_was_asked() -> None:
+    assert levels_of(case(sun="often"))["from-behind"] == levels_of(case(lights_behind="sometimes"))["from-behind"]
+    assert levels_of(case(sun="often", lights_behind="often"))["from-behind"] == 3
+    assert "from-behind" not in levels_of(case(sun="often", lights_behind="never"))
+
+
 def test_every_level_belongs_to_a_criterion_of_the_table() -> None:
     assert set(levels_of(case())) <= set(criteria())
     assert list(levels_of(case()).values()) != []

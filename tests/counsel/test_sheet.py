@@ -430,3 +430,22 @@ def test_a_makers_figure_is_told_as_one() -> None:
     made = f"{100 * (0.007 + 0.993**2 * 0.007):.1f}"
     assert f"Your lenses mirror away about {made} % of the light, by the maker's figure. Without it: 7.7 %." in lines
     assert "Coating on both sides: House coating" in read(html).sections["What you chose"]
+
+
+def near_sheet(**prescription: Any) -> str:
+    eyes = {"right": {"sphere": 1.75}, "left": {"sphere": 1.75}}
+    life = {"driving": "often", "night_driving": "often"}
+    option = {"design": "single-vision", "material": "hard-resin-150", "coating": "bare"}
+    content = {"prescription": eyes | prescription, "daily_life": life, "options": [option]}
+    return read(wearer_sheet(check_visit(content), STOCK, code="en", today=TODAY)).text
+
+
+def test_single_vision_made_for_near_is_not_driven_in() -> None:
+    near, far = near_sheet(**{"for": "near"}), near_sheet(**{"for": "distance"})
+    assert "made for reading and near work" in near
+    assert "Do not drive, walk about or use stairs in them." in near
+    assert "Do not drive until" not in near
+    assert "second light" not in near.split("Come back")[0]
+    assert "Do not drive until" in far
+    assert "Do not drive, walk about" not in far
+    assert "made for the desk and the screen" in near_sheet(**{"for": "intermediate"})
