@@ -244,7 +244,7 @@ def test_a_slip_shows_everything_a_maker_needs() -> None:
     assert lens["made"] == "to the frame's shape"
     text = unescape(slip())
     assert "reference A-117" in text
-    assert "tough-material (wearer)" in text
+    assert "an impact material (child, one good eye, knocks) (the wearer)" in text
     assert "A note for the shop alone" not in text
 
 
