@@ -72,6 +72,13 @@ def read_date(value: object, info: ValidationInfo) -> object:
     raise refusal("not-a-date")
 
 
+def checked_axis(axis: float | None, info: ValidationInfo) -> float | None:
+    """Refuse a cylinder without an axis; 0 reads as 180."""
+    if axis is None and info.data.get("cylinder"):
+        raise refusal("cylinder-without-axis", {"cylinder": info.data["cylinder"]})
+    return 180.0 if axis == 0 else axis
+
+
 def empty_is_none(value: object, info: ValidationInfo) -> object:
     """Read an empty text of a form as left out."""
     return None if value == "" and _from_form(info) else value

@@ -7,7 +7,7 @@ from typing import Annotated, Any, Literal
 from pydantic import Field, ValidationError, ValidationInfo, field_validator
 
 from advisor.counsel.faults import Faults, faults_from
-from advisor.counsel.fields import Number, Strict, refusal
+from advisor.counsel.fields import Number, Strict, checked_axis
 from advisor.counsel.files import parse_json, read_text
 from advisor.counsel.prescription import Eye, PrismVector, SphereCylinder, combined_prism
 from advisor.counsel.visit import PrismPart
@@ -30,9 +30,7 @@ class MeasuredEye(Strict):
     @field_validator("axis")
     @classmethod
     def _axis(cls, axis: float | None, info: ValidationInfo) -> float | None:
-        if axis is None and info.data.get("cylinder"):
-            raise refusal("cylinder-without-axis", {"cylinder": info.data["cylinder"]})
-        return 180.0 if axis == 0 else axis
+        return checked_axis(axis, info)
 
     @property
     def power(self) -> SphereCylinder | None:

@@ -11,7 +11,19 @@ from pydantic import Field, ValidationError, ValidationInfo, field_validator, mo
 
 from advisor.counsel.choices import CoatingRef, FrontPower, MaterialRef, Option
 from advisor.counsel.faults import Faults, faults_from
-from advisor.counsel.fields import Choice, Date, Key, Line, Money, Number, Paragraph, Strict, Truth, refusal
+from advisor.counsel.fields import (
+    Choice,
+    Date,
+    Key,
+    Line,
+    Money,
+    Number,
+    Paragraph,
+    Strict,
+    Truth,
+    checked_axis,
+    refusal,
+)
 from advisor.counsel.files import parse_json, read_text
 from advisor.counsel.prescription import Base, PrismVector, SphereCylinder, combined_prism
 from advisor.optics.outline import LEAST_POINTS, traced_rim
@@ -73,9 +85,7 @@ class EyePrescription(Strict):
     @field_validator("axis")
     @classmethod
     def _axis(cls, axis: float | None, info: ValidationInfo) -> float | None:
-        if axis is None and info.data.get("cylinder"):
-            raise refusal("cylinder-without-axis", {"cylinder": info.data["cylinder"]})
-        return 180.0 if axis == 0 else axis
+        return checked_axis(axis, info)
 
     @property
     def power(self) -> SphereCylinder:

@@ -7,7 +7,6 @@ from pathlib import Path
 from typing import Any
 
 import pytest
-from flask import Flask
 from flask.testing import FlaskClient
 
 from advisor.counsel.recheck_answer import RecheckRecord
@@ -17,8 +16,6 @@ from advisor.records.location import FILE_NAME
 from advisor.records.store import Store
 from advisor.resources import resource_dir
 from advisor.web import recheck as recheck_page
-from advisor.web.app import create_app
-from advisor.web.desk import desk_of
 from advisor.web.pdf import PdfUnavailable
 
 TOKEN = "a" * 22
@@ -30,21 +27,6 @@ WRONG_AXIS = NONE_OF_THESE | {
     "measured.right.axis": "43",
 }
 RECORD = {"do": "record", "outcome": "remake", "who_pays": "maker", "remedy": "remake-as-ordered", "token": TOKEN}
-
-
-@pytest.fixture
-def app(tmp_path: Path) -> Flask:
-    return create_app(data_dir=tmp_path, testing=True)
-
-
-@pytest.fixture
-def client(app: Flask) -> FlaskClient:
-    return app.test_client()
-
-
-@pytest.fixture
-def store(app: Flask) -> Store:
-    return desk_of(app).store
 
 
 def saved(store: Store, name: str, **change: Any) -> str:
