@@ -8,6 +8,7 @@ by Prentice's rule (along the two directions; what an oblique cylinder adds acro
 from collections.abc import Iterator
 from dataclasses import dataclass
 
+from advisor.counsel.form import centration_pd_mm
 from advisor.counsel.measured import Measured, MeasuredEye
 from advisor.counsel.phrases import Translator, mark
 from advisor.counsel.prescription import (
@@ -95,13 +96,18 @@ class _Judge:
         place = self.rules.place_mm if self.lens.laid.design.kind in MULTIFOCAL else None
         case = self.lens.case
         if read.pd_mm is not None and not case.is_default(f"fitting.{eye}.pd_mm"):
-            yield self.finding("pd", eye=eye, ordered=float(case.pd_mm[k]), measured=read.pd_mm, tolerance=place)
+            yield self.finding("pd", eye=eye, ordered=ordered_pd_mm(self.lens, k), measured=read.pd_mm, tolerance=place)
         if read.height_mm is not None and not case.is_default(f"fitting.{eye}.height_mm"):
             height = float(case.height_mm[k])
             yield self.finding("height", eye=eye, ordered=height, measured=read.height_mm, tolerance=place)
         if read.centre_mm is not None:
             centre = float(self.lens.computed.forms.shape.centre_mm[0, k])
             yield self.finding("centre", eye=eye, ordered=centre, measured=read.centre_mm, tolerance=CENTRE_OFF_MM)
+
+
+def ordered_pd_mm(lens: OnFile, k: int) -> float:
+    """Return the PD one lens is ordered at: a lens for near alone at the near PD."""
+    return float(centration_pd_mm(lens.case, [lens.laid])[0, k])
 
 
 def verify(lens: OnFile, measured: Measured | None) -> AsMade:
@@ -156,7 +162,7 @@ def _prism_off(lens: OnFile, measured: Measured) -> tuple[float | None, float | 
         got = measured.eye(eye)
         power, case = lens.laid.powers[k], lens.case
         if got.pd_mm is not None and not case.is_default(f"fitting.{eye}.pd_mm"):
-            outward = got.pd_mm - float(case.pd_mm[k])
+            outward = got.pd_mm - ordered_pd_mm(lens, k)
             inwards.append(-power_along_d(power, meridian_deg=180.0) * outward / 10.0)
         if got.height_mm is not None and not case.is_default(f"fitting.{eye}.height_mm"):
             higher = got.height_mm - float(case.height_mm[k])

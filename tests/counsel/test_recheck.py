@@ -128,6 +128,22 @@ def test_centres_too_far_apart_are_judged_as_the_prism_they_make() -> None:
     assert answer.causes[0].key == "wrong-as-made"
 
 
+def test_a_reading_lens_is_judged_by_the_near_pd_it_was_ordered_at() -> None:
+    eye = {"pd_mm": 32.0, "near_pd_mm": 29.5, "height_mm": 20.0}
+    read = {"sphere": -4.0, "add": 2.0}
+    pair = {
+        "prescription": {"right": read, "left": read, "for": "near"},
+        "fitting": {"right": eye, "left": eye},
+        "options": [{"design": "reading", "material": "hard-resin-150", "coating": "bare"}],
+    }
+    right = weak("headaches", measured={side: {"pd_mm": 29.5} for side in ("right", "left")}, **pair)
+    assert found(right, "pd").ordered == 29.5
+    assert found(right, "horizontal-prism").off == pytest.approx(0.0, abs=1e-9)
+    # Prentice: 2.5 mm at -2.00 is 0.5, for the pair 1.0
+    far = weak("headaches", measured={side: {"pd_mm": 32.0} for side in ("right", "left")}, **pair)
+    assert found(far, "horizontal-prism").off == pytest.approx(1.0, abs=1e-9)
+
+
 def test_both_centres_too_low_alike_make_no_imbalance() -> None:
     answer = weak("headaches", measured={eye: {"height_mm": 17.0} for eye in ("right", "left")})
     assert found(answer, "vertical-prism").off == pytest.approx(0.0, abs=1e-9)
