@@ -131,7 +131,7 @@ def test_centres_too_far_apart_are_judged_as_the_prism_they_make() -> None:
 def test_a_reading_lens_is_judged_by_the_near_pd_it_was_ordered_at() -> None:
     eye = {"pd_mm": 32.0, "near_pd_mm": 29.5, "height_mm": 20.0}
     read = {"sphere": -4.0, "add": 2.0}
-    pair = {
+    pair: dict[str, Any] = {
         "prescription": {"right": read, "left": read, "for": "near"},
         "fitting": {"right": eye, "left": eye},
         "options": [{"design": "reading", "material": "hard-resin-150", "coating": "bare"}],

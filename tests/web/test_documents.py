@@ -268,7 +268,7 @@ def test_a_slip_of_a_near_lens_says_that_the_add_is_in_it() -> None:
     assert right[4] == "+2.25"
     assert made[4] == "–"
     assert made[1] == signed(moved(-6.0) + 2.25)
-    assert "with the add or its share put in" in html
+    assert "with the near power put in" in html
 
 
 @pytest.mark.parametrize("key", ["prescription", "fitting", "frame", "daily_life"])
