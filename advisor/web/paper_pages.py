@@ -1,6 +1,6 @@
 """Paper of a saved visit: the wearer's sheet, the order slip and the bench slip, as a page to print and as a PDF."""
 
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 
 from flask import Blueprint, Response, make_response, render_template, request, url_for
 
@@ -14,7 +14,8 @@ from advisor.web.stock_loader import shelf_of
 
 paper_pages = Blueprint("paper_pages", __name__)
 
-Make = Callable[..., str]
+PAPERS: Mapping[str, Callable[..., str]] = {"sheet": wearer_sheet, "order": order_slip, "bench": bench_slip}
+NAMES = ", ".join(PAPERS)
 FONTS = {"html": "fonts", "pdf": "print-fonts"}  # WOFF2 for the screen, TrueType for the layout engine
 
 
@@ -32,59 +33,30 @@ def _option(visit: Visit) -> int | None:
     return number if 1 <= number <= len(visit.options or ()) else None
 
 
-def _html(make: Make, visit_id: str, kind: str) -> str:
+def _html(paper: str, visit_id: str, kind: str) -> str:
     visit, stock = _visit(visit_id)
-    return make(visit, stock, number=_option(visit), fonts=FONTS[kind])
+    return PAPERS[paper](visit, stock, number=_option(visit), fonts=FONTS[kind])
 
 
-def _pdf(make: Make, visit_id: str, *, name: str) -> Response:
+@paper_pages.get(f"/visits/<visit_id>/<any({NAMES}):paper>")
+def preview(visit_id: str, paper: str) -> str:
+    """Show one of the papers as a page to print."""
+    return _html(paper, visit_id, "html")
+
+
+@paper_pages.get(f"/visits/<visit_id>/<any({NAMES}):paper>.pdf")
+def pdf(visit_id: str, paper: str) -> Response:
     """Answer with the PDF; where none can be made, with a page that says so and leads to the browser's own print."""
-    html = _html(make, visit_id, "pdf")
+    html = _html(paper, visit_id, "pdf")
     try:
         content = write_pdf(html)
     except (PdfUnavailable, PdfFailed) as error:
-        preview = url_for(f"paper_pages.{name}", visit_id=visit_id, option=request.args.get("option"))
-        return make_response(render_template("no_pdf.html", sentence=str(error), preview=preview), 503)
+        page = url_for("paper_pages.preview", visit_id=visit_id, paper=paper, option=request.args.get("option"))
+        return make_response(render_template("no_pdf.html", sentence=str(error), preview=page), 503)
     answer = make_response(content)
     answer.headers["Content-Type"] = "application/pdf"
-    answer.headers["Content-Disposition"] = f'inline; filename="twolight-{name}.pdf"'
+    answer.headers["Content-Disposition"] = f'inline; filename="twolight-{paper}.pdf"'
     return answer
-
-
-@paper_pages.get("/visits/<visit_id>/sheet")
-def sheet(visit_id: str) -> str:
-    """Show the wearer's sheet."""
-    return _html(wearer_sheet, visit_id, "html")
-
-
-@paper_pages.get("/visits/<visit_id>/sheet.pdf")
-def sheet_pdf(visit_id: str) -> Response:
-    """Return the wearer's sheet as a PDF."""
-    return _pdf(wearer_sheet, visit_id, name="sheet")
-
-
-@paper_pages.get("/visits/<visit_id>/order")
-def order(visit_id: str) -> str:
-    """Show the order slip."""
-    return _html(order_slip, visit_id, "html")
-
-
-@paper_pages.get("/visits/<visit_id>/order.pdf")
-def order_pdf(visit_id: str) -> Response:
-    """Return the order slip as a PDF."""
-    return _pdf(order_slip, visit_id, name="order")
-
-
-@paper_pages.get("/visits/<visit_id>/bench")
-def bench(visit_id: str) -> str:
-    """Show the bench slip for the workshop."""
-    return _html(bench_slip, visit_id, "html")
-
-
-@paper_pages.get("/visits/<visit_id>/bench.pdf")
-def bench_pdf(visit_id: str) -> Response:
-    """Return the bench slip as a PDF."""
-    return _pdf(bench_slip, visit_id, name="bench")
 
 
 @paper_pages.errorhandler(NotReady)
