@@ -51,7 +51,7 @@ CAUTION_TEXTS: dict[str, CautionText] = {
         mark(
             "Child: an impact material first, with a centre of 2.0 mm or more. If it is declined, record who declined it."
         ),
-        mark("For a child we advise a tough lens. Have the fit checked every 3 months."),
+        mark("For a child a tough lens comes first. Have the fit checked every 3 months."),
         mark("Tough material, centre 2.0 mm or more; a refusal is recorded."),
         PRACTICE,
     ),
@@ -60,13 +60,13 @@ CAUTION_TEXTS: dict[str, CautionText] = {
             "One good eye (the weaker corrected to worse than 6/12, 20/40): an impact material first, with a centre of "
             "2.0 mm or more. If it is declined, record who declined it."
         ),
-        mark("You rely on one eye. We advise a tough lens, and an eye guard for any work or sport."),
+        mark("You rely on one eye. A tough lens comes first. Wear an eye guard for any work or sport."),
         mark("Tough material, centre 2.0 mm or more; a refusal is recorded."),
         PRACTICE,
     ),
     "impact": CautionText(
         mark("Knocks are frequent in this life: an impact material first, with a centre of 2.0 mm or more."),
-        mark("Things may hit your glasses. We advise a tough lens, and an eye guard for risky work."),
+        mark("Things may hit your glasses. A tough lens comes first. Wear an eye guard for risky work."),
         mark("Tough material, centre 2.0 mm or more; a refusal is recorded."),
         PRACTICE,
     ),
