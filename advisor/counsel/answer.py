@@ -215,50 +215,56 @@ def _light(option: Laid, *, figures: Figures) -> Content:
 def _ghosts(option: Laid, e: int, *, figures: Figures) -> list[Content]:
     """Return the ghosts of the paths that light of each scene can take."""
     ranges = estimated_ranges(option, figures.scenes)
-    seen, k, found = figures.ghosts.seen, option.index, []
+    k, found = option.index, []
+    strengths, least, greatest = (
+        part[k].tolist()
+        for part in (figures.light.strengths, figures.ghosts.least_verdict, figures.ghosts.greatest_verdict)
+    )
+    seen = _listed(figures.ghosts.seen, k, e)
     for s, scene in enumerate(figures.scenes):
         if not option.is_met_in(scene):
             continue
         for p, path in enumerate(PATHS):
-            if not seen.applies[k, e, s, p]:
+            if not seen["applies"][s][p]:
                 continue
-            at = (k, e, s, p)
-            ghost: Content = {"path": path, "scene": scene.key, "strength": float(figures.light.strengths[k, s, p])}
+            ghost: Content = {"path": path, "scene": scene.key, "strength": strengths[s][p]}
             if ranges is not None:
                 ghost["strength_range"] = ranges[:, s, p].tolist()
-            ghost |= _seen(seen, at, behind=scene.where == "behind")
-            ghost["verdict_range"] = [
-                VERDICTS[figures.ghosts.least_verdict[at]],
-                VERDICTS[figures.ghosts.greatest_verdict[at]],
-            ]
+            ghost |= _seen(seen, s, p, behind=scene.where == "behind")
+            ghost["verdict_range"] = [VERDICTS[least[e][s][p]], VERDICTS[greatest[e][s][p]]]
             found.append(ghost)
     return found
 
 
-def _seen(seen: Ghosts, at: tuple[int, int, int, int], *, behind: bool) -> Content:
+def _listed(part: Ghosts | GhostView, k: int, e: int) -> Content:
+    """Return the ghosts of one lens as plain lists (scene, path): reading them one by one from arrays is slow."""
+    values = {name: getattr(part, name) for name in part.__dataclass_fields__}
+    return {
+        name: _listed(value, k, e) if isinstance(value, GhostView) else value[k, e].tolist()
+        for name, value in values.items()
+    }
+
+
+def _seen(seen: Content, s: int, p: int, *, behind: bool) -> Content:
     """Return where one ghost lies and whether it is seen, relaxed and accommodated."""
-    spread = bool(seen.spread[at])
-    relaxed = _view(seen.relaxed, at)
+    spread, relaxed = seen["spread"][s][p], seen["relaxed"]
     return {
-        "vergence_d": seen.vergence_d[at].tolist(),
-        "pupil_mm": float(seen.pupil_mm[at]),
-        "separation_deg": None if behind or spread else float(seen.separation_deg[at]),
+        "vergence_d": seen["vergence_d"][s][p],
+        "pupil_mm": seen["pupil_mm"][s][p],
+        "separation_deg": None if behind or spread else seen["separation_deg"][s][p],
         "spread": spread,
-        "background_cd_m2": float(seen.background_cd_m2[at]),
-        "contrast": float(seen.relaxed.contrast[at]),
-        "haze": bool(seen.relaxed.haze[at]),
-        "past_range": bool(seen.past_range[at]),
-        "accommodated": _view(seen.accommodated, at),
-        **relaxed,
+        "background_cd_m2": seen["background_cd_m2"][s][p],
+        "contrast": relaxed["contrast"][s][p],
+        "haze": relaxed["haze"][s][p],
+        "past_range": seen["past_range"][s][p],
+        "accommodated": _view(seen["accommodated"], s, p),
+        **_view(relaxed, s, p),
     }
 
 
-def _view(view: GhostView, at: tuple[int, int, int, int]) -> Content:
-    return {
-        "defocus_d": view.defocus_d[at].tolist(),
-        "size_deg": view.size_deg[at].tolist(),
-        "luminance_cd_m2": float(view.luminance_cd_m2[at]),
-        "threshold_cd_m2": float(view.threshold_cd_m2[at]),
-        "visibility_level": float(view.visibility_level[at]),
-        "verdict": VERDICTS[view.verdict[at]],
-    }
+def _view(view: Content, s: int, p: int) -> Content:
+    figures = {name: view[name][s][p] for name in VIEW_FIGURES}
+    return figures | {"verdict": VERDICTS[view["verdict"][s][p]]}
+
+
+VIEW_FIGURES = ("defocus_d", "size_deg", "luminance_cd_m2", "threshold_cd_m2", "visibility_level")

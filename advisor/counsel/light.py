@@ -42,13 +42,14 @@ def light_of(laid: Sequence[Laid], scenes: Sequence[Scene]) -> Light:
     spectra = lens_spectra(laid)
     strengths, through = scene_strengths(laid, scenes)
     passed = spectra.transmittance()
+    clear = luminous_mean(passed)
     return Light(
         front=np.array([luminous_reflectance(option.front_face) for option in laid]),
         back=np.array([luminous_reflectance(option.back_face) for option in laid]),
         first_pass_loss=spectra.first_pass_loss(),
-        whole_lens=spectra.reflectance(),
-        transmittance=luminous_mean(passed),
-        transmittance_dark=luminous_mean(spectra.transmittance(dark=True)),
+        whole_lens=luminous_mean(spectra.reflectance()),
+        transmittance=clear,
+        transmittance_dark=luminous_mean(spectra.transmittance(dark=True)) if spectra.darkens else clear,
         second_image=_second_image(spectra, passed),
         strengths=strengths,
         passed=through,

@@ -15,7 +15,6 @@ from advisor.counsel.spectra import lens_spectra
 from advisor.optics.colour import hue_word, xyz
 from advisor.optics.observer import observer_contrast
 from advisor.optics.photometry import luminous_mean
-from advisor.optics.surface import whole_lens
 from advisor.optics.tone import base_codes, finished, light_paint
 from advisor.optics.visibility import LARGEST_TARGET_ARCMIN, threshold_adrian_1989
 
@@ -89,11 +88,8 @@ def face_view(computed: Computed, k: int, *, film: bool) -> FaceView:
 def _lens(option: Laid) -> tuple[Floats, float]:
     """Return what the whole lens mirrors from in front, (401,), and its luminous transmittance."""
     spectra = lens_spectra([option])
-    both = [
-        whole_lens(spectra.front, spectra.back, internal_transmittance=tau)[0][0] for tau in spectra.axes(dark=False)
-    ]
     passed = float(luminous_mean(spectra.transmittance())[0])
-    return (both[0] + both[1]) / 2.0, max(passed, 1e-9)
+    return spectra.reflectance()[0], max(passed, 1e-9)
 
 
 def _window_mm(front_curvature_per_mm: float) -> tuple[float, float]:

@@ -11,7 +11,6 @@ from advisor.counsel.faces import Face, nominal, substrate
 from advisor.counsel.laid_out import Laid
 from advisor.counsel.stock_items import Tint
 from advisor.optics.ghost_strength import lens_transmittance, path_strengths
-from advisor.optics.photometry import luminous_mean
 from advisor.optics.surface import SurfaceSpectra, first_pass_loss, whole_lens
 from advisor.optics.tint import (
     TintOutOfReach,
@@ -44,15 +43,27 @@ class LensSpectra:
             self.front, self.back, internal_transmittance=bright_axis, dark_axis_transmittance=dark_axis
         )
 
-    def reflectance(self) -> Floats:
-        """Return the luminous reflectance of each whole lens seen from in front, (option,)."""
-        both = [whole_lens(self.front, self.back, internal_transmittance=axis)[0] for axis in self.axes(dark=False)]
-        return luminous_mean((both[0] + both[1]) / 2.0)
+    @property
+    def darkens(self) -> bool:
+        """Whether any tint has a dark state of its own."""
+        return bool((self.tau[0] != self.tau[1]).any())
 
-    def axes(self, *, dark: bool) -> tuple[Floats, Floats]:
-        """Return the internal transmittance along the bright and the dark axis, (option, 1) each."""
+    def reflectance(self) -> Floats:
+        """Return what each whole lens mirrors seen from in front, all bounces, (option, wavelength)."""
+        bright_axis, dark_axis = self.axes(dark=False)
+        bright, _ = whole_lens(self.front, self.back, internal_transmittance=bright_axis)
+        if dark_axis is None:
+            return bright
+        crossed, _ = whole_lens(self.front, self.back, internal_transmittance=dark_axis)
+        return np.asarray((bright + crossed) / 2.0)
+
+    def axes(self, *, dark: bool) -> tuple[Floats, Floats | None]:
+        """Return the internal transmittance along the bright and the dark axis, (option, 1) each.
+
+        Without a polarising lens among the options there is one axis for all.
+        """
         state = self.tau[1 if dark else 0]
-        return state[:, :1], state[:, 1:]
+        return state[:, :1], None if (state[:, 0] == state[:, 1]).all() else state[:, 1:]
 
     def strengths(self, *, dark: bool = False) -> Floats:
         """Return the strength of the five ghost paths at each wavelength, (option, path, wavelength)."""
