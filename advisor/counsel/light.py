@@ -1,9 +1,9 @@
 """What the options do with light: mirrored, passed, and sent along the five ghost paths. Arrays with named axes."""
 
-from collections.abc import Sequence
+from collections.abc import Hashable, Sequence
 from dataclasses import dataclass
 from functools import lru_cache
-from typing import NamedTuple
+from typing import Any, NamedTuple
 
 import numpy as np
 from numpy.typing import NDArray
@@ -37,8 +37,36 @@ class Light:
     tint_fits: NDArray[np.bool_]
 
 
+_KNOWN: dict[Hashable, dict[str, Any]] = {}
+MOST_KNOWN = 4096
+
+
 def light_of(laid: Sequence[Laid], scenes: Sequence[Scene]) -> Light:
-    """Return the figures of light of every option in every scene."""
+    """Return the figures of light of every option in every scene.
+
+    They depend on faces, tint and the scenes' light alone, not on the wearer, and are kept from visit to visit; what is
+    not known yet is worked out in one batch.
+    """
+    lights = tuple(scene_light(scene) for scene in scenes)
+    keys = [(option.front_face, option.back_face, option.tint, lights) for option in laid]
+    new = {key: option for key, option in zip(keys, laid, strict=True) if key not in _KNOWN}
+    rows = {key: _KNOWN[key] for key in keys if key not in new}
+    if new:
+        worked = _work_out(list(new.values()), scenes)
+        rows |= {key: {name: getattr(worked, name)[k] for name in FIGURES} for k, key in enumerate(new)}
+        if len(_KNOWN) + len(new) > MOST_KNOWN:
+            _KNOWN.clear()
+        _KNOWN.update({key: rows[key] for key in new})
+    return Light(**{name: np.array([rows[key][name] for key in keys]) for name in FIGURES})
+
+
+def forget() -> None:
+    """Drop what is kept from visit to visit, as a process that has just started has it."""
+    _KNOWN.clear()
+
+
+def _work_out(laid: Sequence[Laid], scenes: Sequence[Scene]) -> Light:
+    """Work out the figures of light of some options as arrays."""
     spectra = lens_spectra(laid)
     strengths, through = scene_strengths(laid, scenes)
     passed = spectra.transmittance()
@@ -55,6 +83,9 @@ def light_of(laid: Sequence[Laid], scenes: Sequence[Scene]) -> Light:
         passed=through,
         tint_fits=spectra.tint_fits,
     )
+
+
+FIGURES = tuple(Light.__dataclass_fields__)
 
 
 def _second_image(spectra: LensSpectra, passed: Floats) -> Floats:

@@ -10,6 +10,7 @@ import sys
 import time
 from collections.abc import Callable
 
+from advisor.counsel import light
 from advisor.counsel.case import Case, build_case
 from advisor.counsel.stock import builtin_range
 from advisor.counsel.visit import read_visit
@@ -35,6 +36,7 @@ def milliseconds(work: Callable[[], object], *, before: Callable[[], object] = l
 
 def clear_caches() -> None:
     """Empty every cache of the program but that of the range file itself."""
+    light.forget()
     for name, module in list(sys.modules.items()):
         if name.startswith(("advisor.counsel", "advisor.optics")):
             for part in list(vars(module).values()):

@@ -7,8 +7,11 @@ from typing import Any
 import numpy as np
 import pytest
 
+from advisor.counsel import light
 from advisor.counsel.case import Case, build_case
+from advisor.counsel.choices import Option
 from advisor.counsel.compare import compute
+from advisor.counsel.laid_out import lay_out_options
 from advisor.counsel.stock import builtin_range
 from advisor.counsel.visit import check_visit, read_visit
 from advisor.counsel.whole_range import WholeRange, whole_range
@@ -94,3 +97,17 @@ def test_a_reading_lens_is_worked_out_with_the_add() -> None:
     far, near = everything(case), everything(case, design="reading")
     moved = near.forms.powers.power_d - far.forms.powers.power_d
     np.testing.assert_allclose(moved, 2.0, rtol=0, atol=1e-12)  # the add of the wearer
+
+
+def test_what_is_kept_from_visit_to_visit_is_what_would_be_worked_out() -> None:
+    case = case_of("strong-cylinder")
+    options = [Option(design="single-vision", material="hard-resin-150", coating=key) for key in ("bare", "broadband")]
+    laid = lay_out_options(case, options)
+    light.forget()
+    first = light.light_of(laid, case.scenes)
+    kept = light.light_of([*laid[::-1], laid[0]], case.scenes)
+    for name in light.FIGURES:
+        one, other = getattr(first, name), getattr(kept, name)
+        np.testing.assert_array_equal(other, one[[1, 0, 0]])
+    fewer = light.light_of(laid, case.scenes[:1])  # other scenes are other figures
+    assert fewer.strengths.shape[1] == 1
