@@ -68,7 +68,7 @@ def forget() -> None:
 def _work_out(laid: Sequence[Laid], scenes: Sequence[Scene]) -> Light:
     """Work out the figures of light of some options as arrays."""
     spectra = lens_spectra(laid)
-    strengths, through = scene_strengths(laid, scenes)
+    strengths, through = scene_strengths(laid, scenes, straight=spectra)
     passed = spectra.transmittance()
     clear = luminous_mean(passed)
     return Light(
@@ -94,13 +94,13 @@ def _second_image(spectra: LensSpectra, passed: Floats) -> Floats:
     return luminous_mean(inner, weight=passed)
 
 
-def scene_strengths(laid: Sequence[Laid], scenes: Sequence[Scene]) -> tuple[Floats, Floats]:
+def scene_strengths(laid: Sequence[Laid], scenes: Sequence[Scene], *, straight: LensSpectra) -> tuple[Floats, Floats]:
     """Return the strength of each path (option, scene, path) and the light each lens passes (option, scene).
 
     Light from behind meets the lens at the scene's incidence; both are weighed with the scene's light, in its state of
     the tint.
     """
-    spectra: dict[float, LensSpectra] = {}
+    spectra = {0.0: straight}
     found: dict[SceneLight, tuple[Floats, Floats]] = {}
     for scene in scenes:
         key = scene_light(scene)
@@ -109,7 +109,6 @@ def scene_strengths(laid: Sequence[Laid], scenes: Sequence[Scene]) -> tuple[Floa
         if key.angle_deg not in spectra:
             spectra[key.angle_deg] = lens_spectra(laid, angle_deg=key.angle_deg)
         at_angle = spectra[key.angle_deg]
-        straight = spectra.setdefault(0.0, at_angle if key.angle_deg == 0.0 else lens_spectra(laid))
         passed = straight.transmittance(dark=key.dark)
         strengths = weighted_strengths(
             at_angle.strengths(dark=key.dark), transmittance=passed, illuminant=key.illuminant

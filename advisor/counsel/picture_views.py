@@ -13,7 +13,7 @@ from numpy.typing import NDArray
 from advisor.counsel.compare import Computed
 from advisor.counsel.ghosts import lens_on_face, scene_arrays, wearer_of
 from advisor.counsel.laid_out import Laid, without_film
-from advisor.counsel.light import scene_light, scene_strengths
+from advisor.counsel.light import light_of, scene_light
 from advisor.counsel.spectra import lens_spectra
 from advisor.counsel.stock_items import Scene
 from advisor.optics.colour import xyz
@@ -81,7 +81,8 @@ def seen_through(computed: Computed, *, film: bool) -> Seen:
     if film:
         return Seen(computed.laid, computed.ghosts.seen, place, computed.light.passed)
     laid = [without_film(option, case.stock) for option in computed.laid]
-    strengths, passed = scene_strengths(laid, case.scenes)
+    light = light_of(laid, case.scenes)
+    strengths, passed = light.strengths, light.passed
     ghosts = see_ghosts(
         lens,
         scene=scene,

@@ -13,7 +13,7 @@ from advisor.counsel.compare import Computed, lens_light
 from advisor.counsel.comparison import Comparison, EyeFigures, Ghost, OptionFigures
 from advisor.counsel.faces import blue_turned_away
 from advisor.counsel.laid_out import Laid
-from advisor.counsel.phrases import Figure, Phrase, mark
+from advisor.counsel.phrases import Phrase, mark
 from advisor.counsel.reach import near_only
 from advisor.counsel.sheet_texts import HEADINGS, LINES
 from advisor.counsel.spoken import from_behind, worst_ghost
@@ -294,13 +294,3 @@ def _bars(eye: EyeFigures, laid: Laid) -> Iterable[tuple[str, float]]:
 BAR_BARE = mark("Mirrored away by bare lenses")
 BAR_HARD_COAT = mark("Mirrored away with a hard coat only")
 BAR_WITH = mark("Mirrored away by yours, at most")
-
-
-def figures_of(sheet: Sheet) -> Mapping[str, Figure]:
-    """Return every figure the sheet prints, by ``phrase code.figure name``."""
-    return {
-        f"{line.code}.{name}": value
-        for block in sheet.before
-        for line in block.lines
-        for name, value in line.figures.items()
-    }
