@@ -15,12 +15,12 @@ from advisor.web import error_pages, policy
 from advisor.web.counter import counter
 from advisor.web.desk import EXTENSION, Desk, current_desk
 from advisor.web.figure_rows import unbroken
-from advisor.web.language import SOURCE_LANGUAGE, language
 from advisor.web.paper import install_filters
 from advisor.web.paper_pages import paper_pages
 from advisor.web.pictures_page import pictures_page
 from advisor.web.range_page import range_page
 from advisor.web.recheck import rechecks
+from advisor.web.screen import screen
 from advisor.web.visits import visits
 
 # Some Windows registries serve these as text/plain, which nosniff then refuses.
@@ -79,11 +79,12 @@ def _prepare_templates(app: Flask) -> None:
     app.jinja_env.autoescape = True
     app.jinja_env.undefined = StrictUndefined
     app.jinja_env.trim_blocks = app.jinja_env.lstrip_blocks = True
-    speaker = language(SOURCE_LANGUAGE)
-    app.jinja_env.globals.update(_=speaker.gettext, ngettext=speaker.ngettext)
-    install_filters(app.jinja_env, speaker)
+    app.jinja_env.globals.update(
+        _=lambda text: screen().gettext(text), ngettext=lambda one, many, count: screen().ngettext(one, many, count)
+    )
+    install_filters(app.jinja_env, screen)
     app.jinja_env.filters["unbroken"] = unbroken
-    app.jinja_env.globals.update(screen_language=speaker.language, screen_direction=speaker.direction)
+    app.context_processor(lambda: {"screen_language": screen().language, "screen_direction": screen().direction})
 
 
 def _register_blueprints(app: Flask) -> None:

@@ -6,7 +6,7 @@ from werkzeug.wrappers import Response as AnyResponse
 from advisor.errors import TwolightError
 from advisor.web import counter_page, demo_wearers
 from advisor.web.desk import current_desk
-from advisor.web.language import SOURCE_LANGUAGE, language
+from advisor.web.screen import screen
 from advisor.web.stock_loader import current_shelf
 
 counter = Blueprint("counter", __name__)
@@ -53,7 +53,7 @@ def _figures(sent: counter_page.Editing) -> Response:
     try:
         editing = counter_page.keep(store, sent)
     except TwolightError as error:
-        notice = language(SOURCE_LANGUAGE).gettext(getattr(error, "text", str(error))) % getattr(error, "figures", {})
+        notice = screen().gettext(getattr(error, "text", str(error))) % getattr(error, "figures", {})
     answer = make_response(counter_page.part(editing, current_shelf(store), notice=notice))
     if editing.draft_id is not None:
         answer.headers["HX-Replace-Url"] = url_for("counter.draft", draft_id=editing.draft_id)

@@ -39,7 +39,7 @@ from advisor.web.forms import (
     with_option_laid_out,
     with_option_removed,
 )
-from advisor.web.language import SOURCE_LANGUAGE, language
+from advisor.web.screen import screen
 from advisor.web.stock_loader import Shelf
 
 WAITING = {"right": mark("the right sphere"), "left": mark("the left sphere")}
@@ -142,7 +142,7 @@ def changed(editing: Editing, wish: str) -> Editing:
 
 def work_out(fields: Mapping[str, str], shelf: Shelf) -> Worked:
     """Work out the figures of a form, or say what stands in their way."""
-    speaker = language(SOURCE_LANGUAGE)
+    speaker = screen()
     try:
         visit = visit_from_fields(fields)
         computed = compute(visit, shelf.stock)
@@ -198,13 +198,13 @@ def context(
 
 def sentence(one: Fault) -> str:
     """Write a fault's sentence alone: it stands beside its field."""
-    words = replace(one, file="", field="").line(language(SOURCE_LANGUAGE).gettext)
+    words = replace(one, file="", field="").line(screen().gettext)
     return words[:1].upper() + words[1:]
 
 
 def _place_words(name: str) -> str:
     """Write the place of a field for a reader: ``options.0.coating.front`` is "option 1 coating front"."""
-    speak = language(SOURCE_LANGUAGE).gettext
+    speak = screen().gettext
     if name in PLACES:
         return speak(PLACES[name])
     parts = name.removesuffix("_mm").removesuffix("_deg").removesuffix("_cm").replace("options.", "option.").split(".")

@@ -22,6 +22,7 @@ from advisor.resources import resource_dir
 from advisor.web.labels import DECLINABLE, DECLINERS
 from advisor.web.language import SOURCE_LANGUAGE, Language, language, languages
 from advisor.web.paper import page
+from advisor.web.screen import screen
 
 BAR_UNITS = 100  # length of a whole bar in drawing units
 RIM_WORDS = {"full": "full", "grooved": "grooved (nylon)", "drilled": "drilled (rimless)"}
@@ -94,7 +95,7 @@ def order_slip(
     advisor.counsel.order.NotReady
         With every reason, while something needed is missing.
     """
-    chosen = language(SOURCE_LANGUAGE)
+    chosen = screen()
     computed = compute(visit, stock, today=today)
     index = _ordered(computed, number, chosen)
     order = order_of(computed, index=index, translator=chosen)
@@ -116,7 +117,7 @@ def bench_slip(
     advisor.counsel.order.NotReady
         With every reason, while the order is not ready.
     """
-    chosen = language(SOURCE_LANGUAGE)
+    chosen = screen()
     computed = compute(visit, stock, today=today)
     index = _ordered(computed, number, chosen)
     bench = bench_of(computed, index=index, translator=chosen)

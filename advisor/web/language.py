@@ -19,10 +19,10 @@ class UnknownLanguage(TwolightError):
     """The program has no texts in the language asked for."""
 
 
-def languages() -> list[str]:
+def languages() -> tuple[str, ...]:
     """Return the codes of the languages that have a catalogue, the source language first."""
     found = sorted(folder.parent.name for folder in TRANSLATIONS.glob("*/LC_MESSAGES"))
-    return [SOURCE_LANGUAGE, *(code for code in found if code != SOURCE_LANGUAGE)]
+    return (SOURCE_LANGUAGE, *(code for code in found if code != SOURCE_LANGUAGE))
 
 
 class Language:

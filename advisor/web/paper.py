@@ -1,6 +1,6 @@
 """Sheets and slips as HTML: a plain Jinja environment for each language, usable without the web application."""
 
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from functools import cache
 from typing import Any
 
@@ -30,17 +30,17 @@ def install(made: Environment, chosen: Language) -> None:
     """Give an environment the texts and the number formats of a language."""
     made.install_gettext_callables(chosen.gettext, chosen.ngettext, newstyle=True)  # type: ignore[attr-defined]  # added by the i18n extension
     made.globals["language"] = chosen
-    install_filters(made, chosen)
+    install_filters(made, lambda: chosen)
 
 
-def install_filters(made: Environment, chosen: Language) -> None:
-    """Give an environment the filters that write numbers, shares, money and dates as a language does."""
+def install_filters(made: Environment, speaker: Callable[[], Language]) -> None:
+    """Give an environment the filters that write numbers, shares, money and dates as the reader's language does."""
     made.filters["number"] = lambda value, digits=0, signed=False: number_text(
-        chosen, value, digits=digits, signed=signed
+        speaker(), value, digits=digits, signed=signed
     )
-    made.filters["percent"] = lambda value, digits=1: "–" if value is None else chosen.percent(value, digits=digits)
-    made.filters["money"] = lambda value, currency: chosen.money(value, currency=currency)
-    made.filters["day"] = lambda value: "–" if value is None else chosen.date(value)
+    made.filters["percent"] = lambda value, digits=1: "–" if value is None else speaker().percent(value, digits=digits)
+    made.filters["money"] = lambda value, currency: speaker().money(value, currency=currency)
+    made.filters["day"] = lambda value: "–" if value is None else speaker().date(value)
 
 
 def number_text(chosen: Language, value: float | None, *, digits: int, signed: bool) -> str:

@@ -21,8 +21,9 @@ from advisor.counsel.visit import parse_visit
 from advisor.web import counter_page
 from advisor.web.desk import current_desk
 from advisor.web.forms import visit_from_fields
-from advisor.web.language import SOURCE_LANGUAGE, Language, language
+from advisor.web.language import Language
 from advisor.web.png import encode_png
+from advisor.web.screen import screen
 from advisor.web.stock_loader import current_shelf, shelf_of
 
 pictures_page = Blueprint("pictures_page", __name__)
@@ -120,7 +121,7 @@ def _chosen(computed: Computed, ordered: int | None) -> int | None:
 
 
 def _page(computed: Computed, ordered: int | None, back: str, address: Callable[..., str]) -> str:
-    speaker = language(SOURCE_LANGUAGE)
+    speaker = screen()
     k = _chosen(computed, ordered)
     content: dict[str, Any] = {
         "back": back,

@@ -20,10 +20,10 @@ from advisor.records.rechecks import RecheckChanged, RecheckMissing, SavedRechec
 from advisor.records.visits import VisitLine, VisitMissing
 from advisor.web import labels, recheck_text
 from advisor.web.desk import current_desk
-from advisor.web.language import SOURCE_LANGUAGE, language
 from advisor.web.pdf import PdfFailed, PdfUnavailable, write_pdf
 from advisor.web.recheck_form import TOKEN, Asked, NotToday, ask, fields_of, record_of, sentence_of
 from advisor.web.recheck_paper import maker_slip
+from advisor.web.screen import screen
 from advisor.web.stock_loader import shelf_of
 
 rechecks = Blueprint("rechecks", __name__)
@@ -53,7 +53,7 @@ def work_out(visit_id: str) -> AnyResponse:
     try:
         faults = _recorded(visit_id, asked)
     except RecheckChanged as error:
-        sentences = [language(SOURCE_LANGUAGE).gettext(text) for text in (error.text, RECORD_AGAIN)]
+        sentences = [screen().gettext(text) for text in (error.text, RECORD_AGAIN)]
         again = replace(asked, faults={"record": sentences})
         return make_response(_page(visit_id, again, token=_new_token()), 409)
     if faults:
@@ -70,9 +70,9 @@ def _recorded(visit_id: str, asked: Asked) -> dict[str, list[str]]:
         for fault in error.faults:
             faults.setdefault(fault.field, []).append(sentence_of(fault))
     except NotToday as error:
-        faults["outcome"] = [language(SOURCE_LANGUAGE).gettext(error.text)]
+        faults["outcome"] = [screen().gettext(error.text)]
     except VisitMissing as error:  # that of the new order; the form's own was read before
-        faults["new_visit"] = [language(SOURCE_LANGUAGE).gettext(error.text)]
+        faults["new_visit"] = [screen().gettext(error.text)]
     return faults
 
 
@@ -95,7 +95,7 @@ def _record(visit_id: str, record: RecheckRecord) -> SavedRecheck:
 
 def _page(visit_id: str, asked: Asked, *, token: str = "") -> str:
     visit, stock = _on_file(visit_id)
-    screen = language(SOURCE_LANGUAGE)
+    speaker = screen()
     recorded = [_line(saved) for saved in current_desk().store.list_rechecks(visit_id)]
     token = token or request.form.get("token", "")
     return render_template(
@@ -114,8 +114,8 @@ def _page(visit_id: str, asked: Asked, *, token: str = "") -> str:
         bases=labels.BASES,
         words=recheck_text,
         eye_words=EYE_WORDS,
-        finding_words=lambda finding, value: finding_words(finding, value, screen),
-        money=lambda amount: screen.money(amount, currency=stock.currency),
+        finding_words=lambda finding, value: finding_words(finding, value, speaker),
+        money=lambda amount: speaker.money(amount, currency=stock.currency),
         recorded=recorded,
         orders=_orders(visit_id, visit),
         token=token if TOKEN.fullmatch(token) else _new_token(),
@@ -153,7 +153,7 @@ def _orders(visit_id: str, visit: Visit) -> list[VisitLine]:
 
 def _line(saved: SavedRecheck) -> Mapping[str, object]:
     record = RecheckRecord.model_validate_json(saved.content_json)
-    day = "" if record.date is None else language(SOURCE_LANGUAGE).date(record.date)
+    day = "" if record.date is None else screen().date(record.date)
     return {"id": saved.id, "day": day, "record": record, "new_visit_id": saved.new_visit_id}
 
 

@@ -18,7 +18,7 @@ from advisor.counsel.recheck_words import hear
 from advisor.counsel.stock import Range
 from advisor.counsel.visit import Visit
 from advisor.errors import TwolightError
-from advisor.web.language import SOURCE_LANGUAGE, language
+from advisor.web.screen import screen
 
 EYES = ("right", "left")
 PLAIN = ("sphere", "cylinder", "axis", "add", "pd_mm", "height_mm", "centre_mm")
@@ -98,7 +98,7 @@ def ask(fields: Mapping[str, str], visit: Visit, stock: Range) -> Asked:
         tests=answers_of(fields),
         measured=measured,
         number=chosen or None,
-        translator=language(SOURCE_LANGUAGE),
+        translator=screen(),
     )
     return Asked(fields, answer, faults)
 
@@ -113,7 +113,7 @@ def _beside(faults: tuple[Fault, ...]) -> dict[str, list[str]]:
 
 def sentence_of(one: Fault) -> str:
     """Return what is wrong, without the field it stands beside."""
-    return Fault("", "", one.phrase).line(language(SOURCE_LANGUAGE).gettext)
+    return Fault("", "", one.phrase).line(screen().gettext)
 
 
 def record_of(asked: Asked) -> RecheckRecord:

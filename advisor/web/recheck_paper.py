@@ -9,14 +9,14 @@ from advisor.counsel.recheck_shown import EYES as BOTH_EYES
 from advisor.counsel.recheck_shown import finding_words
 from advisor.counsel.stock import Range
 from advisor.counsel.visit import Visit
-from advisor.web.language import SOURCE_LANGUAGE, language
 from advisor.web.paper import page
 from advisor.web.recheck_text import OUTCOMES, PAYERS
+from advisor.web.screen import screen
 
 
 def maker_slip(visit: Visit, stock: Range, record: RecheckRecord, *, fonts: str = "print-fonts") -> str:
     """Return the slip of a recorded outcome as HTML, worked out again from what is kept."""
-    screen = language(SOURCE_LANGUAGE)
+    speaker = screen()
     number = None if record.option is None else record.option + 1
     answer = recheck(
         visit,
@@ -25,9 +25,9 @@ def maker_slip(visit: Visit, stock: Range, record: RecheckRecord, *, fonts: str 
         tests=record.answers,
         measured=record.measured,
         number=number,
-        translator=screen,
+        translator=speaker,
     )
-    lens = on_file(visit, stock, number=number, translator=screen)
+    lens = on_file(visit, stock, number=number, translator=speaker)
     cause = _cause(answer, record)
     return page(
         "paper/recheck.html",
@@ -44,10 +44,10 @@ def maker_slip(visit: Visit, stock: Range, record: RecheckRecord, *, fonts: str 
             "words": answer.complaints if answer.refer is None else [],
             "made": [(EYE_WORDS[eye], lens.laid.powers[k]) for k, eye in enumerate(EYES)],
             "eye_words": BOTH_EYES,
-            "finding_words": lambda finding, value: finding_words(finding, value, screen),
+            "finding_words": lambda finding, value: finding_words(finding, value, speaker),
             "fonts": fonts,
         },
-        code=screen.language,
+        code=speaker.language,
     )
 
 

@@ -10,8 +10,8 @@ from advisor.records.store import Store
 from advisor.records.visits import SavedVisit, VisitMissing
 from advisor.web.counter_page import Editing
 from advisor.web.forms import visit_from_fields
-from advisor.web.language import SOURCE_LANGUAGE, language
 from advisor.web.saved_forms import SavedForms
+from advisor.web.screen import screen
 from advisor.web.stock_loader import Shelf
 
 
@@ -31,7 +31,7 @@ def save_form(store: Store, forms: SavedForms, editing: Editing, shelf: Shelf) -
         If the visit was saved by somebody else since; nothing is overwritten.
     """
     visit = dated(visit_from_fields(editing.fields))
-    answer = compare(visit, shelf.stock, translator=language(SOURCE_LANGUAGE))
+    answer = compare(visit, shelf.stock, translator=screen())
     with forms.lock:
         answer_json = answer.model_dump_json(exclude_unset=True)
         saved = _save(store, _seen(forms, editing), visit_to_json(visit), answer_json, shelf)

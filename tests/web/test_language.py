@@ -98,7 +98,7 @@ def spanish(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> Iterator[Languag
 
 @pytest.mark.usefixtures("spanish")
 def test_the_source_language_comes_first_and_a_folder_without_texts_is_none() -> None:
-    assert languages() == ["en", "es"]
+    assert languages() == ("en", "es")
 
 
 def test_a_catalogue_gives_its_texts_and_leaves_the_others_as_they_are(spanish: Language) -> None:
@@ -114,4 +114,4 @@ def test_a_catalogue_gives_its_texts_and_leaves_the_others_as_they_are(spanish: 
 
 def test_where_no_catalogue_lies_there_is_the_source_language(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.setattr(module, "TRANSLATIONS", tmp_path / "nowhere")
-    assert languages() == ["en"]
+    assert languages() == ("en",)
