@@ -18,6 +18,7 @@ if TYPE_CHECKING:
     from advisor.counsel.schemas import SchemaName
     from advisor.counsel.stock import Range
     from advisor.counsel.visit import Visit
+    from advisor.web.sheet_page import Print
 
 MANY_FILES = 5  # from here on a progress bar is shown
 
@@ -168,19 +169,59 @@ def _write(out: Path, content: bytes) -> None:
 
 
 @main.command()
-@click.argument("file", type=click.Path(path_type=Path))
-@click.option("-o", "--out", required=True, type=click.Path(path_type=Path), help="OUT.pdf or OUT.html")
+@click.argument("files", nargs=-1, required=True, type=click.Path(path_type=Path))
+@click.option("-o", "--out", required=True, type=click.Path(path_type=Path), help="OUT.pdf, OUT.html or a folder.")
 @click.option("--option", "number", type=click.IntRange(1), help="Which option, counted from 1.")
 @click.option("--language", "code", help="Language of the sheet; the wearer's own if left out.")
+@click.option("--print", "print_size", type=click.Choice(["standard", "large"]), help="The wearer's own if left out.")
+@click.option("--care-only", is_flag=True, help="The page about care alone.")
 @click.option("--range", "range_file", type=click.Path(path_type=Path), help="Range file to use.")
 @click.pass_obj
 def sheet(
-    data: Path | None, file: Path, out: Path, number: int | None, code: str | None, range_file: Path | None
+    data: Path | None,
+    files: tuple[Path, ...],
+    out: Path,
+    number: int | None,
+    code: str | None,
+    print_size: "Print | None",
+    care_only: bool,
+    range_file: Path | None,
 ) -> None:
-    """Write the wearer's sheet for a visit file."""
-    from advisor.web.documents import wearer_sheet
+    """Write the wearer's sheet for a visit file; of several files, or of a folder of them, into a folder."""
+    from advisor.web.sheet_page import care_sheet, wearer_sheet
 
-    _paper(data, file, out, range_file, lambda visit, stock: wearer_sheet(visit, stock, number=number, code=code))
+    def make(visit: "Visit", stock: "Range") -> str:
+        if care_only:
+            return care_sheet(visit, stock, code=code, print_size=print_size)
+        return wearer_sheet(visit, stock, number=number, code=code, print_size=print_size)
+
+    into_one = out.suffix.lower() in (".pdf", ".html") or not out.is_dir()
+    if len(files) == 1 and not files[0].is_dir() and into_one:
+        _paper(data, files[0], out, range_file, make)
+    else:
+        _sheets(files, out, _stock(data, range_file), make)
+
+
+def _sheets(given: tuple[Path, ...], out: Path, stock: "Range", make: Callable[["Visit", "Range"], str]) -> None:
+    """Write many sheets into a folder and say how many; status 1 if there were none or any was bad."""
+    from advisor.web.sheet_files import files_in, sheet_files
+
+    if out.suffix.lower() in (".pdf", ".html") and not out.is_dir():
+        raise click.UsageError("Several sheets go into a folder: give one with -o.")
+    try:
+        out.mkdir(parents=True, exist_ok=True)
+    except OSError as error:
+        raise _Sentence(f"{out} cannot be made: {error.strerror}.") from error
+    files, made = files_in(given), 0
+    for sheet in sheet_files(_bar(files), stock, make):
+        if sheet.content is None:
+            click.echo(sheet.problem, err=True)
+        else:
+            _write(out / sheet.name, sheet.content)
+            made += 1
+    click.echo(f"{made} of {len(files)} sheets written to {out}.")
+    if made < len(files) or not files:
+        raise click.exceptions.Exit(1)
 
 
 @main.command()
@@ -317,8 +358,9 @@ def demo(ctx: click.Context, no_serve: bool, out: Path) -> None:
     """Do the whole job for the demo wearers: compare, write their sheets, say where, serve."""
     from advisor.counsel.stock import builtin_range
     from advisor.resources import resource_dir
-    from advisor.web.documents import standing_alone, wearer_sheet
+    from advisor.web.documents import standing_alone
     from advisor.web.pdf import is_available, write_pdf
+    from advisor.web.sheet_page import wearer_sheet
 
     try:
         out.mkdir(parents=True, exist_ok=True)

@@ -15,7 +15,7 @@ from advisor.counsel.form import SMALLER_BY_MM, LensForms
 from advisor.counsel.ghosts import GhostFigures
 from advisor.counsel.laid_out import NOTE_TEXTS, REFUSAL_TEXTS, Laid
 from advisor.counsel.light import DAYLIGHT, Light, as_made_spreads, as_made_whole, estimated_ranges, made_strengths
-from advisor.counsel.names import coating_name, material_name, tint_name
+from advisor.counsel.names import called, coating_name, material_name, tint_name
 from advisor.counsel.phrases import Figure, Phrase, Translator, mark, say
 from advisor.counsel.prescription import EYES
 from advisor.counsel.spectra import tint_axes
@@ -66,7 +66,7 @@ def label_of(option: Laid, translator: Translator) -> str:
     if option.tint is not None:
         words.append(tint_name(option.tint, translator))
     if option.design.kind != "single-vision":
-        words.insert(0, option.design.label or option.design.key)
+        words.insert(0, called(option.design, translator))
     return ", ".join(words)
 
 
@@ -106,12 +106,17 @@ def option_answer(option: Laid, *, figures: Figures, translator: Translator) -> 
         "refused": refused,
         "notes": [notice(phrase, NOTE_TEXTS, translator) for phrase in option.notes],
     }
-    if not refused:
-        both_eyes = _light(option, figures=figures)
-        for e, eye in enumerate(EYES):
-            ghosts = _ghosts(option, e, figures=figures)
-            content[eye] = _form(option, e, figures=figures) | both_eyes | {"ghosts": ghosts}
-    return content
+    return content if refused else content | eyes_answer(option, figures=figures)
+
+
+def eyes_answer(option: Laid, *, figures: Figures, with_light: bool = True) -> Content:
+    """Return the figures of both lenses; of form alone where nothing is known of what the faces mirror."""
+    forms: Content = {eye: _form(option, e, figures=figures) for e, eye in enumerate(EYES)}
+    if not with_light:
+        return forms
+    both_eyes = _light(option, figures=figures)
+    ghosts = {eye: {"ghosts": _ghosts(option, e, figures=figures)} for e, eye in enumerate(EYES)}
+    return {eye: forms[eye] | both_eyes | ghosts[eye] for eye in EYES}
 
 
 def _second_image(option: Laid, *, light: Light) -> Content:

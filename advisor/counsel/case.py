@@ -119,10 +119,11 @@ class Case:
         """Whether the answer is yes, sometimes or often."""
         return self.life(question) in ("yes", "sometimes", "often")
 
-    def yes_answers(self) -> tuple[str, ...]:
-        """List the questions answered yes, sometimes or often."""
+    def answers(self) -> dict[str, str]:
+        """Return the questions about daily life that were answered with a word, and the answers."""
         life = self.visit.daily_life
-        return () if life is None else tuple(name for name in type(life).model_fields if self.says(name))
+        given = {} if life is None else life.model_dump(exclude_none=True)
+        return {name: answer for name, answer in given.items() if isinstance(answer, str)}
 
 
 def near_pd(pd_mm: float, working_distance_cm: float, vertex_mm: float) -> float:

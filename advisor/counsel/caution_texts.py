@@ -51,7 +51,7 @@ CAUTION_TEXTS: dict[str, CautionText] = {
         mark(
             "Child: an impact material first, with a centre of 2.0 mm or more. If it is declined, record who declined it."
         ),
-        mark("For a child a tough lens comes first. Have the fit checked every 3 months."),
+        mark("A child's glasses take knocks. A tough lens comes first."),
         mark("Tough material, centre 2.0 mm or more; a refusal is recorded."),
         PRACTICE,
     ),
@@ -60,7 +60,7 @@ CAUTION_TEXTS: dict[str, CautionText] = {
             "One good eye (the weaker corrected to worse than 6/12, 20/40): an impact material first, with a centre of "
             "2.0 mm or more. If it is declined, record who declined it."
         ),
-        mark("You rely on one eye. A tough lens comes first. Wear an eye guard for any work or sport."),
+        mark("You rely on one eye. A tough lens comes first. Wear an eye guard for work with tools and for sport."),
         mark("Tough material, centre 2.0 mm or more; a refusal is recorded."),
         PRACTICE,
     ),
@@ -172,7 +172,7 @@ CAUTION_TEXTS: dict[str, CautionText] = {
     ),
     "drilled-caution": CautionText(
         mark("Drilled rim: thick edges strain the mounts, and a full rim holds better. Never in the ultrasonic bath."),
-        mark("Rimless glasses are delicate. Use two hands, and have the screws checked."),
+        mark("Rimless glasses bend easily. Use two hands, and have the screws checked."),
         mark("Advise a full rim where knocks are likely."),
         PRACTICE,
     ),
@@ -186,7 +186,7 @@ CAUTION_TEXTS: dict[str, CautionText] = {
         mark(
             "Polycarbonate crazes where solvents touch it: no acetone, no nail varnish remover, no sprays on the lens."
         ),
-        mark("Keep solvents and sprays off these lenses. They can craze them."),
+        mark("Keep solvents and sprays off these lenses. They can cause fine cracks."),
         mark("Where solvents are about, a tough material that bears them first; acetone never on polycarbonate."),
         PRACTICE,
     ),

@@ -3,6 +3,7 @@
 import datetime as dt
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
+from functools import cached_property
 from typing import Any
 
 from advisor import __version__
@@ -26,7 +27,8 @@ from advisor.counsel.stock_items import Tint
 from advisor.counsel.visit import DailyLife, Visit
 from advisor.counsel.visit_checks import WARNING_TEXTS, age_faults, prescription_warnings, visit_faults
 from advisor.counsel.words import WORD_TEXTS
-from advisor.counsel.worn import magnification_change_percent, worn_forms
+from advisor.counsel.worn import WornPair, magnification_change_percent, worn_forms, worn_pair
+from advisor.counsel.worn_answer import worn_answer
 from advisor.optics import prism
 
 Content = dict[str, Any]
@@ -49,6 +51,17 @@ class Computed:
     ghosts: GhostFigures
     vertical_imbalance_prism_d: float
 
+    @cached_property
+    def worn_pair(self) -> WornPair | None:
+        """The pair worn now as far as it is known; never one of the options."""
+        return worn_pair(self.case, first=self.laid[0])
+
+    @cached_property
+    def worn_now(self) -> "Computed | None":
+        """The worn pair worked out as the options are, for its own prescription; None without its material."""
+        pair = self.worn_pair
+        return None if pair is None or pair.laid is None else _worked_out(pair.case, [pair.laid])
+
 
 def compute(visit: Visit, stock: Range, *, today: dt.date | None = None, file: str = "") -> Computed:
     """Work out a visit as arrays.
@@ -63,16 +76,21 @@ def compute(visit: Visit, stock: Range, *, today: dt.date | None = None, file: s
     if faults:
         raise Faults(faults)
     case = build_case(visit, stock, today=today)
-    laid = lay_out(case)
+    found = _worked_out(case, lay_out(case))
+    laid = with_form_findings(case, _with_tint_refusals(found.laid, found.light), found.forms)
+    return replace(found, laid=tuple(laid))
+
+
+def _worked_out(case: Case, laid: Sequence[Laid]) -> Computed:
     light = light_of(laid, case.scenes)
     forms = forms_of(case, laid)
     return Computed(
         case=case,
-        laid=tuple(with_form_findings(case, _with_tint_refusals(laid, light), forms)),
+        laid=tuple(laid),
         light=light,
         forms=forms,
         ghosts=figures_of(case, laid, forms=forms, light=light),
-        uncoated=light_of([without_film(option, stock) for option in laid], ()),  # no scene asks for it
+        uncoated=light_of([without_film(option, case.stock) for option in laid], ()),  # no scene asks for it
         vertical_imbalance_prism_d=vertical_imbalance(case),
     )
 
@@ -150,23 +168,47 @@ def _cautions(computed: Computed, translator: Translator) -> list[Content]:
     return sorted(found.values(), key=lambda entry: order.index(entry["key"]))
 
 
-def answer_of(computed: Computed, *, translator: Translator, with_advice: bool = True) -> Comparison:
+def figures_of_answer(computed: Computed, *, worn: LensForms | None = None) -> Figures:
+    """Return the arrays that an answer is read from; ``worn`` is what sizes are compared with."""
+    return Figures(
+        light=computed.light,
+        uncoated=computed.uncoated,
+        forms=computed.forms,
+        ghosts=computed.ghosts,
+        scenes=computed.case.scenes,
+        size_change_percent=magnification_change_percent(computed.forms, worn),
+    )
+
+
+def _worn_forms(computed: Computed, *, beside: bool) -> LensForms | None:
+    """Return the form of the worn pair in the design of the first option: the one laid out beside, where it is."""
+    pair, design = computed.worn_pair, computed.laid[0].design.key
+    has_power = pair is not None and pair.worn.prescription is not None
+    worn = computed.worn_now if beside and has_power else None
+    if worn is not None and worn.laid[0].design.key == design:
+        return worn.forms
+    return worn_forms(computed.case, design=design)
+
+
+def _worn_answer(computed: Computed, translator: Translator) -> dict[str, Content]:
+    """Return the worn pair under its key, or no key where nothing of it is known."""
+    pair, worn = computed.worn_pair, computed.worn_now
+    if pair is None:
+        return {}
+    figures = None if worn is None else figures_of_answer(worn)
+    return {"worn_now": worn_answer(pair, figures=figures, translator=translator)}
+
+
+def answer_of(
+    computed: Computed, *, translator: Translator, with_advice: bool = True, with_worn_now: bool = True
+) -> Comparison:
     """Turn computed arrays into the answer, in the translator's language."""
     case = computed.case
     texts = WARNING_TEXTS | OWN_WARNINGS | WORD_TEXTS
     used = [*case.defaults_used, *(name for option in computed.laid for name in option.defaults_used)]
     if options_of(case)[1]:
         used.append("options")
-    figures = Figures(
-        light=computed.light,
-        uncoated=computed.uncoated,
-        forms=computed.forms,
-        ghosts=computed.ghosts,
-        scenes=case.scenes,
-        size_change_percent=magnification_change_percent(
-            computed.forms, worn_forms(case, design=computed.laid[0].design.key)
-        ),
-    )
+    figures = figures_of_answer(computed, worn=_worn_forms(computed, beside=with_worn_now))
     content: Content = {
         "format": "twolight-comparison-1",
         "twolight": __version__,
@@ -175,6 +217,8 @@ def answer_of(computed: Computed, *, translator: Translator, with_advice: bool =
         "options": [option_answer(option, figures=figures, translator=translator) for option in computed.laid],
         "vertical_imbalance_prism_d": computed.vertical_imbalance_prism_d,
     }
+    if with_worn_now:
+        content |= _worn_answer(computed, translator)
     if case.visit.reference is not None:
         content["reference"] = case.visit.reference
     if with_advice:

@@ -219,13 +219,13 @@ EXPLANATIONS: dict[str, Explanation] = {
     "cornea-back": Explanation(
         mark("Mirrored by the cornea (2.5 %) × mirrored by the back, as a part of the light seen directly."),
         _GHOST_SOURCE,
-        mark("The cornea's 2.5 % is 2.1 to 3.1 % across published indices; further bounces; scatter."),
+        mark("The cornea's 2.5 %: published indices give 2.1 to 3.1 %; further bounces; scatter."),
         (INDEX, BACK_FILM),
     ),
     "cornea-front": Explanation(
         mark("Mirrored by the cornea (2.5 %) × passed back² × mirrored inside the front × τ²."),
         _GHOST_SOURCE,
-        mark("The cornea's 2.5 % is 2.1 to 3.1 % across published indices; further bounces; scatter."),
+        mark("The cornea's 2.5 %: published indices give 2.1 to 3.1 %; further bounces; scatter."),
         (*_FILMS, TINT),
     ),
     "seen_by_others": Explanation(

@@ -1,25 +1,27 @@
 """What is wrong with a file or a form: which file, which field, and one sentence that says what to do."""
 
 import difflib
-from collections.abc import Callable, Collection, Iterable, Mapping, Sequence
+from collections.abc import Collection, Iterable, Mapping, Sequence
 from dataclasses import dataclass
 from typing import get_args
 
 from pydantic import BaseModel, ValidationError
 
-from advisor.counsel.phrases import Figure, Phrase, mark
+from advisor.counsel.phrases import Figure, Phrase, Translator, mark, short_number
 from advisor.errors import TwolightError
 
 MOST_LINES = 5
+DETAIL = "detail"
 TAG = "as:"  # alternatives of a field carry tags that begin so; a reader never sees them
 
 SENTENCES: dict[str, str] = {
     "missing-file": mark("there is no such file."),
     "unreadable": mark("the file cannot be read; check that it is a file and that you may open it."),
-    "too-large": mark("the file is larger than %(limit)s; this is not a file of ours."),
+    "too-large": mark("the file is larger than %(limit_mb)s MB; this is not a file of ours."),
     "not-utf8": mark("the file is not UTF-8 text; save it as UTF-8."),
     "not-json": mark("this is not JSON: line %(line)s, column %(column)s."),
-    "not-toml": mark("this is not TOML: %(detail)s."),
+    "not-toml": mark("this is not TOML: line %(line)s, column %(column)s."),
+    "not-toml-at-all": mark("this is not TOML."),
     "too-deep": mark("the brackets are nested too deeply."),
     "not-finite": mark("write a finite number; NaN and Infinity are refused."),
     "repeated-name": mark("the name “%(name)s” stands twice; keep one."),
@@ -86,10 +88,10 @@ _OURS = {  # pydantic's error type -> our code and the figure that carries its l
 }  # fmt: skip
 
 
-def _show(value: Figure) -> str:
+def _show(value: Figure, translator: Translator | None = None) -> str:
     """Write one figure of a sentence: short numbers, and text on one line whatever it holds."""
     if isinstance(value, float):
-        return f"{value:g}"
+        return f"{value:g}" if translator is None else short_number(value, translator)
     text = "".join(c if c.isprintable() else "\N{REPLACEMENT CHARACTER}" for c in str(value))
     return text if len(text) <= 200 else text[:199] + "…"
 
@@ -102,9 +104,12 @@ class Fault:
     field: str
     phrase: Phrase
 
-    def line(self, translate: Callable[[str], str] = str) -> str:
-        """Write ``FILE: field: sentence``; parts that do not apply are left out."""
-        figures = {name: _show(value) for name, value in self.phrase.figures.items()}
+    def line(self, translator: Translator | None = None) -> str:
+        """Write ``FILE: field: sentence``, in English without a translator; parts that do not apply are left out."""
+        translate = str if translator is None else translator.gettext
+        figures = {name: _show(value, translator) for name, value in self.phrase.figures.items()}
+        if DETAIL in figures:  # a sentence of its own, with places for the other figures
+            figures[DETAIL] = translate(str(self.phrase.figures[DETAIL])) % figures
         sentence = translate(SENTENCES[self.phrase.code]) % figures
         return ": ".join([_show(part) for part in (self.file, self.field) if part] + [sentence])
 
@@ -116,11 +121,12 @@ class Faults(TwolightError):
         self.faults = tuple(faults)
         super().__init__("\n".join(self.lines()))
 
-    def lines(self, translate: Callable[[str], str] = str) -> list[str]:
+    def lines(self, translator: Translator | None = None) -> list[str]:
         """Write one line for each fault, five at most, then how many more there are."""
-        lines = [fault.line(translate) for fault in self.faults[:MOST_LINES]]
+        lines = [fault.line(translator) for fault in self.faults[:MOST_LINES]]
         more = len(self.faults) - len(lines)
-        return [*lines, translate(MORE) % {"count": more}] if more else lines
+        told = MORE if translator is None else translator.gettext(MORE)
+        return [*lines, told % {"count": more}] if more else lines
 
 
 def fault(code: str, *, file: str = "", field: str = "", figures: Mapping[str, Figure] | None = None) -> Fault:
@@ -183,6 +189,8 @@ def faults_from(error: ValidationError, *, model: type[BaseModel], file: str = "
         else:
             code, limit = _OURS.get(kind, ("not-understood", ""))
             value = context.get(limit)
+            if limit == "expected":  # a list in English words
+                value = str(value).replace(" or ", ", ")
             figures = {"expected" if limit == "expected" else "limit": value} if limit else {}
         faults.append(fault(code, file=file, field=field_path(place), figures=figures))
     return faults

@@ -16,7 +16,7 @@ FROM_FORM = {"from_form": True}  # validation context: numbers come as text, and
 
 _NUMBER = re.compile(r"[+-]?(\d+([.,]\d*)?|[.,]\d+)")
 _DATE = re.compile(r"\d{4}-\d{2}-\d{2}", re.ASCII)
-_MINUS_SIGNS = str.maketrans({"\N{MINUS SIGN}": "-", "\N{EN DASH}": "-", "\N{NON-BREAKING HYPHEN}": "-"})
+MINUS_SIGNS = str.maketrans({"\N{MINUS SIGN}": "-", "\N{EN DASH}": "-", "\N{NON-BREAKING HYPHEN}": "-"})
 
 
 class Strict(BaseModel):
@@ -36,7 +36,7 @@ def _from_form(info: ValidationInfo) -> bool:
 
 def number_from_text(text: str) -> float | None:
     """Read a number as people type it: comma or point, U+2212 minus, spaces; None where nothing is typed."""
-    plain = "".join(text.translate(_MINUS_SIGNS).split())
+    plain = "".join(text.translate(MINUS_SIGNS).split())
     if not plain:
         return None
     if len(plain) > 40 or not _NUMBER.fullmatch(plain):
@@ -114,7 +114,7 @@ def alternatives(choose: Callable[[Any], str | None], *, code: str) -> Discrimin
 def by_shape(value: object) -> str | None:
     """Name the shape of a value: key, number, pair or object; in a form a text may also be a number."""
     if isinstance(value, str):
-        return "number" if _NUMBER.fullmatch("".join(value.translate(_MINUS_SIGNS).split())) else "key"
+        return "number" if _NUMBER.fullmatch("".join(value.translate(MINUS_SIGNS).split())) else "key"
     if isinstance(value, int | float) and not isinstance(value, bool):
         return "number"
     if isinstance(value, list | tuple):

@@ -1,6 +1,7 @@
 """Reading a text file that somebody else wrote: size, encoding and syntax, each refused with its own fault."""
 
 import json
+import re
 import tomllib
 from pathlib import Path
 from typing import Any, NoReturn
@@ -31,7 +32,7 @@ def read_text(path: Path, *, largest_bytes: int = LARGEST_BYTES) -> str:
     except (OSError, ValueError) as error:  # ValueError: a path with a null character
         raise Faults([fault("unreadable", file=name)]) from error
     if len(content) > largest_bytes:
-        raise Faults([fault("too-large", file=name, figures={"limit": f"{largest_bytes / 1e6:g} MB"})])
+        raise Faults([fault("too-large", file=name, figures={"limit_mb": largest_bytes / 1e6})])
     try:
         return content.decode("utf-8-sig")
     except UnicodeDecodeError as error:
@@ -72,9 +73,17 @@ def parse_toml(text: str, *, file: str = "") -> dict[str, Any]:
     try:
         return tomllib.loads(text)
     except tomllib.TOMLDecodeError as error:
-        found = fault("not-toml", file=file, figures={"detail": str(error).rstrip(".")})
+        found = _not_toml(error, file)
     except RecursionError:
         found = fault("too-deep", file=file)
     except ValueError:  # an impossible date or a whole number with thousands of digits
-        found = fault("not-toml", file=file, figures={"detail": "a value that cannot be read"})
+        found = fault("not-toml-at-all", file=file)
     raise Faults([found])
+
+
+def _not_toml(error: tomllib.TOMLDecodeError, file: str) -> Fault:
+    """Say where the text stops being TOML; the parser tells it at the end of its message, the end of the text apart."""
+    place = re.search(r"\(at line (\d+), column (\d+)\)$", str(error))
+    if place is None:
+        return fault("not-toml-at-all", file=file)
+    return fault("not-toml", file=file, figures={"line": int(place[1]), "column": int(place[2])})

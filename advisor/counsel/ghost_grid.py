@@ -2,7 +2,8 @@
 
 from dataclasses import dataclass
 
-from advisor.counsel.comparison import Ghost, OptionFigures, Path, Verdict
+from advisor.counsel.comparison import OptionFigures
+from advisor.counsel.lens_figures import Ghost, Path, Verdict
 from advisor.counsel.stock_items import Scene
 from advisor.optics.visibility import VERDICTS
 

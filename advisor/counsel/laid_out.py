@@ -22,6 +22,14 @@ K = TypeVar("K", bound=Item)
 class NothingToLayOut(TwolightError):
     """The visit names no options and the range has none to fall back on, or no design or material at all."""
 
+    text = mark("There is nothing to compare: give the visit options, or the range default_options.")
+
+
+class NoneToTake(NothingToLayOut):
+    """An option names no design or no material, and the range has none at all."""
+
+    text = mark("%(place)s is left out and the range has none to take instead.")
+
 
 @dataclass(frozen=True)
 class Refused:
@@ -155,7 +163,7 @@ def lay_out(case: Case) -> list[Laid]:
     """
     options, _ = options_of(case)
     if not options:
-        raise NothingToLayOut("There is nothing to compare: give the visit options, or the range default_options.")
+        raise NothingToLayOut
     return lay_out_options(case, options)
 
 
@@ -169,7 +177,7 @@ def lay_out_options(case: Case, options: Sequence[Option]) -> list[Laid]:
 
 def _first(items: Sequence[K], name: str) -> K:
     if not items:
-        raise NothingToLayOut(f"{name} is left out and the range has none to take instead.")
+        raise NoneToTake(place=name)
     return items[0]
 
 

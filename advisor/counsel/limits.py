@@ -45,23 +45,18 @@ def limits_of(case: Case, laid: Sequence[Laid], *, forms: LensForms) -> Limits |
     bare = np.array([float(normal_reflectance(option.material.index)) for option in laid])[:, None, None]
     states = [scene_.tint_state == "dark" for scene_ in case.scenes]
     tau = np.array([[_tau(option, dark=dark) for dark in states] for option in laid])[:, None, :]
-    solved = [
-        reflectance_limit(
-            lens,
-            scene=scene,
-            wearer=wearer,
-            bare_reflectance=bare,
-            visibility_level=level,
-            internal_transmittance=tau,
-            accommodated=False,  # the verdicts shown are those of the eye on the road
-        )
-        for level in (NOT_NOTICED, AT_THE_LIMIT)
-    ]
-    flat = [found.reflectance.reshape(len(laid), -1) for found in solved]
-    needless = [found.even_bare.reshape(len(laid), -1).all(axis=-1) for found in solved]
-    not_noticed, at_the_limit = (
-        np.where(bare_is_enough, np.nan, most.min(axis=-1)) for bare_is_enough, most in zip(needless, flat, strict=True)
+    solved = reflectance_limit(
+        lens,
+        scene=scene,
+        wearer=wearer,
+        bare_reflectance=bare,
+        visibility_level=np.array([NOT_NOTICED, AT_THE_LIMIT])[:, None, None, None],
+        internal_transmittance=tau,
+        accommodated=False,  # the verdicts shown are those of the eye on the road
     )
+    flat = solved.reflectance.reshape(2, len(laid), -1)
+    needless = solved.even_bare.reshape(2, len(laid), -1).all(axis=-1)
+    not_noticed, at_the_limit = np.where(needless, np.nan, flat.min(axis=-1))
     return Limits(case.scenes, not_noticed, at_the_limit, scene=flat[0].argmin(axis=-1) % len(case.scenes))
 
 

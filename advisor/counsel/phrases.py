@@ -9,6 +9,8 @@ from collections.abc import Mapping
 from dataclasses import dataclass, field
 from typing import Protocol
 
+from advisor.errors import mark as mark  # the domain marks its texts where it makes its phrases
+
 Figure = float | int | str | None
 
 # How many decimals a figure is shown with, by the end of its name; the longest ending that fits counts.
@@ -17,6 +19,7 @@ DIGITS: Mapping[str, int] = {
     "_nm": 0,
     "_cm": 0,
     "_g": 1,
+    "pair_g": 0,
     "_d": 2,
     "_prism_d": 2,
     "_prism": 2,
@@ -39,11 +42,6 @@ UNSIGNED = ("_prism_d", "changed_by_d", "most_d", "blur_d")  # sizes, not powers
 
 
 WORD = "word:"  # begins the keys of words for names, see ``words.py``
-
-
-def mark(text: str) -> str:
-    """Mark a text for translation; the text itself is returned unchanged."""
-    return text
 
 
 @dataclass(frozen=True)
@@ -80,6 +78,12 @@ def figure_text(name: str, value: Figure, translator: Translator) -> str:
         return translator.gettext(value) if value else ""
     signed = name.endswith(SIGNED) and not name.endswith(UNSIGNED)
     return translator.number(value, digits=digits_for(name), signed=signed)
+
+
+def short_number(value: float, translator: Translator) -> str:
+    """Return a number with as many decimals as it needs, six figures at most."""
+    plain = f"{value:g}"
+    return plain if "e" in plain else translator.number(value, digits=len(plain.partition(".")[2]))
 
 
 def say(phrase: Phrase, texts: Mapping[str, str], translator: Translator) -> str:

@@ -3,8 +3,8 @@
 from typing import Literal, get_args
 
 from advisor.counsel.compare import Computed
-from advisor.counsel.comparison import Ghost, Verdict
-from advisor.counsel.phrases import Figure, Phrase, Translator, say
+from advisor.counsel.lens_figures import Ghost, Verdict
+from advisor.counsel.phrases import Figure, Phrase, Translator, mark, say
 from advisor.counsel.picture_drawing import draw_desk, draw_road, road_sheet
 from advisor.counsel.picture_face import FaceView, draw_face, face_view
 from advisor.counsel.picture_shapes import HEIGHT as HEIGHT  # the size of every picture, for who shows them
@@ -26,6 +26,8 @@ VERDICT_WORDS: tuple[Verdict, ...] = get_args(Verdict)  # in the order of the vi
 
 class NoSuchPicture(TwolightError):
     """The visit has no such option, the option cannot be made, or no scene of the visit suits the picture."""
+
+    text = mark("There is no such picture for this visit.")
 
 
 def names_of(computed: Computed, k: int) -> tuple[Name, ...]:
@@ -78,10 +80,10 @@ def road_wide_deg(computed: Computed, k: int) -> float:
 def _place(computed: Computed, name: Name, k: int, *, film: bool) -> tuple[Seen, int, int]:
     """Return the ghosts, and the scene and the eye that a picture shows: the same with the coating and without."""
     if name not in names_of(computed, k):
-        raise NoSuchPicture("There is no such picture for this visit.")
+        raise NoSuchPicture
     chosen = road_scene(computed, k) if name == "road" else desk_scene(computed, k)
     if chosen is None:
-        raise NoSuchPicture("There is no such picture for this visit.")
+        raise NoSuchPicture
     return seen_through(computed, film=film), *chosen
 
 

@@ -36,8 +36,7 @@ class UnknownAnswer(TwolightError):
 
     def __init__(self, key: str) -> None:
         known = [*SIGNS, *TESTS]
-        self.figures = {"key": key[:60], "nearest": nearest_name(key, names=known) or known[0]}
-        super().__init__(self.text % self.figures)
+        super().__init__(key=key[:60], nearest=nearest_name(key, names=known) or known[0])
 
 
 def recheck(
@@ -64,7 +63,7 @@ def recheck(
     for key, answer in answers.items():
         if key not in SIGNS | TESTS or answer not in ("yes", "no"):
             raise UnknownAnswer(key)
-    heard = hear(says)
+    heard = hear(says, translator)
     signs = _signs(answers, heard.signs, translator)
     urgent = _urgency(signs)
     lens = _lens(visit, stock, number, translator, today, needed=urgent is None)

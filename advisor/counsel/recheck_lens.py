@@ -9,9 +9,10 @@ from typing import Any
 from advisor.counsel.case import Case
 from advisor.counsel.choices import Faces, Option
 from advisor.counsel.compare import Computed, answer_of, compute, lens_light
-from advisor.counsel.comparison import Comparison, EyeFigures, Ghost, OptionFigures
+from advisor.counsel.comparison import Comparison, OptionFigures
 from advisor.counsel.form import is_protective
 from advisor.counsel.laid_out import Laid
+from advisor.counsel.lens_figures import EyeFigures, Ghost
 from advisor.counsel.materials import is_glass
 from advisor.counsel.musts import OF_THE_DESIGN, Finished, broken_by
 from advisor.counsel.phrases import Translator
@@ -74,7 +75,7 @@ class OnFile:
     @cached_property
     def answer(self) -> Comparison:
         """The comparison of this one lens."""
-        return answer_of(self.computed, translator=self.translator, with_advice=False)
+        return answer_of(self.computed, translator=self.translator, with_advice=False, with_worn_now=False)
 
     @property
     def option(self) -> OptionFigures:
@@ -99,7 +100,7 @@ class OnFile:
         return compute(visit, stock or self.stock, today=self.today)
 
     def _figures(self, computed: Computed) -> list[OptionFigures]:
-        return answer_of(computed, translator=self.translator, with_advice=False).options
+        return answer_of(computed, translator=self.translator, with_advice=False, with_worn_now=False).options
 
     def offered(self, options: Mapping[str, Option], *, own_pair: bool = False) -> list[tuple[str, OptionFigures]]:
         """Return what of some named options can be made, is sold and may be advised to this wearer, with its figures.

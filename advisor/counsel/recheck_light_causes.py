@@ -8,7 +8,8 @@ from dataclasses import dataclass
 
 from advisor.counsel.batch import match_share
 from advisor.counsel.choices import Faces
-from advisor.counsel.comparison import Ghost, OptionFigures
+from advisor.counsel.comparison import OptionFigures
+from advisor.counsel.lens_figures import Ghost
 from advisor.counsel.phrases import Phrase, say
 from advisor.counsel.recheck_answer import Level
 from advisor.counsel.recheck_lens import OnFile, eyes_of, most, worst_behind, worst_second

@@ -1,11 +1,13 @@
 """The wearer's words: which complaints, and which signs for an eye doctor, are heard in them.
 
-English, because it is the optician who types them. Several complaints may be heard at once.
+In English they are read freely; in the reader's own language as the list of complaints words them. Several complaints
+may be heard at once.
 """
 
 import re
 from dataclasses import dataclass
 
+from advisor.counsel.phrases import Translator
 from advisor.counsel.recheck_sign_words import DOUBLE, LIGHT, signs_in
 from advisor.counsel.recheck_texts import COMPLAINTS
 
@@ -75,11 +77,14 @@ class Heard:
     signs: tuple[str, ...]
 
 
-def hear(says: str) -> Heard:
-    """Return the complaints and signs in some words; a complaint's own key is taken as it stands."""
+def hear(says: str, translator: Translator | None = None) -> Heard:
+    """Return the complaints and signs in some words; a complaint's own key or its text is taken as it stands."""
     text = " ".join(says.lower().replace("\N{RIGHT SINGLE QUOTATION MARK}", "'").split())[:MOST_LETTERS]
     if text in COMPLAINTS:
         return Heard((text,), ("soon-rings",) if text == "rings" else ())
+    for key, complaint in COMPLAINTS.items():
+        if translator is not None and text == translator.gettext(complaint).lower():
+            return hear(key)
     found = [key for key in COMPLAINTS if any(re.search(part, text) for part in COMPLAINT_WORDS[key])]
     unsaid = {other for key in found for other in _RATHER.get(key, ())}
     complaints = tuple(key for key in found if key not in unsaid)

@@ -19,10 +19,12 @@ class Region:
 
 
 REGIONS: dict[str, Region] = {
-    "international": Region("international", "A4", mark("Call an eye doctor or your local emergency number.")),
-    "eu": Region("eu", "A4", mark("Call an eye doctor or 112.")),
-    "uk": Region("uk", "A4", mark("Call your optician, 111, or 999 in an emergency.")),
-    "us": Region("us", "Letter", mark("Call an eye doctor, or 911 in an emergency.")),
+    "international": Region(
+        "international", "A4", mark("Call an eye doctor. In an emergency, call your local emergency number.")
+    ),
+    "eu": Region("eu", "A4", mark("Call an eye doctor. In an emergency, call 112.")),
+    "uk": Region("uk", "A4", mark("Call your optician or 111. In an emergency, call 999 or 112.")),
+    "us": Region("us", "Letter", mark("Call an eye doctor. In an emergency, call 911.")),
 }
 
 

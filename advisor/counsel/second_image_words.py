@@ -4,8 +4,8 @@ The page and the text table say it alike. Where a scene is brighter than the thr
 day), nobody can say from a threshold whether a ghost is noticed: its contrast is told instead.
 """
 
-from advisor.counsel.comparison import OptionFigures, Verdict
 from advisor.counsel.layout import VERDICTS
+from advisor.counsel.lens_figures import LensPair, Verdict
 from advisor.counsel.phrases import Phrase, Translator, mark, say
 from advisor.counsel.spoken import SPOKEN, from_behind, ghost_phrase, ghosts_of, worst_ghost
 from advisor.optics import visibility
@@ -16,7 +16,7 @@ PAST_RANGE: dict[str, str] = {"past-range": BRIGHT}
 AHEAD = ("ahead-inner",)
 
 
-def verdict_range(option: OptionFigures) -> tuple[Verdict, Verdict] | None:
+def verdict_range(option: LensPair) -> tuple[Verdict, Verdict] | None:
     """Return the verdicts between which the worst second image may lie, or None where one word says it."""
     order = visibility.VERDICTS
     ranges = [ghost.verdict_range for ghost in ghosts_of(option, paths=AHEAD) if not ghost.past_range]
@@ -28,13 +28,13 @@ def verdict_range(option: OptionFigures) -> tuple[Verdict, Verdict] | None:
     return None if least == most else (least, most)
 
 
-def past_range(option: OptionFigures) -> Phrase | None:
+def past_range(option: LensPair) -> Phrase | None:
     """Return the greatest contrast of a second image in scenes past the threshold's range, or None without any."""
     found = [ghost.contrast for ghost in ghosts_of(option, paths=AHEAD) if ghost.past_range and ghost.contrast]
     return Phrase("past-range", {"contrast_percent": 100.0 * max(found)}) if found else None
 
 
-def lead(option: OptionFigures, translator: Translator) -> str | None:
+def lead(option: LensPair, translator: Translator) -> str | None:
     """Return what an optician says aloud of the second image, or None where no light ahead is laid out."""
     ghost = worst_ghost(option)
     if ghost is None:
@@ -44,7 +44,7 @@ def lead(option: OptionFigures, translator: Translator) -> str | None:
     return f"{translator.gettext(VERDICTS[ghost.verdict])}; {spoken}" if ghost.spread and ghost.verdict else spoken
 
 
-def beside(option: OptionFigures, translator: Translator) -> list[str]:
+def beside(option: LensPair, translator: Translator) -> list[str]:
     """Return what stands under the lead: how sure it is, bright scenes by contrast, and light from behind."""
     found = []
     between = verdict_range(option)

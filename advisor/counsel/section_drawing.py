@@ -14,7 +14,7 @@ from advisor.counsel.answer import place as edge_place
 from advisor.counsel.compare import Computed
 from advisor.counsel.prescription import EYES, Eye
 from advisor.optics.lens_form import curvature_along, sag
-from advisor.optics.thickness import wedge_at
+from advisor.optics.thickness import Refusal, wedge_at
 
 POINTS = 41
 MARGIN_MM = 1.0
@@ -37,25 +37,25 @@ class Section:
 
 
 def sections(computed: Computed) -> list[Section]:
-    """Return the section of every lens that can be made, drawn in one common scale and box."""
-    forms, found = computed.forms, []
-    outlines: list[tuple[int, int, NDArray[np.float64], NDArray[np.float64], NDArray[np.float64]]] = []
-    for option in computed.laid:
-        if not option.refused:
-            outlines += [(option.index, e, *_cut(computed, option.index, e)) for e in range(len(EYES))]
-    if not outlines:
+    """Return the section of every lens that can be made, drawn in one common scale and box; the worn pair's last."""
+    pairs = [(option.index, computed, option.index) for option in computed.laid if not option.refused]
+    worn = computed.worn_now
+    if worn is not None and np.all(worn.forms.shape.refusal == Refusal.NONE):
+        pairs.append((len(computed.laid), worn, 0))
+    cuts = [(index, e, pair.forms.shape, k, *_cut(pair, k, e)) for index, pair, k in pairs for e in range(len(EYES))]
+    if not cuts:
         return []
-    top = max(float(across.max()) for _, _, across, _, _ in outlines) + MARGIN_MM
-    bottom = min(float(across.min()) for _, _, across, _, _ in outlines) - MARGIN_MM
-    least = min(float(front.min()) for _, _, _, front, _ in outlines) - MARGIN_MM
-    most = max(float(back.max()) for _, _, _, _, back in outlines) + MARGIN_MM
-    shape = forms.shape
-    for k, e, across, front, back in outlines:
+    top = max(float(across.max()) for *_, across, _, _ in cuts) + MARGIN_MM
+    bottom = min(float(across.min()) for *_, across, _, _ in cuts) - MARGIN_MM
+    least = min(float(front.min()) for *_, front, _ in cuts) - MARGIN_MM
+    most = max(float(back.max()) for *_, back in cuts) + MARGIN_MM
+    found = []
+    for index, e, shape, k, across, front, back in cuts:
         points = [*zip(front, across, strict=True), *zip(back[::-1], across[::-1], strict=True)]
         path = " ".join(f"{x - least:.2f},{top - y:.2f}" for x, y in points)
         found.append(
             Section(
-                index=k,
+                index=index,
                 eye=EYES[e],
                 path=f"M{path} Z",
                 width_mm=round(most - least, 2),

@@ -6,7 +6,7 @@ ghost is larger than 1 degree or reaches back over its lamp: then it is no secon
 
 from collections.abc import Iterable, Mapping
 
-from advisor.counsel.comparison import Ghost, OptionFigures
+from advisor.counsel.lens_figures import EyeFigures, Ghost, LensPair
 from advisor.counsel.phrases import Phrase, mark
 from advisor.optics.visibility import VERDICTS
 
@@ -37,16 +37,14 @@ PLACES: tuple[tuple[float, str], ...] = (
 EDGES: Mapping[bool, str] = {True: mark("sharp-edged"), False: mark("soft-edged")}
 
 
-def ghosts_of(option: OptionFigures, *, paths: Iterable[str]) -> list[Ghost]:
+def ghosts_of(option: LensPair, *, paths: Iterable[str]) -> list[Ghost]:
     """Return the ghosts of both eyes that take one of these paths."""
     wanted = set(paths)
-    eyes = [eye for eye in (option.right, option.left) if eye is not None]
+    eyes = [eye for eye in (option.right, option.left) if isinstance(eye, EyeFigures)]
     return [ghost for eye in eyes for ghost in eye.ghosts if ghost.path in wanted]
 
 
-def worst_ghost(
-    option: OptionFigures, *, paths: Iterable[str] = ("ahead-inner",), haze: bool | None = None
-) -> Ghost | None:
+def worst_ghost(option: LensPair, *, paths: Iterable[str] = ("ahead-inner",), haze: bool | None = None) -> Ghost | None:
     """Return the ghost with the greatest visibility level, or None where none is computed; of haze alone or without.
 
     Scenes past the range of the threshold model (daylight, office, stage) are told by contrast and never ranked by it.
@@ -72,13 +70,13 @@ def ghost_phrase(ghost: Ghost) -> Phrase:
     return Phrase(f"second-{ghost.verdict}", {"place": place, "edge": EDGES[(size or 0.0) < SHARP_BELOW_DEG]})
 
 
-def second_image(option: OptionFigures) -> Phrase | None:
+def second_image(option: LensPair) -> Phrase | None:
     """Return the worst second image of an option in words, or None where none is computed."""
     ghost = worst_ghost(option)
     return None if ghost is None else ghost_phrase(ghost)
 
 
-def from_behind(option: OptionFigures) -> Phrase | None:
+def from_behind(option: LensPair) -> Phrase | None:
     """Return what shows of light from behind, by its contrast, or None where no such scene is laid out."""
     found = [ghost.contrast for ghost in ghosts_of(option, paths=("behind-back", "behind-front")) if ghost.contrast]
     return behind_phrase(max(found)) if found else None

@@ -11,6 +11,7 @@ from advisor.counsel.choices import CoatingRef, Faces, MaterialRef, Option, Tint
 from advisor.counsel.faults import Fault, Faults, fault, faults_from, unknown_key
 from advisor.counsel.fields import Key, Line, Number, Paragraph, Strict
 from advisor.counsel.files import parse_toml, read_text
+from advisor.counsel.phrases import mark
 from advisor.counsel.regions import REGIONS
 from advisor.counsel.stock_items import IN_PLACE, Coating, Design, Item, Material, Offer, Scene, Tint
 from advisor.counsel.toml_writing import toml_text
@@ -25,6 +26,8 @@ K = TypeVar("K", bound=Item | Scene)
 
 class UnknownStock(TwolightError):
     """A key that the range does not hold."""
+
+    text = mark("“%(key)s” is not in the range.")
 
 
 class Shop(Strict):
@@ -91,7 +94,7 @@ def _named(items: Iterable[K], key: str) -> K:
     for item in items:
         if item.key == key:
             return item
-    raise UnknownStock(f"“{key}” is not in the range.")
+    raise UnknownStock(key=key)
 
 
 def keys_of(items: Iterable[Item | Scene]) -> list[str]:

@@ -159,7 +159,7 @@ class Coating(Item):
             try:
                 measured_spectrum(rows)
             except SpectrumFault as error:
-                raise refusal("spectrum-refused", {"detail": str(error)}) from error
+                raise refusal("spectrum-refused", {"detail": error.text, **error.figures}) from error
         return rows
 
     @model_validator(mode="after")

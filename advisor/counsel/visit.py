@@ -236,6 +236,7 @@ class Visit(Strict):
     format: Literal["twolight-visit-1"] = "twolight-visit-1"
     date: Date = None
     reference: Line | None = None
+    dispensed_by: Line | None = None
     note: Paragraph | None = None
     wearer: Wearer | None = None
     prescription: Prescription

@@ -45,7 +45,7 @@ def reflectance_limit(
     scene: Scene,
     wearer: Wearer,
     bare_reflectance: ArrayLike,
-    visibility_level: float,
+    visibility_level: ArrayLike,
     internal_transmittance: ArrayLike = 1.0,
     accommodated: bool = True,
 ) -> ReflectanceLimit:
@@ -61,8 +61,9 @@ def reflectance_limit(
         As in `see_ghosts`.
     bare_reflectance : array_like, (...)
         Of the bare surface, above 0, at most 0.2 (index 2.6): up to there every ghost grows with R.
-    visibility_level : float
-        Above 0; 0.4 for "not noticed", 1 for "at the limit".
+    visibility_level : array_like, (...)
+        Above 0; 0.4 for "not noticed", 1 for "at the limit". Several are solved together in little more than the time
+        of one: give them an axis of their own before those of the lens.
     internal_transmittance : array_like, (...)
         Of the material with its tint, above 0, at most 1.
     accommodated : bool
@@ -77,7 +78,8 @@ def reflectance_limit(
     tau = np.asarray(internal_transmittance, dtype=np.float64)
     if not ((bare > LEAST_REFLECTANCE) & (bare <= GREATEST_BARE_REFLECTANCE)).all():
         raise ValueError("bare_reflectance must be above 0, at most 0.2")
-    if not visibility_level > 0.0:
+    wanted = np.asarray(visibility_level, dtype=np.float64)
+    if not (wanted > 0.0).all():
         raise ValueError("visibility_level must be above 0")
     if not ((tau > 0.0) & (tau <= 1.0)).all():
         raise ValueError("internal_transmittance must be above 0, at most 1")
@@ -89,7 +91,7 @@ def reflectance_limit(
         level = ghosts.relaxed.visibility_level
         if accommodated:
             level = np.maximum(level, ghosts.accommodated.visibility_level)
-        return np.asarray(level.max(axis=-1) <= visibility_level, dtype=np.bool_)
+        return np.asarray(level.max(axis=-1) <= wanted, dtype=np.bool_)
 
     even_bare = kept(np.log(bare))
     high = np.broadcast_to(np.log(bare), even_bare.shape)

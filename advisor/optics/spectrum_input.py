@@ -11,7 +11,7 @@ from typing import Final
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from advisor.errors import TwolightError
+from advisor.errors import TwolightError, mark
 from advisor.optics.colour import HUE_BANDS_DEG, HUE_WORDS
 from advisor.optics.grid import WAVELENGTHS_NM
 from advisor.optics.photometry import luminous_mean, on_grid
@@ -23,22 +23,15 @@ NEUTRAL_STEP_DEG: Final = 90.0
 
 
 class SpectrumFault(TwolightError):
-    """A measured or declared reflectance that cannot be used; the text says what to do.
+    """A measured or declared reflectance that cannot be used; the text says what to do."""
 
-    `sentence` is the text with places for `figures`, so that it can be translated.
-    """
-
-    sentence = "The reflectance cannot be used."
-
-    def __init__(self, **figures: float | str) -> None:
-        self.figures = figures
-        super().__init__(self.sentence.format(**figures))
+    text = mark("The reflectance cannot be used.")
 
 
 class SpectrumRowsUnreadable(SpectrumFault):
     """Not a list of two or more pairs of numbers."""
 
-    sentence = (
+    text = mark(
         "The spectrum needs two or more rows of two numbers each: wavelength in nm and reflectance as a fraction."
     )
 
@@ -46,44 +39,54 @@ class SpectrumRowsUnreadable(SpectrumFault):
 class SpectrumNotANumber(SpectrumFault):
     """A value that is missing or infinite."""
 
-    sentence = "Row {row} of the spectrum is not a number; remove the row or fill it in."
+    text = mark("Row %(row)s of the spectrum is not a number; remove the row or fill it in.")
 
 
 class SpectrumOutOfOrder(SpectrumFault):
     """A wavelength that does not rise from the row before, or stands twice."""
 
-    sentence = "The wavelength {wavelength_nm:g} nm in row {row} does not rise; sort the rows and keep each one once."
+    text = mark(
+        "The wavelength %(wavelength_nm)s nm in row %(row)s does not rise; sort the rows and keep each one once."
+    )
 
 
 class SpectrumInPercent(SpectrumFault):
     """A reflectance above 1, which can only be percent."""
 
-    sentence = "The reflectance {reflectance:g} at {wavelength_nm:g} nm is above 1; give fractions, so 0.005 for 0.5 %."
+    text = mark(
+        "The reflectance %(reflectance)s at %(wavelength_nm)s nm is above 1; give fractions, so 0.005 for 0.5 %%."
+    )
 
 
 class SpectrumNegative(SpectrumFault):
     """A reflectance below 0."""
 
-    sentence = "The reflectance {reflectance:g} at {wavelength_nm:g} nm is negative; correct it, or write 0 for noise."
+    text = mark(
+        "The reflectance %(reflectance)s at %(wavelength_nm)s nm is negative; correct it, or write 0 for noise."
+    )
 
 
 class SpectrumNotCovered(SpectrumFault):
     """Rows that begin after 380 nm or end before 780 nm."""
 
-    sentence = "The spectrum covers {first_nm:g} to {last_nm:g} nm; it must reach from 380 or below to 780 nm or above."
+    text = mark(
+        "The spectrum covers %(first_nm)s to %(last_nm)s nm; it must reach from 380 or below to 780 nm or above."
+    )
 
 
 class SpectrumGap(SpectrumFault):
     """Neighbouring rows too far apart."""
 
-    sentence = "Between {from_nm:g} and {to_nm:g} nm there is no row; measure at least every 10 nm from 380 to 780 nm."
+    text = mark(
+        "Between %(from_nm)s and %(to_nm)s nm there is no row; measure at least every 10 nm from 380 to 780 nm."
+    )
 
 
 class DeclaredOutOfReach(SpectrumFault):
     """A declared luminous reflectance that no built-in film can be scaled to."""
 
-    sentence = (
-        "No built-in film can be scaled to a luminous reflectance of {declared:g}; the most is {greatest:.3g}. "
+    text = mark(
+        "No built-in film can be scaled to a luminous reflectance of %(declared)s; the most is %(greatest)s. "
         "Give the layers or a measured spectrum instead."
     )
 
@@ -206,7 +209,7 @@ def scaled_shape(shapes: ArrayLike, shape_hues: Sequence[str], *, declared: floa
     limits = np.minimum(GREATEST_FACTOR, 1.0 / films.max(axis=1))
     usable = [int(place) for place in np.flatnonzero(factors <= limits * (1.0 + 1e-12))]
     if not usable:
-        raise DeclaredOutOfReach(declared=declared, greatest=float(np.max(own * limits)))
+        raise DeclaredOutOfReach(declared=declared, greatest=float(f"{np.max(own * limits):.3g}"))
     best = min(usable, key=lambda place: (hue_distance_deg(hue, shape_hues[place]), abs(np.log(factors[place]))))
     candidates = np.minimum(1.0, films[usable] * factors[usable, None])
     return EstimatedSpectrum(

@@ -9,6 +9,7 @@ from advisor.errors import TwolightError
 from advisor.records import tables
 
 _DRAFT = tables.draft.c
+KEPT_DAYS = 30  # a draft that nobody changed for so long, and that was never saved, is dropped
 
 
 @dataclass(frozen=True)
@@ -30,16 +31,13 @@ class DraftChanged(TwolightError):
 
     def __init__(self, stored: SavedDraft) -> None:
         self.stored = stored
-        super().__init__(self.text)
+        super().__init__()
 
 
 class DraftMissing(TwolightError):
     """There is no such draft, or it has been saved or erased."""
 
     text = mark("This form is no longer kept; it may have been saved or erased in another window.")
-
-    def __init__(self) -> None:
-        super().__init__(self.text)
 
 
 def find(connection: Connection, draft_id: str) -> SavedDraft:
@@ -51,7 +49,8 @@ def find(connection: Connection, draft_id: str) -> SavedDraft:
 
 
 def add(connection: Connection, fields_json: str, *, visit_id: str | None, visit_edit: int | None) -> SavedDraft:
-    """Store a new draft."""
+    """Store a new draft, and drop those that were left lying."""
+    erase_left_lying(connection)
     draft = SavedDraft(tables.new_id(), tables.now(), 1, fields_json, visit_id, visit_edit)
     connection.execute(insert(tables.draft).values(astuple(draft)))
     return draft
@@ -68,6 +67,21 @@ def change(connection: Connection, fields_json: str, *, draft_id: str, edit_seen
     if done.rowcount == 0:
         raise DraftChanged(stored)
     return stored
+
+
+def take(connection: Connection, draft_id: str, *, edit_seen: int | None) -> None:
+    """Remove the draft that a form was saved from; one that is gone is no error, one changed meanwhile is."""
+    wanted = _DRAFT.id == draft_id
+    seen = wanted if edit_seen is None else wanted & (_DRAFT.edit == edit_seen)
+    if connection.execute(delete(tables.draft).where(seen)).rowcount == 0:
+        row = connection.execute(select(tables.draft).where(wanted)).first()
+        if row is not None:
+            raise DraftChanged(SavedDraft(*row))
+
+
+def erase_left_lying(connection: Connection) -> None:
+    """Remove the drafts that were last changed more than ``KEPT_DAYS`` ago."""
+    connection.execute(delete(tables.draft).where(_DRAFT.changed_at < tables.days_ago(KEPT_DAYS)))
 
 
 def erase(connection: Connection, draft_id: str) -> None:

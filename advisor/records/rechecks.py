@@ -29,17 +29,11 @@ class RecheckMissing(TwolightError):
 
     text = mark("There is no such record; its visit may have been erased.")
 
-    def __init__(self) -> None:
-        super().__init__(self.text)
-
 
 class RecheckChanged(TwolightError):
     """Another outcome was recorded under this identifier before."""
 
     text = mark("An outcome was recorded from this form before, and it was another one; nothing was overwritten.")
-
-    def __init__(self) -> None:
-        super().__init__(self.text)
 
 
 def add(

@@ -11,7 +11,7 @@ from advisor.records.trouble import StoreNewer, StoreUnreadable
 
 MIGRATIONS = Path(__file__).resolve().parent / "migrations"
 # Every version of the tables, oldest first; the last is the present one.
-REVISIONS = ("0001", "0002")
+REVISIONS = ("0001", "0002", "0003")
 
 _VERSION = table("alembic_version", column("version_num"))
 

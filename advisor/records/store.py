@@ -6,17 +6,18 @@ from contextlib import contextmanager
 from pathlib import Path
 from types import TracebackType
 
-from sqlalchemy import Connection, Engine, make_url
+from sqlalchemy import Connection, Engine, exc, make_url
 
-from advisor.records import drafts, ranges, rechecks, visits
+from advisor.records import drafts, ranges, rechecks, saved_forms, visits
 from advisor.records.drafts import SavedDraft
 from advisor.records.engine import make_private, server_engine, sqlite_engine
 from advisor.records.location import database_file
 from advisor.records.ranges import RangeVersion
 from advisor.records.rechecks import SavedRecheck
+from advisor.records.saved_forms import SentForm
 from advisor.records.schema import bring_up_to_date
 from advisor.records.trouble import StoreUnreadable, explained
-from advisor.records.visits import PageKey, SavedVisit, VisitLine
+from advisor.records.visits import Made, PageKey, SavedVisit, VisitLine
 
 
 class Store:
@@ -82,8 +83,9 @@ class Store:
         answer_json: str,
         visit_id: str | None = None,
         edit_seen: int | None = None,
+        form: SentForm | None = None,
     ) -> SavedVisit:
-        """Save a new visit, or save over the edit of ``visit_id`` that the editor saw.
+        """Save a new visit, or save over the edit of ``visit_id`` that the editor saw; with ``form``, once for a form.
 
         Raises
         ------
@@ -91,22 +93,36 @@ class Store:
             If it has been saved since; it carries the stored visit.
         VisitMissing
             If it has been erased since.
+        DraftChanged
+            If the form's draft was changed by another window.
         """
         if (visit_id is None) != (edit_seen is None):
             raise ValueError("visit_id and edit_seen go together: give both or neither")
+        over = None if visit_id is None or edit_seen is None else (visit_id, edit_seen)
+        try:
+            return self._save(visit_json, range_toml, version, answer_json, over, form)
+        except exc.IntegrityError:  # a server lets the same form in twice at once: the later of the two looks again
+            return self._save(visit_json, range_toml, version, answer_json, over, form)
+
+    def _save(
+        self,
+        visit_json: str,
+        range_toml: str,
+        version: str,
+        answer_json: str,
+        over: tuple[str, int] | None,
+        form: SentForm | None,
+    ) -> SavedVisit:
         with self._writing() as connection:
-            key = ranges.keep(connection, range_toml)
-            if visit_id is None or edit_seen is None:
-                return visits.add(connection, visit_json, range_hash=key, version=version, answer_json=answer_json)
-            return visits.change(
-                connection,
-                visit_json,
-                range_hash=key,
-                version=version,
-                answer_json=answer_json,
-                visit_id=visit_id,
-                edit_seen=edit_seen,
-            )
+            made = Made(visit_json, ranges.keep(connection, range_toml), version, answer_json)
+            if form is not None:
+                return saved_forms.save(connection, made, form=form, over=over)
+            return visits.add(connection, made) if over is None else visits.change(connection, made, over=over)
+
+    def visit_of_draft(self, draft_id: str) -> str | None:
+        """Return the visit that a draft was saved as, if it was."""
+        with self._reading() as connection:
+            return saved_forms.visit_of_draft(connection, draft_id)
 
     def get_visit(self, visit_id: str) -> SavedVisit:
         """Return a visit, or raise VisitMissing."""
@@ -171,7 +187,7 @@ class Store:
         visit_id: str | None = None,
         visit_edit: int | None = None,
     ) -> SavedDraft:
-        """Save a new draft, or save over ``draft_id``.
+        """Save a new draft, or save over ``draft_id``; with a new one, those left lying for long are dropped.
 
         ``visit_id`` and ``visit_edit`` are taken when the draft is new. With ``edit_seen`` a draft that was changed
         elsewhere raises DraftChanged; without it the last save counts. One that is gone raises DraftMissing.

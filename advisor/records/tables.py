@@ -50,6 +50,19 @@ draft = Table(
     Index("ix_draft_visit", "visit_id"),
 )
 
+# A row is looked up when a form comes again, and when a draft is asked for that is no longer there.
+saved_form = Table(
+    "saved_form",
+    metadata,
+    Column("token", String(64), primary_key=True),  # drawn when the form was first shown
+    Column("visit_id", String(32), ForeignKey("visit.id", ondelete="CASCADE"), nullable=False),
+    Column("visit_edit", Integer, nullable=False),  # the edit that was saved from this form
+    Column("draft_id", String(32)),  # the draft it was saved from, which went with the saving
+    Column("draft_edit", Integer),
+    Index("ix_saved_form_visit", "visit_id"),
+    Index("ix_saved_form_draft", "draft_id"),
+)
+
 recheck = Table(
     "recheck",
     metadata,
@@ -79,4 +92,10 @@ def new_id() -> str:
 
 def now() -> str:
     """Return the present moment as stored."""
-    return datetime.datetime.now(datetime.UTC).isoformat(timespec="microseconds")
+    return days_ago(0)
+
+
+def days_ago(days: int) -> str:
+    """Return the moment so many days ago, as stored."""
+    moment = datetime.datetime.now(datetime.UTC) - datetime.timedelta(days=days)
+    return moment.isoformat(timespec="microseconds")

@@ -6,7 +6,6 @@ Each class keeps its sentence in ``text`` and the words to put in as ``figures``
 import sqlite3
 from collections.abc import Iterator, Mapping
 from contextlib import contextmanager
-from typing import ClassVar
 
 from sqlalchemy import exc
 
@@ -17,11 +16,10 @@ from advisor.errors import TwolightError
 class StoreError(TwolightError):
     """The records cannot be read or written."""
 
-    text: ClassVar[str] = mark("The records in %(place)s cannot be used.")
+    text = mark("The records in %(place)s cannot be used.")
 
     def __init__(self, place: str) -> None:
-        self.figures: Mapping[str, str] = {"place": place}
-        super().__init__(self.text % self.figures)
+        super().__init__(place=place)
 
 
 class StoreUnreadable(StoreError):

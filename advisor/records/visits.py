@@ -63,7 +63,7 @@ class VisitChanged(TwolightError):
 
     def __init__(self, stored: SavedVisit) -> None:
         self.stored = stored
-        super().__init__(self.text)
+        super().__init__()
 
 
 class VisitMissing(TwolightError):
@@ -71,8 +71,14 @@ class VisitMissing(TwolightError):
 
     text = mark("There is no such visit; it may have been erased.")
 
-    def __init__(self) -> None:
-        super().__init__(self.text)
+
+class Made(NamedTuple):
+    """What a visit is saved with: its content, the range and program it was worked out with, and the answer."""
+
+    visit_json: str
+    range_hash: str
+    version: str
+    answer_json: str
 
 
 class _Named(NamedTuple):
@@ -86,11 +92,12 @@ def _named(content: dict[str, Any]) -> _Named:
     return _Named(wearer.get("name") or "", content.get("reference") or "", content.get("note") or "")
 
 
-def _columns(visit_json: str, answer_json: str) -> dict[str, Any]:
-    content = json.loads(visit_json)
+def _columns(made: Made) -> dict[str, Any]:
+    content = json.loads(made.visit_json)
     named = _named(content)
     row: dict[str, Any] = {f"{field}_folded": fold(text) for field, text in named._asdict().items()}
-    row |= {"visit": visit_json, "answer": zlib.compress(answer_json.encode()), "changed_at": tables.now()}
+    row |= {"visit": made.visit_json, "answer": zlib.compress(made.answer_json.encode()), "changed_at": tables.now()}
+    row |= {"range_hash": made.range_hash, "version": made.version}
     if content.get("date"):
         row["date"] = content["date"]
     return row
@@ -118,27 +125,18 @@ def find(connection: Connection, visit_id: str) -> SavedVisit:
     return _saved(row)
 
 
-def add(connection: Connection, visit_json: str, *, range_hash: str, version: str, answer_json: str) -> SavedVisit:
+def add(connection: Connection, made: Made) -> SavedVisit:
     """Store a new visit; one without a date is of today."""
-    row = {"date": datetime.date.today().isoformat()} | _columns(visit_json, answer_json)
+    row = {"date": datetime.date.today().isoformat()} | _columns(made)
     row |= {"id": tables.new_id(), "created_at": row["changed_at"], "edit": 1}
-    row |= {"range_hash": range_hash, "version": version}
     connection.execute(insert(tables.visit).values(row))
     return find(connection, row["id"])
 
 
-def change(
-    connection: Connection,
-    visit_json: str,
-    *,
-    range_hash: str,
-    version: str,
-    answer_json: str,
-    visit_id: str,
-    edit_seen: int,
-) -> SavedVisit:
-    """Store a visit over the one the editor saw, and over no other."""
-    row = _columns(visit_json, answer_json) | {"range_hash": range_hash, "version": version, "edit": edit_seen + 1}
+def change(connection: Connection, made: Made, *, over: tuple[str, int]) -> SavedVisit:
+    """Store a visit over the one, and the edit of it, that the editor saw, and over no other."""
+    visit_id, edit_seen = over
+    row = _columns(made) | {"edit": edit_seen + 1}
     seen = (_VISIT.id == visit_id) & (_VISIT.edit == edit_seen)
     done = connection.execute(update(tables.visit).where(seen).values(row))
     stored = find(connection, visit_id)

@@ -11,8 +11,9 @@ from advisor.counsel.musts import musts
 from advisor.counsel.phrases import mark
 from advisor.counsel.stock_items import IN_PLACE, Coating, Material, Tint
 from advisor.counsel.value import criteria
-from advisor.web.figure_rows import capital, short
+from advisor.web.figure_rows import short
 from advisor.web.language import Language
+from advisor.web.sentences import capital
 
 LAY = "lay:"  # begins the value of a button that lays a pair out; the rest names the fields of the new option
 MOST_LENGTH = 20_000  # of such a value; a coating given in place may hold a spectrum

@@ -11,16 +11,20 @@ from flask.testing import FlaskClient
 from jinja2 import StrictUndefined
 
 from advisor.resources import resource_dir
-from advisor.web import error_pages, policy
+from advisor.web import error_pages, number_fields, policy, ready
 from advisor.web.counter import counter
 from advisor.web.desk import EXTENSION, Desk, current_desk
 from advisor.web.figure_rows import unbroken
+from advisor.web.first_run import first_run, first_steps
+from advisor.web.language_switch import choices, language_switch, standing_at
 from advisor.web.paper import install_filters
 from advisor.web.paper_pages import paper_pages
+from advisor.web.pasted_line import pasted_line
 from advisor.web.pictures_page import pictures_page
 from advisor.web.range_page import range_page
 from advisor.web.recheck import rechecks
 from advisor.web.screen import screen
+from advisor.web.turn_round import turn_round
 from advisor.web.visits import visits
 
 # Some Windows registries serve these as text/plain, which nosniff then refuses.
@@ -66,6 +70,7 @@ def create_app(*, data_dir: Path, testing: bool = False) -> Flask:
     if testing:
         app.test_client_class = _OwnPageClient
     policy.apply(app)
+    app.after_request(ready.add_mark)
     app.extensions[EXTENSION] = Desk(data_dir)
     _prepare_templates(app)
     error_pages.register(app)
@@ -83,13 +88,26 @@ def _prepare_templates(app: Flask) -> None:
         _=lambda text: screen().gettext(text), ngettext=lambda one, many, count: screen().ngettext(one, many, count)
     )
     install_filters(app.jinja_env, screen)
+    number_fields.install(app.jinja_env)
     app.jinja_env.filters["unbroken"] = unbroken
-    app.context_processor(lambda: {"screen_language": screen().language, "screen_direction": screen().direction})
+    app.context_processor(_page_values)
+
+
+def _page_values() -> dict[str, Any]:
+    """Return what every page may ask for; first steps are looked up by the one page that shows them."""
+    return {
+        "screen_language": screen().language,
+        "screen_direction": screen().direction,
+        "screen_languages": choices(),
+        "screen_back": standing_at(),
+        "first_steps": first_steps,
+    }
 
 
 def _register_blueprints(app: Flask) -> None:
     """Register the blueprints, one for each noun."""
-    for noun in (counter, visits, paper_pages, pictures_page, rechecks, range_page):
+    nouns = (counter, pasted_line, visits, paper_pages, pictures_page, turn_round, rechecks, range_page, first_run)
+    for noun in (*nouns, language_switch):
         app.register_blueprint(noun)
 
 

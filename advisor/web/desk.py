@@ -8,7 +8,6 @@ from flask import Flask, current_app
 
 from advisor import __version__
 from advisor.records.store import Store
-from advisor.web.saved_forms import SavedForms
 
 EXTENSION = "twolight"
 
@@ -18,7 +17,6 @@ class Desk:
 
     def __init__(self, data_dir: Path) -> None:
         self.data_dir = data_dir
-        self.saved_forms = SavedForms()
         self._lock = threading.Lock()
         self._store: Store | None = None
 

@@ -1,4 +1,4 @@
-"""Whole pages for paper: sheet, order slip and bench slip, from a visit to HTML; no web application needed."""
+"""The slips for supplier and workshop, from a visit to HTML, and pages that stand alone; no application needed."""
 
 import base64
 import datetime as dt
@@ -10,79 +10,19 @@ from typing import Any
 from advisor.counsel.bench import HINTS, PLACE_TEXTS, SIDES, bench_of
 from advisor.counsel.caution_texts import CAUTION_TEXTS
 from advisor.counsel.cautions import cautions_for
-from advisor.counsel.compare import Computed, answer_of, compute, lens_light
+from advisor.counsel.compare import Computed, compute, lens_light
 from advisor.counsel.order import EYE_WORDS, NotReady, missing, order_of
 from advisor.counsel.phrases import Phrase, say
-from advisor.counsel.regions import region_of
-from advisor.counsel.sheet import SHEET_TEXTS, NothingChosen, Sheet, choose
-from advisor.counsel.sheet import wearer_sheet as sheet_content
+from advisor.counsel.sheet import NothingChosen, choose
 from advisor.counsel.stock import Range
 from advisor.counsel.visit import Declined, Visit
 from advisor.resources import resource_dir
 from advisor.web.labels import DECLINABLE, DECLINERS
-from advisor.web.language import SOURCE_LANGUAGE, Language, language, languages
+from advisor.web.language import Language
 from advisor.web.paper import page
 from advisor.web.screen import screen
 
-BAR_UNITS = 100  # length of a whole bar in drawing units
 RIM_WORDS = {"full": "full", "grooved": "grooved (nylon)", "drilled": "drilled (rimless)"}
-
-
-def sheet_language(visit: Visit, code: str | None) -> str:
-    """Return the language a sheet is printed in: the one asked for, else the wearer's own if there are texts in it."""
-    if code is not None:
-        return language(code).language
-    own = visit.wearer.language if visit.wearer else None
-    return own if own in languages() else SOURCE_LANGUAGE
-
-
-def wearer_sheet(
-    visit: Visit,
-    stock: Range,
-    *,
-    number: int | None = None,
-    code: str | None = None,
-    today: dt.date | None = None,
-    fonts: str = "print-fonts",
-) -> str:
-    """Return the wearer's sheet as HTML; ``number`` counts options from 1."""
-    chosen = language(sheet_language(visit, code))
-    computed = compute(visit, stock, today=today)
-    answer = answer_of(computed, translator=chosen)
-    index = choose(computed, number=number, answer=answer)
-    price = computed.laid[index].price
-    currency = stock.currency
-    content = sheet_content(
-        computed, answer, index=index, price=None if price is None else chosen.money(price, currency=currency)
-    )
-    return page(
-        "paper/sheet.html",
-        {
-            "sheet": content,
-            "shop": stock.shop,
-            "date": computed.case.date,
-            "fonts": fonts,
-            "say": lambda phrase: say(phrase, SHEET_TEXTS, chosen),
-            "bars": _bars(content, chosen),
-            "urgent_help": region_of(stock.shop.region).urgent_help,
-        },
-        code=chosen.language,
-    )
-
-
-def _bars(sheet: Sheet, chosen: Language) -> list[dict[str, Any]]:
-    """Return the bars of a sheet: lengths in drawing units on one scale, the longest filling three quarters."""
-    most = max((share for _, share in sheet.bars), default=0.0) or 1.0
-    return [
-        {
-            "label": label,
-            "text": chosen.percent(share),
-            "full": BAR_UNITS,
-            "full_mm": 50,
-            "length": round(0.75 * BAR_UNITS * share / most, 2),
-        }
-        for label, share in sheet.bars
-    ]
 
 
 def order_slip(
@@ -133,7 +73,8 @@ def bench_slip(
 
 def _declined(part: Declined, chosen: Language) -> str:
     """Return what was turned down, and by whom, in words where there are some."""
-    words = chosen.gettext(DECLINABLE.get(part.key, part.key))
+    known = DECLINABLE.get(part.key) or (CAUTION_TEXTS[part.key].rule if part.key in CAUTION_TEXTS else part.key)
+    words = chosen.gettext(known)
     return words if part.by is None else f"{words} ({chosen.gettext(DECLINERS.get(part.by, part.by))})"
 
 
@@ -195,18 +136,20 @@ def _cautions(computed: Computed, index: int, chosen: Language) -> list[str]:
 
 
 _LINK = re.compile(r'<link rel="stylesheet" href="/static/([^"]+)">')
+KINDS = {".ttf": "font/ttf", ".svg": "image/svg+xml"}
 _URL = re.compile(r'url\("\.\./([^"]+)"\)')
 
 
 def standing_alone(html: str) -> str:
-    """Return a page that needs no server: style sheets and fonts are put inside it."""
+    """Return a page that needs no server: style sheets, fonts and marks are put inside it."""
 
     def style(match: re.Match[str]) -> str:
         text = (resource_dir("static") / match.group(1)).read_text(encoding="utf-8")
-        return f"<style>{_URL.sub(font, text)}</style>"
+        return f"<style>{_URL.sub(inside, text)}</style>"
 
-    def font(match: re.Match[str]) -> str:
-        content = base64.b64encode((resource_dir("static") / match.group(1)).read_bytes()).decode()
-        return f'url("data:font/ttf;base64,{content}")'
+    def inside(match: re.Match[str]) -> str:
+        file = resource_dir("static") / match.group(1)
+        content = base64.b64encode(file.read_bytes()).decode()
+        return f'url("data:{KINDS[file.suffix]};base64,{content}")'
 
     return _LINK.sub(style, html)

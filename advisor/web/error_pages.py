@@ -14,6 +14,8 @@ from advisor.records.drafts import DraftChanged, DraftMissing
 from advisor.records.rechecks import RecheckMissing
 from advisor.records.trouble import StoreError
 from advisor.records.visits import VisitChanged, VisitMissing
+from advisor.web.screen import screen
+from advisor.web.sentences import sentence_of
 
 TEXTS: Mapping[int, tuple[str, str]] = {
     400: (mark("This request could not be read"), mark("Go back and try once more.")),
@@ -44,9 +46,9 @@ STATUSES: tuple[tuple[type[TwolightError], int], ...] = (
 )
 
 
-def _page(status: int, sentence: str | None = None, figures: Mapping[str, str] | None = None) -> Response:
+def _page(status: int, sentence: str | None = None) -> Response:
     title, text = TEXTS.get(status, TEXTS[500 if status >= 500 else 400])
-    page = render_template("error.html", title=title, sentence=sentence or text, figures=figures or {})
+    page = render_template("error.html", title=title, sentence=sentence or screen().gettext(text))
     return make_response(page, status)
 
 
@@ -62,7 +64,7 @@ def http_error(error: HTTPException) -> Response:
 def program_error(error: TwolightError) -> Response:
     """Answer an error of the program's own with its sentence."""
     status = next(status for kind, status in STATUSES if isinstance(error, kind))
-    return _page(status, getattr(error, "text", str(error)), getattr(error, "figures", None))
+    return _page(status, sentence_of(error, screen()))
 
 
 def unforeseen(_error: InternalServerError) -> Response:

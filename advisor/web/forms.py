@@ -16,6 +16,7 @@ from advisor.counsel.files import parse_json
 from advisor.counsel.musts import musts
 from advisor.counsel.prescription import written_prism
 from advisor.counsel.visit import DailyLife, Visit, check_visit
+from advisor.web.number_fields import number_field, number_of
 
 Fields = dict[str, str]
 Content = dict[str, Any]
@@ -24,6 +25,7 @@ MOST_OPTIONS = 4
 EYES = ("right", "left")
 KEPT = "kept"
 COUNT = "option_count"
+LINE = "line"  # a written prescription to fill the form from; it is kept as typed, and no visit holds it
 
 _POWERS = ("sphere", "cylinder", "axis", "add")
 _PRISM_PARTS = 2
@@ -79,9 +81,10 @@ def names_of(fields: Mapping[str, str]) -> list[str]:
 
 def fields_from_form(form: MultiDict[str, str]) -> Fields:
     """Return what was typed, without names that the form does not have."""
-    fields = {COUNT: str(option_count(form)), KEPT: form.get(KEPT, "")}
+    fields = {COUNT: str(option_count(form)), KEPT: form.get(KEPT, ""), LINE: form.get(LINE, "")}
     for name in names_of(fields):
-        fields[name] = " ".join(form.getlist(name)) if name in WORDS else form.get(name, "")
+        text = " ".join(form.getlist(name)) if name in WORDS else form.get(name, "")
+        fields[name] = text.replace("\r\n", "\n")  # as browsers send the lines of a paragraph
     return fields
 
 
@@ -212,13 +215,15 @@ def _put(content: Content, place: Sequence[str], value: Any) -> None:
 
 
 def _value(name: str, text: str) -> Any:
-    """Return what a field's text stands for; numbers stay text, which the visit's own model reads."""
+    """Return what a field's text stands for; numbers stay text, which the visit's own model reads in full."""
     if name in TRUTHS:
         return True
     if name in WORDS:
         return text.split()
     if name in NUMBERS:
         return text.replace(";", " ").split()
+    if number_field(name) is not None:
+        return number_of(name, text)
     return _named_or_object(name, text)
 
 
@@ -338,40 +343,3 @@ def by_field(faults: Iterable[Fault], names: Sequence[str]) -> dict[str, list[Fa
     for one in faults:
         found.setdefault(field_of(one.field, names), []).append(one)
     return found
-
-
-# Changing the row of options.
-
-
-def with_option_added(fields: Mapping[str, str]) -> Fields:
-    """Return the form with one more option, a copy of the last, up to the most there may be."""
-    last = option_count(fields) - 1
-    if last + 1 >= MOST_OPTIONS:
-        return dict(fields)
-    copied = {f"options.{last + 1}.{name}": fields.get(f"options.{last}.{name}", "") for name in OPTION}
-    return {**fields, **copied, COUNT: str(last + 2)}
-
-
-def with_option_laid_out(fields: Mapping[str, str], parts: Mapping[str, str]) -> Fields:
-    """Return the form with one more option made of these fields, up to the most there may be."""
-    place = option_count(fields)
-    if place >= MOST_OPTIONS or not parts or not parts.keys() <= set(OPTION):
-        return dict(fields)
-    laid = {f"options.{place}.{name}": parts.get(name, "") for name in OPTION}
-    return {**fields, **laid, COUNT: str(place + 1)}
-
-
-def with_option_removed(fields: Mapping[str, str], place: int) -> Fields:
-    """Return the form without one option; the last one stays, and what pointed behind it moves up."""
-    count = option_count(fields)
-    if count == 1 or not 0 <= place < count:
-        return dict(fields)
-    changed = {name: text for name, text in fields.items() if not name.startswith("options.")}
-    left = [k for k in range(count) if k != place]
-    for new, old in enumerate(left):
-        changed |= {f"options.{new}.{name}": fields.get(f"options.{old}.{name}", "") for name in OPTION}
-    for name in ("baseline", "ordered"):
-        if changed.get(name, "").isdigit():
-            old = int(changed[name])
-            changed[name] = str(left.index(old)) if old in left else "0" if name == "baseline" else ""
-    return {**changed, COUNT: str(count - 1)}

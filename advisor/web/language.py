@@ -5,18 +5,23 @@ differ from the screen's, so a language is an object that is handed on, never a 
 """
 
 import datetime
-from functools import cache
+from functools import cache, cached_property
 from pathlib import Path
 
+from advisor.counsel.phrases import mark
 from advisor.errors import TwolightError
 
 TRANSLATIONS = Path(__file__).resolve().parent.parent / "translations"
 SOURCE_LANGUAGE = "en"
 MINUS = "\N{MINUS SIGN}"
+DIRECTION_MARKS = dict.fromkeys(map(ord, "\N{LEFT-TO-RIGHT MARK}\N{RIGHT-TO-LEFT MARK}"))  # none needed once apart
+ISOLATE, END_OF_ISOLATE = "\N{LEFT-TO-RIGHT ISOLATE}", "\N{POP DIRECTIONAL ISOLATE}"
 
 
 class UnknownLanguage(TwolightError):
     """The program has no texts in the language asked for."""
+
+    text = mark("There are no texts in “%(code)s”; known languages are %(known)s.")
 
 
 def languages() -> tuple[str, ...]:
@@ -39,7 +44,7 @@ class Language:
             NullTranslations() if code == SOURCE_LANGUAGE else Translations.load(str(TRANSLATIONS), [code], "messages")
         )
 
-    @property
+    @cached_property
     def direction(self) -> str:
         """``ltr`` or ``rtl``."""
         return str(self.locale.text_direction)
@@ -57,7 +62,11 @@ class Language:
         rounded = round(float(value), digits)
         sign = MINUS if rounded < 0 else "+" if signed and rounded > 0 else ""
         text = f"{abs(rounded):,.{digits}f}" if self.language == SOURCE_LANGUAGE else self._local(abs(rounded), digits)
-        return sign + text
+        return self.apart(sign + text)
+
+    def apart(self, figure: str) -> str:
+        """Return a figure as it is, or, among words that run to the left, kept apart with its sign before it."""
+        return figure if self.direction == "ltr" else f"{ISOLATE}{figure}{END_OF_ISOLATE}"
 
     def _local(self, value: float, digits: int) -> str:
         from babel.numbers import format_decimal
@@ -69,13 +78,15 @@ class Language:
         """Return a fraction as a percentage."""
         return f"{self.number(100 * fraction, digits=digits)} %"
 
-    def money(self, amount: float | None, *, currency: str) -> str:
-        """Return a price, or a dash where none is known."""
+    def money(self, amount: float | None, *, currency: str, signed: bool = False) -> str:
+        """Return a price, or a dash where none is known; a signed one is a difference and shows plus too."""
         if amount is None:
             return "–"
         from babel.numbers import format_currency
 
-        return format_currency(amount, currency, locale=self.locale)
+        sign = "" if not signed or not amount else "+" if amount > 0 else MINUS
+        written = format_currency(abs(amount) if signed else amount, currency, locale=self.locale)
+        return self.apart(sign + written.translate(DIRECTION_MARKS))
 
     def date(self, day: datetime.date) -> str:
         """Return a date with the month as a word, which no reader can take for the day."""
@@ -94,5 +105,5 @@ def language(code: str) -> Language:
         If there is no catalogue for it.
     """
     if code not in languages():
-        raise UnknownLanguage(f"There are no texts in “{code}”; known languages are {', '.join(languages())}.")
+        raise UnknownLanguage(code=code, known=", ".join(languages()))
     return Language(code)

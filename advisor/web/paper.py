@@ -5,7 +5,10 @@ from functools import cache
 from typing import Any
 
 from jinja2 import Environment, FileSystemLoader, StrictUndefined
+from markupsafe import Markup, escape
 
+from advisor.counsel.names import called
+from advisor.counsel.regions import region_of
 from advisor.resources import resource_dir
 from advisor.web.language import Language, language
 
@@ -23,7 +26,36 @@ def environment(code: str) -> Environment:
         extensions=["jinja2.ext.i18n"],
     )
     install(made, chosen)
+    for name in ("number", "percent", "money"):
+        made.filters[name] = _as_figure(made.filters[name])
+    made.filters["figure"] = figure
+    made.globals["paper_of"] = lambda shop: region_of(shop.region).paper
     return made
+
+
+def figure(text: str) -> Markup:
+    """Return a figure kept apart from the words about it: it runs left to right, its sign before it, in any script."""
+    return Markup('<bdi dir="ltr">{}</bdi>').format(text)
+
+
+def _as_figure(written: Callable[..., str]) -> Callable[..., Markup]:
+    return lambda *given, **named: figure(written(*given, **named))
+
+
+class OnPaper:
+    """A language whose texts are markup: what was typed is escaped, and every figure is kept apart."""
+
+    def __init__(self, chosen: Language) -> None:
+        self.language = chosen.language
+        self._chosen = chosen
+
+    def gettext(self, message: str, /) -> Markup:
+        """Return the text in this language; figures put into it by ``%`` stay markup, anything else is escaped."""
+        return escape(self._chosen.gettext(message))
+
+    def number(self, value: float, *, digits: int, signed: bool = False) -> Markup:
+        """Return a number as this language writes it, kept apart."""
+        return figure(self._chosen.number(value, digits=digits, signed=signed))
 
 
 def install(made: Environment, chosen: Language) -> None:
@@ -40,6 +72,7 @@ def install_filters(made: Environment, speaker: Callable[[], Language]) -> None:
     )
     made.filters["percent"] = lambda value, digits=1: "–" if value is None else speaker().percent(value, digits=digits)
     made.filters["money"] = lambda value, currency: speaker().money(value, currency=currency)
+    made.filters["called"] = lambda item: called(item, speaker())
     made.filters["day"] = lambda value: "–" if value is None else speaker().date(value)
 
 

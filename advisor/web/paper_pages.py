@@ -1,4 +1,4 @@
-"""Paper of a saved visit: the wearer's sheet, the order slip and the bench slip, as a page to print and as a PDF."""
+"""Paper of a saved visit: sheet, care, order slip and bench slip, each as a page to print and as a PDF."""
 
 from collections.abc import Callable, Mapping
 
@@ -8,14 +8,26 @@ from advisor.counsel.order import NotReady
 from advisor.counsel.stock import Range
 from advisor.counsel.visit import Visit, parse_visit
 from advisor.web.desk import current_desk
-from advisor.web.documents import bench_slip, order_slip, wearer_sheet
+from advisor.web.documents import bench_slip, order_slip
 from advisor.web.pdf import PdfFailed, PdfUnavailable, write_pdf
-from advisor.web.stock_loader import shelf_of
+from advisor.web.screen import screen
+from advisor.web.sentences import sentence_of
+from advisor.web.sheet_page import Print, care_sheet, wearer_sheet
+from advisor.web.stock_loader import current_shelf, shelf_of
 
 paper_pages = Blueprint("paper_pages", __name__)
 
-PAPERS: Mapping[str, Callable[..., str]] = {"sheet": wearer_sheet, "order": order_slip, "bench": bench_slip}
+Make = Callable[[Visit, Range, str], str]  # the last is the kind of fonts
+PAPERS: Mapping[str, Make] = {
+    "sheet": lambda visit, stock, fonts: wearer_sheet(
+        visit, stock, number=_option(visit), print_size=_print(), fonts=fonts
+    ),
+    "care": lambda visit, stock, fonts: care_sheet(visit, stock, print_size=_print(), fonts=fonts),
+    "order": lambda visit, stock, fonts: order_slip(visit, stock, number=_option(visit), fonts=fonts),
+    "bench": lambda visit, stock, fonts: bench_slip(visit, stock, number=_option(visit), fonts=fonts),
+}
 NAMES = ", ".join(PAPERS)
+PRINTS: Mapping[str, Print] = {"standard": "standard", "large": "large"}
 FONTS = {"html": "fonts", "pdf": "print-fonts"}  # WOFF2 for the screen, TrueType for the layout engine
 
 
@@ -33,9 +45,14 @@ def _option(visit: Visit) -> int | None:
     return number if 1 <= number <= len(visit.options or ()) else None
 
 
+def _print() -> Print | None:
+    """Return the print asked for; anything else is the wearer's own."""
+    return PRINTS.get(request.args.get("print", ""))
+
+
 def _html(paper: str, visit_id: str, kind: str) -> str:
     visit, stock = _visit(visit_id)
-    return PAPERS[paper](visit, stock, number=_option(visit), fonts=FONTS[kind])
+    return PAPERS[paper](visit, stock, FONTS[kind])
 
 
 @paper_pages.get(f"/visits/<visit_id>/<any({NAMES}):paper>")
@@ -47,15 +64,40 @@ def preview(visit_id: str, paper: str) -> str:
 @paper_pages.get(f"/visits/<visit_id>/<any({NAMES}):paper>.pdf")
 def pdf(visit_id: str, paper: str) -> Response:
     """Answer with the PDF; where none can be made, with a page that says so and leads to the browser's own print."""
-    html = _html(paper, visit_id, "pdf")
+    asked = request.args.get
+    page = url_for("paper_pages.preview", visit_id=visit_id, paper=paper, option=asked("option"), print=asked("print"))
+    return _answer(_html(paper, visit_id, "pdf"), name=paper, preview=page)
+
+
+@paper_pages.get("/care")
+def care_preview() -> str:
+    """Show the page about care, for somebody without a visit."""
+    return _care("html")
+
+
+@paper_pages.get("/care.pdf")
+def care_pdf() -> Response:
+    """Answer with the page about care as PDF."""
+    page = url_for("paper_pages.care_preview", print=request.args.get("print"))
+    return _answer(_care("pdf"), name="care", preview=page)
+
+
+def _care(kind: str) -> str:
+    stock = current_shelf(current_desk().store).stock
+    return care_sheet(None, stock, code=screen().language, print_size=_print(), fonts=FONTS[kind])
+
+
+def _answer(html: str, *, name: str, preview: str) -> Response:
+    """Answer with a page as PDF, or with a page that says why there is none and leads to the browser's own print."""
     try:
         content = write_pdf(html)
     except (PdfUnavailable, PdfFailed) as error:
-        page = url_for("paper_pages.preview", visit_id=visit_id, paper=paper, option=request.args.get("option"))
-        return make_response(render_template("no_pdf.html", sentence=str(error), preview=page), 503)
+        return make_response(
+            render_template("no_pdf.html", sentence=sentence_of(error, screen()), preview=preview), 503
+        )
     answer = make_response(content)
     answer.headers["Content-Type"] = "application/pdf"
-    answer.headers["Content-Disposition"] = f'inline; filename="twolight-{paper}.pdf"'
+    answer.headers["Content-Disposition"] = f'inline; filename="twolight-{name}.pdf"'
     return answer
 
 

@@ -14,6 +14,7 @@ from threading import Lock
 from typing import Any
 from urllib.parse import unquote, urlsplit
 
+from advisor.counsel.phrases import mark
 from advisor.errors import TwolightError
 from advisor.resources import resource_dir
 
@@ -24,9 +25,22 @@ _RENDERING = Lock()
 class PdfUnavailable(TwolightError):
     """The libraries that lay out a PDF are not on this machine."""
 
+    text = mark(
+        "No PDF can be made here because the Pango libraries are missing (see the README); "
+        "write the page as .html and print it from the browser."
+    )
+
 
 class PdfFailed(TwolightError):
     """A page could not be laid out."""
+
+    text = mark("The page could not be laid out; print it from the browser instead.")
+
+
+class FileOutside(PdfFailed):
+    """A page asked for a file that is not one of the program's."""
+
+    text = mark("The page asked for a file outside the program and was not written.")
 
 
 @cache
@@ -36,10 +50,7 @@ def _weasyprint() -> Any:
         with redirect_stdout(StringIO()), redirect_stderr(StringIO()):
             import weasyprint
     except OSError as error:
-        raise PdfUnavailable(
-            "No PDF can be made here because the Pango libraries are missing (see the README); "
-            "write the page as .html and print it from the browser."
-        ) from error
+        raise PdfUnavailable from error
     return weasyprint
 
 
@@ -100,7 +111,7 @@ def write_pdf(html: str) -> bytes:
             )
         except Exception as error:  # whatever the layout engine raises, the visit must survive it
             print(f"twolight: the page layout failed: {type(error).__name__}", file=sys.stderr)
-            raise PdfFailed("The page could not be laid out; print it from the browser instead.") from error
+            raise PdfFailed from error
     if fetcher.refused:
-        raise PdfFailed("The page asked for a file outside the program and was not written.")
+        raise FileOutside
     return target.getvalue()

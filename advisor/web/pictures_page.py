@@ -18,7 +18,7 @@ from advisor.counsel.pictures import HEIGHT, WIDTH, Name, draw, has_film, names_
 from advisor.counsel.section_drawing import outlines
 from advisor.counsel.spectra_plot import spectra_plot
 from advisor.counsel.visit import parse_visit
-from advisor.web import counter_page
+from advisor.web import drafting
 from advisor.web.desk import current_desk
 from advisor.web.forms import visit_from_fields
 from advisor.web.language import Language
@@ -94,7 +94,7 @@ def _visit(visit_id: str) -> tuple[Computed, int | None]:
 
 def _draft(draft_id: str) -> tuple[Computed, int | None]:
     store = current_desk().store
-    visit = visit_from_fields(counter_page.of_draft(store.get_draft(draft_id)).fields)
+    visit = visit_from_fields(drafting.of_draft(store.get_draft(draft_id)).fields)
     return compute(visit, current_shelf(store).stock), visit.ordered
 
 

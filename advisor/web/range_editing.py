@@ -20,6 +20,7 @@ from advisor.counsel.stock_items import Coating, Design, Material, Offer, Scene,
 from advisor.counsel.toml_writing import toml_text
 from advisor.errors import TwolightError
 from advisor.records.store import Store
+from advisor.web.range_words import UNITS
 from advisor.web.stock_loader import current_shelf
 
 Content = dict[str, Any]
@@ -32,15 +33,6 @@ SECTIONS: Mapping[str, type[BaseModel]] = {
     "offer": Offer,
     "scene": Scene,
 }
-TITLES: Mapping[str, str] = {
-    "material": mark("Materials"),
-    "coating": mark("Coatings"),
-    "tint": mark("Tints"),
-    "design": mark("Designs"),
-    "offer": mark("Offers"),
-    "scene": mark("Scenes"),
-    "shop": mark("The shop"),
-}
 LISTED: Mapping[str, tuple[str, ...]] = {
     "material": ("label", "n_d", "n_e", "abbe", "density_g_cm3", "price"),
     "coating": ("label", "hard_coat", "care", "price"),
@@ -49,28 +41,6 @@ LISTED: Mapping[str, tuple[str, ...]] = {
     "offer": ("design", "material", "coating", "tint", "faces", "price", "days"),
     "scene": ("label", "kind", "where", "background_cd_m2"),
 }
-UNITS: Mapping[str, str] = {
-    "_mm": "mm", "_nm": "nm", "_d": "D", "_g_cm3": "g/cm³", "_cd_m2": "cd/m²", "_cd": "cd", "_deg": "°", "_m": "m",
-    "_s": "s", "_months": mark("months"), "diameters_mm": "mm", "range_d": "D", "powers_d": "D",
-}  # fmt: skip
-
-
-NAMES: Mapping[str, str] = {
-    "n_d": mark("index, d line"),
-    "n_e": mark("index, e line"),
-    "abbe": mark("Abbe number"),
-    "uv_cut_nm": mark("UV cut"),
-    "kind": mark("kind"),
-    "price": mark("price of the pair"),
-}
-
-
-def words(name: str) -> str:
-    """Return what a field is called: its name without the unit, which stands beside it."""
-    if name in NAMES:
-        return NAMES[name]
-    unit = max((end for end in UNITS if end.startswith("_") and name.endswith(end)), key=len, default="")
-    return name.removesuffix(unit).replace("_", " ")
 
 
 class RangeChanged(TwolightError):
@@ -78,17 +48,11 @@ class RangeChanged(TwolightError):
 
     text = mark("The range was changed after you opened it; nothing was overwritten. Open it again.")
 
-    def __init__(self) -> None:
-        super().__init__(self.text)
-
 
 class NoSuchItem(TwolightError):
     """The range has no item at this place."""
 
     text = mark("The range has no such item; it may have been removed.")
-
-    def __init__(self) -> None:
-        super().__init__(self.text)
 
 
 @dataclass(frozen=True)

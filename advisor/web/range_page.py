@@ -10,8 +10,10 @@ from advisor.counsel.faults import Fault, Faults
 from advisor.counsel.phrases import mark
 from advisor.counsel.stock import Range
 from advisor.web import range_editing as editing
-from advisor.web.counter_page import sentence
+from advisor.web import range_words as words
 from advisor.web.desk import current_desk
+from advisor.web.screen import screen
+from advisor.web.sentences import fault_sentence
 from advisor.web.stock_loader import current_shelf
 
 range_page = Blueprint("range_page", __name__, url_prefix="/range")
@@ -22,7 +24,7 @@ NOT_REMOVED = mark("Nothing was changed: something else names this item.")
 
 def _overview(faults: list[str] | None = None, notice: str = "", status: int = 200) -> Response:
     shelf = current_shelf(current_desk().store)
-    values = {"shelf": shelf, "currency": shelf.stock.currency, "editing": editing}
+    values = {"shelf": shelf, "currency": shelf.stock.currency, "editing": editing, "words": words}
     return make_response(render_template("range.html", faults=faults or [], notice=notice, **values), status)
 
 
@@ -50,7 +52,7 @@ def import_() -> AnyResponse:
         stock = editing.from_file(sent.read() if sent else b"", name=name)
         editing.keep(current_desk().store, stock, seen=request.form.get("seen", ""))
     except Faults as error:
-        return _overview(error.lines(), REFUSED, 422)
+        return _overview(error.lines(screen()), REFUSED, 422)
     return redirect(url_for("range_page.overview"), 303)
 
 
@@ -64,12 +66,12 @@ def _form(
     values = {
         "section": section,
         "place": place,
-        "title": editing.TITLES[section],
+        "title": words.TITLES[section],
         "boxes": boxes,
-        "words_of": editing.words,
+        "words": words,
         "shown": shown,
-        "faults": {name: [sentence(one) for one in some] for name, some in found.items()},
-        "rest": Faults(rest).lines() if rest else [],
+        "faults": {name: [fault_sentence(one, screen()) for one in some] for name, some in found.items()},
+        "rest": Faults(rest).lines(screen()) if rest else [],
         "seen": request.form.get("seen") or shelf.hash,
         "is_new": section != "shop" and place >= len(editing.items(shelf.stock, section)),
     }
@@ -132,7 +134,7 @@ def remove(section: str, place: int) -> AnyResponse:
         stock = editing.without_item(current_shelf(store).stock, section, place)
         editing.keep(store, stock, seen=request.form.get("seen", ""))
     except Faults as error:
-        return _overview(error.lines(), NOT_REMOVED, 409)
+        return _overview(error.lines(screen()), NOT_REMOVED, 409)
     return redirect(url_for("range_page.overview", _anchor=section), 303)
 
 

@@ -9,6 +9,7 @@ from werkzeug.wrappers import Response as AnyResponse
 
 from advisor.counsel.choices import Option
 from advisor.counsel.faults import Faults
+from advisor.counsel.names import coating_name, material_name
 from advisor.counsel.phrases import mark
 from advisor.counsel.recheck_answer import OUTCOMES_TODAY, RecheckRecord
 from advisor.counsel.recheck_shown import EYES as EYE_WORDS
@@ -21,9 +22,10 @@ from advisor.records.visits import VisitLine, VisitMissing
 from advisor.web import labels, recheck_text
 from advisor.web.desk import current_desk
 from advisor.web.pdf import PdfFailed, PdfUnavailable, write_pdf
-from advisor.web.recheck_form import TOKEN, Asked, NotToday, ask, fields_of, record_of, sentence_of
+from advisor.web.recheck_form import TOKEN, Asked, NotToday, ask, fields_of, record_of
 from advisor.web.recheck_paper import maker_slip
 from advisor.web.screen import screen
+from advisor.web.sentences import fault_sentence, sentence_of
 from advisor.web.stock_loader import shelf_of
 
 rechecks = Blueprint("rechecks", __name__)
@@ -53,7 +55,7 @@ def work_out(visit_id: str) -> AnyResponse:
     try:
         faults = _recorded(visit_id, asked)
     except RecheckChanged as error:
-        sentences = [screen().gettext(text) for text in (error.text, RECORD_AGAIN)]
+        sentences = [sentence_of(error, screen()), screen().gettext(RECORD_AGAIN)]
         again = replace(asked, faults={"record": sentences})
         return make_response(_page(visit_id, again, token=_new_token()), 409)
     if faults:
@@ -68,11 +70,11 @@ def _recorded(visit_id: str, asked: Asked) -> dict[str, list[str]]:
         _record(visit_id, record_of(asked))
     except Faults as error:
         for fault in error.faults:
-            faults.setdefault(fault.field, []).append(sentence_of(fault))
+            faults.setdefault(fault.field, []).append(fault_sentence(fault, screen()))
     except NotToday as error:
-        faults["outcome"] = [screen().gettext(error.text)]
+        faults["outcome"] = [sentence_of(error, screen())]
     except VisitMissing as error:  # that of the new order; the form's own was read before
-        faults["new_visit"] = [screen().gettext(error.text)]
+        faults["new_visit"] = [sentence_of(error, screen())]
     return faults
 
 
@@ -135,11 +137,9 @@ def _option_words(visit: Visit, stock: Range) -> dict[str, str]:
 
 
 def _words(option: Option, stock: Range) -> str:
-    parts = [
-        stock.material_of(option.material).label if option.material is not None else None,
-        *(coating.label for coating in stock.faces_of(option.coating or "bare")),
-    ]
-    return ", ".join(dict.fromkeys(part for part in parts if part))
+    material = [] if option.material is None else [material_name(stock.material_of(option.material), screen())]
+    coatings = [coating_name(coating, screen()) for coating in stock.faces_of(option.coating or "bare")]
+    return ", ".join(dict.fromkeys((*material, *coatings)))
 
 
 def _orders(visit_id: str, visit: Visit) -> list[VisitLine]:
@@ -178,7 +178,8 @@ def slip_pdf(visit_id: str, recheck_id: str) -> Response:
         content = write_pdf(_slip(visit_id, recheck_id, fonts="print-fonts"))
     except (PdfUnavailable, PdfFailed) as error:
         preview = url_for("rechecks.slip", visit_id=visit_id, recheck_id=recheck_id)
-        return make_response(render_template("no_pdf.html", sentence=str(error), preview=preview), 503)
+        sentence = sentence_of(error, screen())
+        return make_response(render_template("no_pdf.html", sentence=sentence, preview=preview), 503)
     answer = make_response(content)
     answer.headers["Content-Type"] = "application/pdf"
     answer.headers["Content-Disposition"] = 'inline; filename="twolight-recheck.pdf"'

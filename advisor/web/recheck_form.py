@@ -19,6 +19,7 @@ from advisor.counsel.stock import Range
 from advisor.counsel.visit import Visit
 from advisor.errors import TwolightError
 from advisor.web.screen import screen
+from advisor.web.sentences import fault_sentence
 
 EYES = ("right", "left")
 PLAIN = ("sphere", "cylinder", "axis", "add", "pd_mm", "height_mm", "centre_mm")
@@ -35,9 +36,6 @@ class NotToday(TwolightError):
     """An outcome that sells or mends something was to be recorded of a return that is for today."""
 
     text = mark("This is for an eye doctor today: record that the wearer was referred, or that nothing came of it.")
-
-    def __init__(self) -> None:
-        super().__init__(self.text)
 
 
 @dataclass(frozen=True)
@@ -61,7 +59,7 @@ def answers_of(fields: Mapping[str, str]) -> dict[str, str]:
     """
     given = {key: fields.get(f"answer.{key}", "") for key in SIGNS | TESTS}
     if fields.get("none_of_these"):
-        heard = hear(fields.get("says", "")).signs
+        heard = hear(fields.get("says", ""), screen()).signs
         given |= {key: "no" for key in SIGNS if not given[key] and key not in heard}
     return {key: answer for key, answer in given.items() if answer in ("yes", "no")}
 
@@ -107,13 +105,8 @@ def _beside(faults: tuple[Fault, ...]) -> dict[str, list[str]]:
     found: dict[str, list[str]] = {}
     for one in faults:
         place = "measured." + re.sub(r"\[(\d+)\]", r".\1", one.field)
-        found.setdefault(place if place in MEASURED else "measured", []).append(sentence_of(one))
+        found.setdefault(place if place in MEASURED else "measured", []).append(fault_sentence(one, screen()))
     return found
-
-
-def sentence_of(one: Fault) -> str:
-    """Return what is wrong, without the field it stands beside."""
-    return Fault("", "", one.phrase).line(screen().gettext)
 
 
 def record_of(asked: Asked) -> RecheckRecord:

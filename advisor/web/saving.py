@@ -1,18 +1,20 @@
 """Saving a form as a visit: once, however often it is sent, and never over a change that its editor has not seen."""
 
 import datetime as dt
-from dataclasses import replace
+import hashlib
 
 from advisor import __version__
 from advisor.counsel.compare import compare
 from advisor.counsel.visit import Visit, visit_to_json
+from advisor.records.drafts import DraftMissing
+from advisor.records.saved_forms import SentForm
 from advisor.records.store import Store
-from advisor.records.visits import SavedVisit, VisitMissing
-from advisor.web.counter_page import Editing
+from advisor.records.visits import SavedVisit
+from advisor.web.drafting import Editing, of_draft
 from advisor.web.forms import visit_from_fields
-from advisor.web.saved_forms import SavedForms
 from advisor.web.screen import screen
 from advisor.web.stock_loader import Shelf
+from advisor.web.undoing import difference
 
 
 def dated(visit: Visit) -> Visit:
@@ -20,57 +22,44 @@ def dated(visit: Visit) -> Visit:
     return visit if visit.date else visit.model_copy(update={"date": dt.date.today()})
 
 
-def save_form(store: Store, forms: SavedForms, editing: Editing, shelf: Shelf) -> SavedVisit:
+def save_form(store: Store, editing: Editing, shelf: Shelf) -> SavedVisit:
     """Save a form as a visit and drop its draft.
 
     Raises
     ------
     Faults
         If the form cannot be read as a visit; nothing is saved.
-    VisitChanged
-        If the visit was saved by somebody else since; nothing is overwritten.
+    VisitChanged, VisitMissing
+        If the visit was saved or erased by somebody else since; nothing is overwritten.
+    DraftChanged
+        If another window has changed the form since; nothing is saved.
     """
     visit = dated(visit_from_fields(editing.fields))
     answer = compare(visit, shelf.stock, translator=screen())
-    with forms.lock:
-        answer_json = answer.model_dump_json(exclude_unset=True)
-        saved = _save(store, _seen(forms, editing), visit_to_json(visit), answer_json, shelf)
-        forms.remember(editing.token, saved)
-    if editing.draft_id is not None:
-        store.delete_draft(editing.draft_id)
-    return saved
-
-
-def _seen(forms: SavedForms, editing: Editing) -> tuple[str, int] | None:
-    """Return the visit a form is saved over and the edit of it that the form began from; None for a new one."""
-    if editing.visit_id is not None and editing.visit_edit is not None:
-        return editing.visit_id, editing.visit_edit
-    return forms.find(editing.token)
-
-
-def _save(store: Store, over: tuple[str, int] | None, visit_json: str, answer_json: str, shelf: Shelf) -> SavedVisit:
-    visit_id, edit_seen = over or (None, None)
-    if visit_id is not None and (same := _already(store, visit_id, visit_json, shelf)) is not None:
-        return same
+    over = editing.visit_id is not None and editing.visit_edit is not None
     return store.save_visit(
-        visit_json,
+        visit_to_json(visit),
         range_toml=shelf.toml,
         version=__version__,
-        answer_json=answer_json,
-        visit_id=visit_id,
-        edit_seen=edit_seen,
+        answer_json=answer.model_dump_json(exclude_unset=True),
+        visit_id=editing.visit_id if over else None,
+        edit_seen=editing.visit_edit if over else None,
+        form=SentForm(editing.token, editing.draft_id, _edit_seen(store, editing)),
     )
 
 
-def _already(store: Store, visit_id: str, visit_json: str, shelf: Shelf) -> SavedVisit | None:
-    """Return the stored visit if it holds this very content already: the form was sent twice."""
-    try:
-        stored = store.get_visit(visit_id)
-    except VisitMissing:
+def _edit_seen(store: Store, editing: Editing) -> int | None:
+    """Return the edit of the draft that the form has seen; a draft that says the same has been seen, too."""
+    if editing.draft_id is None:
         return None
-    return stored if (stored.visit_json, stored.range_hash) == (visit_json, shelf.hash) else None
+    try:
+        kept = of_draft(store.get_draft(editing.draft_id))
+    except DraftMissing:
+        return editing.draft_edit
+    return editing.draft_edit if difference(kept.fields, editing.fields) else kept.draft_edit
 
 
 def as_new(editing: Editing) -> Editing:
-    """Return the form cut loose from the visit it began from."""
-    return replace(Editing(editing.fields), draft_id=editing.draft_id, draft_edit=editing.draft_edit)
+    """Return the form cut loose from the visit it began from; sent twice, it is the same new form both times."""
+    token = hashlib.sha256(f"{editing.token} as new".encode()).hexdigest()[:32]
+    return Editing(editing.fields, token, editing.draft_id, editing.draft_edit)

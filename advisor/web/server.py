@@ -14,7 +14,6 @@ from typing import Any
 from cheroot import wsgi
 from flask import Flask
 
-from advisor.counsel.phrases import mark
 from advisor.records.trouble import StoreError
 from advisor.web.desk import desk_of
 
@@ -24,10 +23,11 @@ PORTS_TRIED = 20
 PROBE_S = 2.0
 SHUTDOWN_S = 15  # how long an answer in the making may take once we are told to stop
 
-SERVING = mark("Twolight is at %(address)s – press Ctrl-C to stop.")
-RUNNING = mark("Twolight is already running; opening %(address)s.")
-TAKEN = mark("Another program uses port %(port)d; trying the next.")
-NO_PORT = mark("No free port from %(first)d to %(last)d; choose another with --port.")
+# Said in the terminal, which speaks English as the command line does.
+SERVING = "Twolight is at %(address)s – press Ctrl-C to stop."
+RUNNING = "Twolight is already running; opening %(address)s."
+TAKEN = "Another program uses port %(port)d; trying the next."
+NO_PORT = "No free port from %(first)d to %(last)d; choose another with --port."
 
 
 class Answer(Enum):

@@ -3,10 +3,11 @@
 import csv
 import io
 import unicodedata
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Iterator, Sequence
 
-from advisor.counsel.comparison import Advice, AdvisedOption, Caution, Comparison, EyeFigures, OptionFigures
-from advisor.counsel.layout import ROWS, rows_present, two_eyes
+from advisor.counsel.comparison import Advice, AdvisedOption, Caution, Comparison
+from advisor.counsel.layout import ROWS, pairs_of, rows_present, two_eyes
+from advisor.counsel.lens_figures import LensPair
 from advisor.counsel.phrases import mark
 from advisor.counsel.second_image_words import beside, lead
 from advisor.web.figure_rows import unbroken
@@ -14,6 +15,7 @@ from advisor.web.language import Language
 
 WIDTH = 26
 SECOND_IMAGE = mark("second image")
+WORN_NOW = mark("Worn now")
 CSV_HEAD = ["file", "reference", "option", "eye", "row", "value"]
 
 
@@ -42,10 +44,14 @@ def _wrapped(text: str, width: int) -> list[str]:
 
 
 def text_table(comparison: Comparison, *, title: str, currency: str, language: Language) -> str:
-    """Return the comparison as text: one column an option, one row a figure, then warnings and cautions."""
+    """Return the comparison as text: one column a pair, one row a figure, then warnings and cautions.
+
+    The pair worn now has the last column, without a price.
+    """
     _ = language.gettext
-    options = comparison.options
+    options, worn, pairs = comparison.options, comparison.worn_now, pairs_of(comparison)
     heads = [_wrapped(f"{option.index + 1}  {option.label}", WIDTH) for option in options]
+    heads += [] if worn is None else [_wrapped(f"{_(WORN_NOW)}: {worn.label}", WIDTH)]
     rows = rows_present(comparison)
     labels = [_(row.label) for row in rows] + [_("price of the pair"), _(SECOND_IMAGE)]
     first = max(shown_width(label) for label in labels) + 2
@@ -57,10 +63,11 @@ def text_table(comparison: Comparison, *, title: str, currency: str, language: L
     lines = [title, "=" * shown_width(title)]
     for k in range(max(len(head) for head in heads)):
         lines.append(line("", [head[k] if k < len(head) else "" for head in heads]))
-    lines.append("-" * (first + (WIDTH + 2) * len(options) - 2))
-    lines.append(line(_("price of the pair"), [language.money(option.price, currency=currency) for option in options]))
-    lines += [line(_(row.label), [two_eyes(row, option, language) for option in options]) for row in rows]
-    for label, cells in _second_image(options, language):
+    lines.append("-" * (first + (WIDTH + 2) * len(pairs) - 2))
+    prices = [language.money(option.price, currency=currency) for option in options]
+    lines.append(line(_("price of the pair"), prices + ["–"] * (len(pairs) - len(options))))
+    lines += [line(_(row.label), [two_eyes(row, pair, language) for pair in pairs]) for row in rows]
+    for label, cells in _second_image(pairs, language):
         broken = [_wrapped(cell, WIDTH) for cell in cells]
         for k in range(max(len(cell) for cell in broken)):
             lines.append(line(label if k == 0 else "", [cell[k] if k < len(cell) else "" for cell in broken]))
@@ -68,6 +75,8 @@ def text_table(comparison: Comparison, *, title: str, currency: str, language: L
     for option in options:
         lines += [f"{_('Option')} {option.index + 1}: {refusal.text}" for refusal in option.refused]
         lines += [f"{_('Option')} {option.index + 1}: {note.text}" for note in option.notes]
+    if worn is not None:
+        lines += [f"{_(WORN_NOW)}: {note.text}" for note in (*worn.basis, *worn.notes)]
     if comparison.advice is not None:
         lines += [*advice_lines(comparison.advice, currency=currency, language=language), ""]
     lines += [f"{_('Warning')}: {warning.text}" for warning in comparison.warnings]
@@ -82,11 +91,11 @@ def text_table(comparison: Comparison, *, title: str, currency: str, language: L
     return "\n".join(one_line(text) for text in lines).rstrip() + "\n"
 
 
-def _second_image(options: Sequence[OptionFigures], language: Language) -> list[tuple[str, list[str]]]:
+def _second_image(pairs: Sequence[LensPair], language: Language) -> list[tuple[str, list[str]]]:
     """Return the second image in words, what is seen and where, then how sure it is; no row where nothing is told."""
     _ = language.gettext
-    spoken = [lead(option, language) or "–" for option in options]
-    beneath = [beside(option, language) for option in options]
+    spoken = [lead(pair, language) or "–" for pair in pairs]
+    beneath = [beside(pair, language) for pair in pairs]
     if set(spoken) == {"–"} and not any(beneath):
         return []
     rows = [(_(SECOND_IMAGE), spoken)]
@@ -135,22 +144,28 @@ def harmless(cell: str) -> str:
 
 
 def csv_rows(comparison: Comparison, *, file: str) -> list[list[str | float]]:
-    """Return one row for each figure; numbers stay bare numbers in the units of the comparison."""
+    """Return one row for each figure; numbers stay bare numbers in the units of the comparison.
+
+    Options are numbered from 1 on; the pair worn now stands last as ``worn_now`` and has no price.
+    """
     found: list[list[str | float]] = []
-    reference = harmless(comparison.reference or "")
+    start: list[str | float] = [harmless(file), harmless(comparison.reference or "")]
     for option in comparison.options:
         if option.price is not None:
-            found.append([harmless(file), reference, option.index + 1, "both", "price", option.price])
-        eyes: tuple[tuple[str, EyeFigures | None], ...] = (("right", option.right), ("left", option.left))
-        for name, eye in eyes:
-            if eye is not None:
-                values = [(row.key, row.value(eye)) for row in ROWS]
-                found += [
-                    [harmless(file), reference, option.index + 1, name, key, value]
-                    for key, value in values
-                    if value is not None
-                ]
+            found.append([*start, option.index + 1, "both", "price", option.price])
+        found += [[*start, option.index + 1, *figure] for figure in _figures(option)]
+    if comparison.worn_now is not None:
+        found += [[*start, "worn_now", *figure] for figure in _figures(comparison.worn_now)]
     return found
+
+
+def _figures(pair: LensPair) -> Iterator[tuple[str, str, float]]:
+    """Yield the eye, the row and the value of every figure that a pair has."""
+    for name, eye in (("right", pair.right), ("left", pair.left)):
+        for row in ROWS:
+            value = None if eye is None else row.value(eye)
+            if value is not None:
+                yield name, row.key, value
 
 
 def csv_text(rows: Iterable[list[str | float]], *, head: bool = True) -> str:

@@ -1,17 +1,22 @@
 """Visits: save, list, find, reopen, copy."""
 
+from dataclasses import replace
+
 from flask import Blueprint, make_response, redirect, render_template, request, url_for
 from werkzeug.wrappers import Response as AnyResponse
 
 from advisor.counsel.faults import Faults
 from advisor.counsel.phrases import mark
 from advisor.counsel.visit import parse_visit
-from advisor.records.visits import PageKey, VisitChanged
-from advisor.web import counter_page
+from advisor.records.drafts import DraftChanged, DraftMissing
+from advisor.records.visits import PageKey, SavedVisit, VisitChanged, VisitMissing
+from advisor.web import counter_page, drafting
 from advisor.web.counter import is_live
 from advisor.web.desk import current_desk
+from advisor.web.drafting import Editing
 from advisor.web.saving import as_new, save_form
 from advisor.web.stock_loader import current_shelf
+from advisor.web.told import Told, told_of
 
 visits = Blueprint("visits", __name__)
 
@@ -26,22 +31,38 @@ RANGE_CHANGED = mark(
 @visits.post("/visits")
 def save() -> AnyResponse:
     """Save the form as a visit, or show it again with what keeps it from being saved."""
-    desk = current_desk()
-    shelf, editing = current_shelf(desk.store), counter_page.of_form(request.form)
-    editing = as_new(editing) if request.form.get("do") == "new" else editing
+    store = current_desk().store
+    shelf, sent = current_shelf(store), drafting.of_form(request.form)
+    sent = as_new(sent) if request.form.get("do") == "new" else sent
     try:
-        saved = save_form(desk.store, desk.saved_forms, editing, shelf)
+        saved = save_form(store, sent, shelf)
     except Faults:
-        return _shown_again(editing, NOT_SAVED, 422)
+        return _shown_again(sent, Told(NOT_SAVED), 422)
     except VisitChanged as error:
-        return _shown_again(editing, error.text, 409)
+        return _shown_again(_beside(sent, error.stored), Told(error.text, changed=True), 409)
+    except VisitMissing as error:
+        return _shown_again(drafting.apart(sent, cut_loose=True), Told(error.text), 409)
+    except DraftChanged as error:
+        return _shown_again(sent, told_of(store, sent, error), 409)
     return redirect(url_for("visits.reopen", visit_id=saved.id), 303)
 
 
-def _shown_again(editing: counter_page.Editing, notice: str, status: int) -> AnyResponse:
+def _beside(sent: Editing, stored: SavedVisit) -> Editing:
+    """Return the form tied to the visit that was saved first, and to no edit of it that there is now."""
+    seen = sent.visit_edit if sent.visit_id == stored.id and sent.visit_edit is not None else 0
+    return replace(sent, visit_id=stored.id, visit_edit=seen)
+
+
+def _shown_again(sent: Editing, told: Told, status: int) -> AnyResponse:
+    """Show the form as it was sent, kept if it can be: in its draft, or, where that is gone, in one of its own."""
     store = current_desk().store
-    kept = counter_page.keep(store, editing)
-    return make_response(counter_page.page(kept, current_shelf(store), notice=notice, changed=status == 409), status)
+    try:
+        kept = drafting.keep(store, sent)
+    except DraftMissing:
+        kept = drafting.keep(store, drafting.apart(sent))
+    except DraftChanged as error:
+        kept, told = sent, told if told.reload else told_of(store, sent, error)
+    return make_response(counter_page.page(kept, current_shelf(store), told=told), status)
 
 
 @visits.get("/visits")
@@ -71,9 +92,9 @@ def reopen(visit_id: str) -> str:
     """Show a saved visit in the Counter."""
     store = current_desk().store
     saved, shelf = store.get_visit(visit_id), current_shelf(store)
-    editing = counter_page.of_visit(saved, parse_visit(saved.visit_json), shelf)
-    notice = "" if saved.range_hash == shelf.hash else RANGE_CHANGED
-    return counter_page.page(editing, shelf, notice=notice, saved=True)
+    editing = drafting.of_visit(saved, parse_visit(saved.visit_json), shelf)
+    told = Told("" if saved.range_hash == shelf.hash else RANGE_CHANGED)
+    return counter_page.page(editing, shelf, told=told, saved=True)
 
 
 @visits.post("/visits/<visit_id>/copy")
@@ -81,5 +102,5 @@ def copy(visit_id: str) -> AnyResponse:
     """Begin a new form with what a saved visit holds; its date is left to be today's."""
     store = current_desk().store
     visit = parse_visit(store.get_visit(visit_id).visit_json).model_copy(update={"date": None, "ordered": None})
-    editing = counter_page.keep(store, counter_page.of_copy(visit, current_shelf(store)))
+    editing = drafting.keep(store, drafting.of_copy(visit, current_shelf(store)))
     return redirect(url_for("counter.draft", draft_id=editing.draft_id), 303)

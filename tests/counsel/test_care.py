@@ -6,8 +6,9 @@ from advisor.counsel.care import CARE, CARE_TEXTS, CareLine, care_lines
 from advisor.counsel.visit import DailyLife
 
 
-def keys(*answered: str, kind: str = "dont") -> list[str]:
-    return [phrase.code for phrase in care_lines(answered, kind="do" if kind == "do" else "dont")]
+def keys(*answered: str, kind: str = "dont", **answers: str) -> list[str]:
+    given = dict.fromkeys(answered, "sometimes") | answers
+    return [phrase.code for phrase in care_lines(given, kind="do" if kind == "do" else "dont")]
 
 
 def test_cleaning_is_told_in_the_order_it_is_done() -> None:
@@ -30,6 +31,17 @@ def test_a_trades_own_harm_comes_first(answer: str, first: str) -> None:
     assert keys()[0] != first or answer == "dust"
 
 
+def test_what_is_met_often_comes_before_what_is_met_at_times() -> None:
+    assert keys(sprays_solvents="sometimes", heat_steam="often")[:2] == ["heat", "aerosol"]
+    assert keys(sprays_solvents="often", heat_steam="sometimes")[0] == "aerosol"
+    assert keys(sprays_solvents="never") == keys()
+
+
+def test_a_parent_reads_of_two_hands_and_the_strap_first() -> None:
+    assert keys(child="yes", kind="do")[:3] == ["put-down", "child-strap", "rinse-first"]
+    assert keys(kind="do")[0] == "rinse-first"
+
+
 @pytest.mark.parametrize(
     ("answer", "kind", "line"),
     [
@@ -39,7 +51,7 @@ def test_a_trades_own_harm_comes_first(answer: str, first: str) -> None:
     ],
 )
 def test_a_line_for_some_wearers_is_left_out_for_others(answer: str, kind: str, line: str) -> None:
-    assert line in keys(answer, kind=kind)
+    assert line in keys(kind=kind, **{answer: "yes"})
     assert line not in keys(kind=kind)
 
 

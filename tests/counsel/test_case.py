@@ -108,8 +108,8 @@ def test_what_was_not_asked_is_neither_never_nor_yes() -> None:
     made = case(daily_life={"driving": "never", "dust": "sometimes", "new_glare": "yes", "falls": "no"})
     assert (made.life("driving"), made.life("night_driving"), made.life("falls")) == ("never", "not-asked", "no")
     assert case().life("driving") == "not-asked"
-    assert made.yes_answers() == ("dust", "new_glare")
-    assert case().yes_answers() == ()
+    assert made.answers() == {"driving": "never", "dust": "sometimes", "new_glare": "yes", "falls": "no"}
+    assert case().answers() == {}
 
 
 def test_every_question_can_be_asked_for() -> None:

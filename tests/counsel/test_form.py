@@ -14,7 +14,8 @@ from hypothesis import strategies as st
 from numpy.typing import NDArray
 
 from advisor.counsel.compare import answer_of, compute
-from advisor.counsel.comparison import Comparison, EyeFigures
+from advisor.counsel.comparison import Comparison
+from advisor.counsel.lens_figures import EyeFigures
 from advisor.counsel.stock import Range, builtin_range, check_range
 from advisor.counsel.visit import check_visit, read_visit
 from advisor.resources import resource_dir

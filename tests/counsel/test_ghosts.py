@@ -15,7 +15,8 @@ from hypothesis import strategies as st
 
 from advisor.counsel import ghosts
 from advisor.counsel.compare import compare
-from advisor.counsel.comparison import Comparison, EyeFigures, Ghost
+from advisor.counsel.comparison import Comparison
+from advisor.counsel.lens_figures import EyeFigures, Ghost
 from advisor.counsel.stock import Range, builtin_range, check_range
 from advisor.counsel.visit import check_visit, read_visit
 from advisor.optics.ghost_inputs import LensOnFace

@@ -7,6 +7,7 @@ from advisor.counsel.compare import OWN_WARNINGS
 from advisor.counsel.laid_out import NOTE_TEXTS, REFUSAL_TEXTS
 from advisor.counsel.phrases import Figure, Phrase, digits_for, figure_text, mark, say
 from advisor.counsel.visit_checks import WARNING_TEXTS
+from advisor.counsel.worn_answer import BASIS_TEXTS
 from advisor.web.language import language
 
 ENGLISH = language("en")
@@ -80,6 +81,7 @@ TABLES: dict[str, dict[str, Any]] = {
     "notes": NOTE_TEXTS,
     "refusals": REFUSAL_TEXTS,
     "warnings": WARNING_TEXTS,
+    "worn pair": BASIS_TEXTS,
     "own warnings": OWN_WARNINGS,
     "cautions": {key: words.text for key, words in CAUTION_TEXTS.items()},
 }

@@ -4,7 +4,8 @@ from typing import Any
 
 import pytest
 
-from advisor.counsel.comparison import EyeFigures, Ghost, OptionFigures
+from advisor.counsel.comparison import OptionFigures
+from advisor.counsel.lens_figures import EyeFigures, Ghost
 from advisor.counsel.second_image_words import beside, lead, past_range, verdict_range
 from advisor.web.language import language
 

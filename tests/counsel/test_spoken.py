@@ -6,7 +6,8 @@ from typing import Any
 
 import pytest
 
-from advisor.counsel.comparison import EyeFigures, Ghost, OptionFigures
+from advisor.counsel.comparison import OptionFigures
+from advisor.counsel.lens_figures import EyeFigures, Ghost
 from advisor.counsel.phrases import say
 from advisor.counsel.spoken import (
     EDGES,

@@ -82,7 +82,7 @@ def test_a_question_left_out_was_not_asked() -> None:
     assert daily.driving is None
     assert "driving" in daily.not_asked()
     assert "night_driving" not in daily.not_asked()
-    assert lines({**minimal(), "daily_life": {"child": "often"}}) == ["daily_life.child: use one of: 'yes' or 'no'."]
+    assert lines({**minimal(), "daily_life": {"child": "often"}}) == ["daily_life.child: use one of: 'yes', 'no'."]
 
 
 def test_a_missing_sphere_is_named() -> None:

@@ -78,7 +78,7 @@ def test_each_reason_has_its_own_plain_sentence(table: object, error: str | None
     with pytest.raises(getattr(module, error), match=says) as caught:
         measured_spectrum(table)  # type: ignore[arg-type]  # rows as a file may hold them
     assert isinstance(caught.value, SpectrumFault)
-    assert str(caught.value) == caught.value.sentence.format(**caught.value.figures)
+    assert all(f"{float(figure):g}" in str(caught.value) for figure in caught.value.figures.values())
 
 
 def test_every_fault_is_an_error_for_a_person() -> None:

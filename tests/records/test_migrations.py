@@ -35,6 +35,7 @@ ROWS |= {
         "INSERT INTO recheck VALUES ('r1', 'v1', '2026-01-05T03:04:05.000000+00:00', 'remake', 'maker', 'v1', '{}')",
     ),
 }
+ROWS |= {"0003": (*ROWS["0002"], "INSERT INTO saved_form VALUES ('t1', 'v1', 2, 'd0', 7)")}
 
 
 def database_at(folder: Path, revision: str) -> None:
@@ -100,6 +101,7 @@ def test_rows_of_every_version_are_read_after_the_upgrade(tmp_path: Path, revisi
             (r.id, r.at[:10], r.outcome, r.who_pays, r.new_visit_id, r.content_json) for r in store.list_rechecks("v1")
         ]
         assert kept == ([] if revision == "0001" else [("r1", "2026-01-05", "remake", "maker", "v1", "{}")])
+        assert store.visit_of_draft("d0") == ("v1" if revision == "0003" else None)
         added = store.save_recheck("{}", visit_id="v1", outcome="clean", who_pays="nobody")
         assert store.get_recheck(added.id) == added
     assert query(tmp_path, "SELECT version_num FROM alembic_version") == [(REVISIONS[-1],)]

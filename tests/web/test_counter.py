@@ -92,7 +92,7 @@ def test_a_fault_stands_beside_its_field_and_what_was_typed_stays(client: FlaskC
     assert 'data-field="prescription.right.axis"' in live.text
     assert 'class="big"' not in live.text
     page = client.post("/counter", data=wrong, follow_redirects=True).text
-    assert re.search(r'id="fault-prescription\.right\.axis">A cylinder of -1 needs an axis from 1 to 180\.<', page)
+    assert re.search(r'id="fault-prescription\.right\.axis">A cylinder of −1 needs an axis from 1 to 180\.<', page)
     assert re.search(r'id="fault-frame\.a_mm">Write a number here\.<', page)
     assert re.search(r'name="frame\.a_mm" value="wide"[^>]*aria-invalid="true"', page)
 

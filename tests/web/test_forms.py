@@ -9,7 +9,7 @@ import pytest
 from werkzeug.datastructures import MultiDict
 
 from advisor.counsel.faults import Faults
-from advisor.counsel.visit import Visit, check_visit, parse_visit, read_visit, visit_to_json
+from advisor.counsel.visit import Visit, check_visit, read_visit, visit_to_json
 from advisor.resources import resource_dir
 from advisor.web import forms
 
@@ -129,18 +129,3 @@ def test_names_that_the_form_does_not_have_are_left_out() -> None:
     assert fields["scenes"] == "a b"
     assert "wearer.shoe" not in fields
     assert fields["option_count"] == "1"
-
-
-def test_options_are_added_as_copies_and_removed_with_what_points_at_them() -> None:
-    visit = parse_visit((resource_dir("demo_patients") / "strong-cylinder.json").read_text("utf-8"))
-    fields = {**forms.visit_to_fields(visit), "baseline": "2", "ordered": "1"}
-    more = forms.with_option_added(fields)
-    assert forms.option_count(more) == 4
-    assert more["options.3.material"] == fields["options.2.material"]
-    assert forms.with_option_added(more) == more
-    less = forms.with_option_removed(fields, 1)
-    assert forms.option_count(less) == 2
-    assert (less["baseline"], less["ordered"]) == ("1", "")
-    assert less["options.1.material"] == fields["options.2.material"]
-    one = forms.with_option_removed(less, 0)
-    assert forms.with_option_removed(one, 0) == one

@@ -62,6 +62,30 @@ def test_an_unknown_price_is_a_dash_and_nothing_is_a_price() -> None:
     assert ENGLISH.money(0.0, currency="EUR") == "€0.00"
 
 
+# Where the sign of a currency stands, and what it is called abroad, by the Unicode CLDR.
+@pytest.mark.parametrize(
+    ("code", "currency", "text"),
+    [
+        ("en", "GBP", "£80.00"),
+        ("en", "USD", "US$80.00"),
+        ("de", "GBP", f"80,00{NO_BREAK}£"),
+        ("fr", "USD", f"80,00{NO_BREAK}$US"),
+        ("es", "USD", f"80,00{NO_BREAK}US$"),
+        ("fr", "CHF", f"80,00{NO_BREAK}CHF"),
+    ],
+)
+def test_money_is_written_by_language_and_currency(code: str, currency: str, text: str) -> None:
+    assert Language(code).money(80, currency=currency) == text
+
+
+def test_a_difference_of_prices_shows_its_sign() -> None:
+    german = Language("de")
+    assert german.money(35, currency="EUR", signed=True) == f"+35,00{NO_BREAK}€"
+    assert german.money(-35, currency="EUR", signed=True) == f"−35,00{NO_BREAK}€"
+    assert german.money(0, currency="EUR", signed=True) == f"0,00{NO_BREAK}€"
+    assert ENGLISH.money(-1234.5, currency="EUR", signed=True) == "−€1,234.50"
+
+
 def test_a_fraction_is_written_as_a_percentage() -> None:
     assert ENGLISH.percent(0.0769) == "7.7 %"
     assert ENGLISH.percent(0.0769, digits=2) == "7.69 %"

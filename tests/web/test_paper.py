@@ -8,13 +8,16 @@ import pytest
 from jinja2 import UndefinedError
 from pypdf import PdfReader
 
+from advisor.counsel.phrases import Phrase, say
 from advisor.counsel.stock import builtin_range
 from advisor.counsel.visit import read_visit
 from advisor.resources import resource_dir
 from advisor.web import pdf
-from advisor.web.documents import standing_alone, wearer_sheet
-from advisor.web.paper import environment
+from advisor.web.documents import standing_alone
+from advisor.web.language import language
+from advisor.web.paper import OnPaper, environment
 from advisor.web.pdf import PdfFailed, PdfUnavailable, is_available, write_pdf
+from advisor.web.sheet_page import wearer_sheet
 
 needs_pango = pytest.mark.skipif(
     not is_available() and not os.environ.get("TWOLIGHT_REQUIRE_ALL"), reason="the Pango libraries are missing"
@@ -44,8 +47,23 @@ def test_a_value_that_is_missing_stops_the_page() -> None:
 
 def test_filters_write_figures_and_a_dash_for_none() -> None:
     template = "{{ v|number(2, true) }}|{{ none|number }}|{{ f|percent(2) }}|{{ none|percent }}|{{ none|day }}"
-    assert rendered(template, v=-2.25, f=0.0769) == "−2.25|–|7.69 %|–|–"
-    assert rendered("{{ p|money('EUR') }}|{{ none|money('EUR') }}", p=80) == "€80.00|–"
+    assert without_bdi(rendered(template, v=-2.25, f=0.0769)) == "−2.25|–|7.69 %|–|–"
+    assert without_bdi(rendered("{{ p|money('EUR') }}|{{ none|money('EUR') }}", p=80)) == "€80.00|–"
+
+
+def without_bdi(html: str) -> str:
+    return html.replace('<bdi dir="ltr">', "").replace("</bdi>", "")
+
+
+def test_a_figure_runs_left_to_right_with_its_sign_before_it_in_any_script() -> None:
+    assert rendered("{{ v|number(2, true) }}", v=-4.25) == '<bdi dir="ltr">−4.25</bdi>'
+    assert rendered("{{ _('Add %(add)s', add=v|number(2, true)) }}", v=2) == 'Add <bdi dir="ltr">+2.00</bdi>'
+
+
+def test_a_sentence_of_the_domain_keeps_its_figures_apart_and_what_was_typed_as_text() -> None:
+    phrase = Phrase("x", {"low_percent": 0.25, "material": "<b>%(x)s</b>"})
+    said = say(phrase, {"x": "%(low_percent)s %% & %(material)s"}, OnPaper(language("en")))
+    assert rendered("{{ said }}", said=said) == '<bdi dir="ltr">0.2</bdi> % &amp; &lt;b&gt;%(x)s&lt;/b&gt;'
 
 
 def test_a_marked_text_with_a_percent_sign_and_a_figure_stays_whole() -> None:

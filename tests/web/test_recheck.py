@@ -96,7 +96,7 @@ def test_what_was_typed_stands_in_the_form_again(client: FlaskClient, store: Sto
 @pytest.mark.parametrize(
     ("change", "sentence"),
     [
-        ({"measured.right.axis": "x"}, "write a number"),
+        ({"measured.right.axis": "x"}, "Write a number"),
         ({"measured.right.axis": ""}, "needs an axis"),
     ],
 )
@@ -126,7 +126,7 @@ def test_measurements_that_cannot_be_read_hold_up_no_sign(client: FlaskClient, s
     form = WRONG_AXIS | {"measured.right.axis": "x", "answer.today-loss": "yes"}
     answer = client.post(f"/visits/{saved(store, 'strong-cylinder')}/recheck", data=form)
     assert answer.status_code == 422
-    assert "write a number" in answer.text
+    assert "Write a number" in answer.text
     assert "To an eye doctor today." in answer.text
 
 
@@ -202,7 +202,7 @@ def test_no_outcome_is_kept_while_none_is_chosen(client: FlaskClient, store: Sto
     form = WRONG_AXIS | RECORD | {"outcome": ""}
     answer = client.post(f"/visits/{saved(store, 'strong-cylinder')}/recheck", data=form)
     assert answer.status_code == 422
-    assert "this is missing" in answer.text
+    assert "This is missing" in answer.text
     assert rows(tmp_path) == []
 
 

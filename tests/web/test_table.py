@@ -155,3 +155,47 @@ def test_rows_say_what_they_are_measured_against() -> None:
     lines = table(answer({}))
     assert line(lines, "window over the eye behind it").endswith(" times")
     assert line(lines, "size of what is seen, against no glasses")
+
+
+WORN = {
+    "material": "hard-resin-150",
+    "coating": "bare",
+    "prescription": {"right": {"sphere": -1.5}, "left": {"sphere": -1.5}},
+}
+
+
+def test_the_worn_pair_has_the_last_column_and_no_price() -> None:
+    lines = table(answer({}, {"coating": "broadband"}, worn_now=WORN))
+    rule = next(one for one in lines if set(one) == {"-"})
+    head = lines[2 : lines.index(rule)]
+    assert head[0].rindex("Worn now: Hard resin") > head[0].rindex("2 Hard resin")
+    assert line(lines, "price of the pair").split()[-3:] == ["\N{EURO SIGN}80.00", "\N{EURO SIGN}150.00", "\N{EN DASH}"]
+    figures = line(lines, "first-pass loss")
+    assert figures.split()[-6::2] == ["7.83", "0.64", "7.83"]  # bare faces of n 1.498 again: Fresnel, 1 - (1 - R)^2
+    assert len(figures) == len(rule)
+    # -1.50 against -2.00: the worn pair is the thinner one at the edge
+    edges = [float(text) for text in line(lines, "thickest edge").split() if text[0].isdigit()]
+    assert edges[2] < edges[0]
+    (stated,) = (one for one in lines if one.startswith("Worn now: As single vision"))
+    assert "its own prescription and today's fitting" in stated
+
+
+def test_what_is_missing_of_the_worn_pair_is_dashes_and_a_sentence() -> None:
+    lines = table(answer({}, worn_now={"coating": "broadband"}))
+    assert "Worn now: Say the worn pair's material to see it beside." in lines
+    assert line(lines, "thickest edge").endswith("\N{EN DASH}")
+    lines = table(answer({}, worn_now={"material": "hard-resin-150"}))
+    assert line(lines, "thickest edge").endswith(" mm")
+    assert line(lines, "light passed").endswith("\N{EN DASH}")
+    assert not [one for one in table(answer({})) if "Worn now" in one]
+
+
+def test_rows_of_the_worn_pair_stand_last_under_a_name_of_their_own() -> None:
+    rows = csv_rows(answer({}, worn_now=WORN), file="a.json")
+    names = [row[2] for row in rows]
+    assert set(names) == {1, "worn_now"}
+    assert names == sorted(names, key=lambda name: name == "worn_now")
+    worn = [row for row in rows if row[2] == "worn_now"]
+    assert "price" not in {row[4] for row in worn}
+    assert {row[4] for row in worn} == {row[4] for row in rows if row[2] == 1} - {"price"}
+    assert {row[2] for row in csv_rows(answer({}), file="a.json")} == {1}

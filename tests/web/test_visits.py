@@ -2,12 +2,17 @@
 
 import json
 import re
+from pathlib import Path
 
+import pytest
 from flask.testing import FlaskClient
 
 from advisor import __version__
 from advisor.counsel.stock import builtin_range, range_to_toml
+from advisor.records.drafts import DraftMissing
 from advisor.records.store import Store
+from advisor.web.app import create_app
+from advisor.web.desk import desk_of
 
 LIVE = {"HX-Request": "true"}
 FORM = {
@@ -43,17 +48,72 @@ def test_a_saved_visit_holds_input_range_version_and_answer(client: FlaskClient,
     assert kept.toml == range_to_toml(builtin_range())
 
 
-def test_saving_drops_the_draft(client: FlaskClient) -> None:
+def test_saving_drops_the_draft_and_going_back_to_it_shows_the_saved_visit(client: FlaskClient, store: Store) -> None:
     live = client.post("/counter", data=FORM, headers=LIVE)
     draft = live.headers["HX-Replace-Url"].rsplit("/", 1)[1]
-    saved_id(client, draft=draft, draft_edit="1")
-    assert client.get(f"/counter/{draft}").status_code == 404
+    visit_id = saved_id(client, draft=draft, draft_edit="1")
+    with pytest.raises(DraftMissing):
+        store.get_draft(draft)
+    back = client.get(f"/counter/{draft}")  # as by the browser's back button
+    assert (back.status_code, back.headers["Location"]) == (302, f"/visits/{visit_id}")
 
 
 def test_a_form_sent_twice_is_one_visit(client: FlaskClient, store: Store) -> None:
     assert saved_id(client) == saved_id(client)
     assert len(store.list_visits()) == 1
     assert store.list_visits()[0].edit == 1
+
+
+def test_a_form_sent_again_after_a_restart_is_the_same_visit(client: FlaskClient, tmp_path: Path) -> None:
+    first = saved_id(client)
+    again = create_app(data_dir=tmp_path, testing=True)
+    assert saved_id(again.test_client()) == first
+    assert len(desk_of(again).store.list_visits()) == 1
+    desk_of(again).close()
+
+
+def test_a_form_saved_as_new_twice_is_one_new_visit(client: FlaskClient, store: Store) -> None:
+    first = saved_id(client)
+    edit = {"visit": first, "visit_edit": "1", "token": "b" * 32, "do": "new", "note": "another pair"}
+    assert saved_id(client, **edit) == saved_id(client, **edit) != first
+    assert len(store.list_visits()) == 2
+
+
+def test_two_windows_of_one_draft_do_not_save_over_each_other(client: FlaskClient, store: Store) -> None:
+    draft = client.post("/counter", data=FORM, headers=LIVE).headers["HX-Replace-Url"].rsplit("/", 1)[1]
+    mine = {**FORM, "draft": draft, "draft_edit": "1", "note": "mine"}
+    client.post("/counter", data={**mine, "note": "theirs"}, headers=LIVE)
+    late = client.post("/visits", data=mine)
+    assert (late.status_code, store.list_visits()) == (409, [])
+    assert "changed in another window" in late.text
+    assert f'href="/counter/{draft}"' in late.text
+    assert ">mine</textarea>" in late.text
+    visit_id = saved_id(client, draft=draft, draft_edit="2", note="theirs")
+    later = client.post("/visits", data=mine)  # now the other window has saved
+    assert later.status_code == 409
+    assert f'href="/visits/{visit_id}"' in later.text
+    assert ">mine</textarea>" in later.text
+    assert json.loads(store.get_visit(visit_id).visit_json)["note"] == "theirs"
+    hidden = dict(re.findall(r'<input type="hidden" name="(\w+)" value="([^"]*)">', later.text))
+    again = client.post("/visits", data={**mine, **hidden})
+    assert again.status_code == 409  # until it is saved as a new visit
+    own = client.post("/visits", data={**mine, **hidden, "do": "new"}).headers["Location"].rsplit("/", 1)[1]
+    assert json.loads(store.get_visit(own).visit_json)["note"] == "mine"
+    assert json.loads(store.get_visit(visit_id).visit_json)["note"] == "theirs"
+
+
+def test_a_visit_erased_meanwhile_is_told_and_what_was_typed_stays(client: FlaskClient, store: Store) -> None:
+    visit_id = saved_id(client)
+    store.erase_visit(visit_id)
+    edit = {**FORM, "visit": visit_id, "visit_edit": "1", "token": "b" * 32, "note": "mine"}
+    live = client.post("/counter", data=edit, headers=LIVE)
+    assert (live.status_code, 'id="why-price"' in live.text) == (200, True)
+    late = client.post("/visits", data=edit)
+    assert late.status_code == 409
+    assert "may have been erased" in late.text
+    assert ">mine</textarea>" in late.text
+    hidden = dict(re.findall(r'<input type="hidden" name="(\w+)" value="([^"]*)">', late.text))
+    assert saved_id(client, **{"note": "mine", **hidden}) != visit_id
 
 
 def test_the_same_form_changed_and_sent_again_is_the_same_visit_changed(client: FlaskClient, store: Store) -> None:
