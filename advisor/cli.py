@@ -21,6 +21,7 @@ if TYPE_CHECKING:
     from advisor.web.sheet_page import Print
 
 MANY_FILES = 5  # from here on a progress bar is shown
+DATABASE = "advisor.cli.database"  # where a command finds what was given before it
 
 
 class _Sentence(click.ClickException):
@@ -42,18 +43,33 @@ class _Group(click.Group):
 
 @click.group(cls=_Group, invoke_without_command=True, context_settings={"help_option_names": ["-h", "--help"]})
 @click.option("--data", type=click.Path(path_type=Path, file_okay=False), help="Folder of visits and the shop's range.")
+@click.option("--database", envvar="TWOLIGHT_DATABASE", metavar="URL", help="PostgreSQL database of several branches.")
 @click.option("--port", type=click.IntRange(1, 65535), default=8642, show_default=True, help="Port to serve on.")
 @click.option("--no-browser", is_flag=True, help="Do not open the browser.")
 @click.version_option(__version__, prog_name="twolight")
 @click.pass_context
-def main(ctx: click.Context, data: Path | None, port: int, no_browser: bool) -> None:
+def main(ctx: click.Context, data: Path | None, database: str | None, port: int, no_browser: bool) -> None:
     """Which lens, which coating, which ghost image: worked out for one wearer.
 
     Without a command, serve the pages and open the browser.
     """
     ctx.obj = data
+    ctx.meta[DATABASE] = (database or "").strip() or None
     if ctx.invoked_subcommand is None:
         _serve(data, port=port, open_browser=not no_browser)
+
+
+def _database() -> str | None:
+    """Return the address of the database given, or named in the environment, whatever the command."""
+    given: str | None = click.get_current_context().meta[DATABASE]
+    return given
+
+
+def _records(data: Path | None) -> Path | str:
+    """Return where the records lie: at the address of a database, else in the data folder."""
+    from advisor.records.location import data_folder
+
+    return _database() or data_folder(data)
 
 
 def _serve(data: Path | None, *, port: int, open_browser: bool) -> None:
@@ -61,7 +77,8 @@ def _serve(data: Path | None, *, port: int, open_browser: bool) -> None:
     from advisor.web.app import create_app
     from advisor.web.server import run
 
-    sys.exit(run(create_app(data_dir=data_folder(data)), port=port, open_browser=open_browser))
+    app = create_app(data_dir=data_folder(data), database=_database())
+    sys.exit(run(app, port=port, open_browser=open_browser))
 
 
 def _stock(data: Path | None, file: Path | None = None) -> "Range":
@@ -70,16 +87,29 @@ def _stock(data: Path | None, file: Path | None = None) -> "Range":
 
     if file is not None:
         return read_range(file)
-    from advisor.records.location import data_folder, database_file
+    from advisor.records.location import database_file
 
-    folder = data_folder(data)
-    if not database_file(folder).exists():
+    place = _records(data)
+    if isinstance(place, Path) and not database_file(place).exists():
         return builtin_range()
     from advisor.records.store import Store
 
-    with Store.open(folder) as store:
+    with Store.open(place) as store:
         current = store.current_range()
     return builtin_range() if current is None else parse_range(current.toml)
+
+
+def _logo(data: Path | None, file: Path | None) -> bytes | None:
+    """Return the shop's logo from the records; a range file given alone is of no shop here."""
+    from advisor.records.location import database_file
+
+    place = _records(data)
+    if (file is not None and data is None) or (isinstance(place, Path) and not database_file(place).exists()):
+        return None
+    from advisor.records.store import Store
+
+    with Store.open(place) as store:
+        return store.get_logo()
 
 
 def _bar(files: list[Path]) -> Iterable[Path]:
@@ -190,19 +220,28 @@ def sheet(
     """Write the wearer's sheet for a visit file; of several files, or of a folder of them, into a folder."""
     from advisor.web.sheet_page import care_sheet, wearer_sheet
 
+    logo = _logo(data, range_file)
+
     def make(visit: "Visit", stock: "Range") -> str:
         if care_only:
-            return care_sheet(visit, stock, code=code, print_size=print_size)
-        return wearer_sheet(visit, stock, number=number, code=code, print_size=print_size)
+            return care_sheet(visit, stock, code=code, print_size=print_size, logo=logo)
+        return wearer_sheet(visit, stock, number=number, code=code, print_size=print_size, logo=logo)
 
     into_one = out.suffix.lower() in (".pdf", ".html") or not out.is_dir()
     if len(files) == 1 and not files[0].is_dir() and into_one:
-        _paper(data, files[0], out, range_file, make)
+        _paper(data, files[0], out, range_file, make, logo=logo)
     else:
-        _sheets(files, out, _stock(data, range_file), make)
+        _sheets(files, out, _stock(data, range_file), make, logo=logo)
 
 
-def _sheets(given: tuple[Path, ...], out: Path, stock: "Range", make: Callable[["Visit", "Range"], str]) -> None:
+def _sheets(
+    given: tuple[Path, ...],
+    out: Path,
+    stock: "Range",
+    make: Callable[["Visit", "Range"], str],
+    *,
+    logo: bytes | None,
+) -> None:
     """Write many sheets into a folder and say how many; status 1 if there were none or any was bad."""
     from advisor.web.sheet_files import files_in, sheet_files
 
@@ -213,7 +252,7 @@ def _sheets(given: tuple[Path, ...], out: Path, stock: "Range", make: Callable[[
     except OSError as error:
         raise _Sentence(f"{out} cannot be made: {error.strerror}.") from error
     files, made = files_in(given), 0
-    for sheet in sheet_files(_bar(files), stock, make):
+    for sheet in sheet_files(_bar(files), stock, make, logo=logo):
         if sheet.content is None:
             click.echo(sheet.problem, err=True)
         else:
@@ -240,7 +279,13 @@ def order(data: Path | None, file: Path, out: Path, number: int | None, bench: b
 
 
 def _paper(
-    data: Path | None, file: Path, out: Path, range_file: Path | None, make: Callable[["Visit", "Range"], str]
+    data: Path | None,
+    file: Path,
+    out: Path,
+    range_file: Path | None,
+    make: Callable[["Visit", "Range"], str],
+    *,
+    logo: bytes | None = None,
 ) -> None:
     from advisor.counsel.visit import read_visit
 
@@ -250,11 +295,11 @@ def _paper(
     if out.suffix.lower() == ".html":
         from advisor.web.documents import standing_alone
 
-        _write(out, standing_alone(html).encode())
+        _write(out, standing_alone(html, logo=logo).encode())
     else:
         from advisor.web.pdf import write_pdf
 
-        _write(out, write_pdf(html))
+        _write(out, write_pdf(html, logo=logo))
     click.echo(f"{out}")
 
 
@@ -308,6 +353,48 @@ def recheck(
     )  # fmt: skip
 
 
+@main.command("bring-in")
+@click.argument("file", type=click.Path(path_type=Path))
+@click.option("-o", "--out", required=True, type=click.Path(path_type=Path), help="VISIT.json to write.")
+@click.option("--into", type=click.Path(path_type=Path), help="Visit file that a frame record is put into.")
+@click.option("--entry", type=click.IntRange(1), default=1, show_default=True, help="Which of several prescriptions.")
+@click.option("--mirror", is_flag=True, help="Exchange nasal and temporal in a traced outline.")
+def bring_in(file: Path, out: Path, into: Path | None, entry: int, mirror: bool) -> None:
+    """Make a visit file of a FHIR prescription, or put a frame record into one; says what was not read."""
+    from advisor.counsel.visit import read_visit, visit_to_json
+    from advisor.web.brought_files import brought_visit
+    from advisor.web.language import language
+
+    english = language("en")
+    visit, notes = brought_visit(
+        file, into=None if into is None else read_visit(into), entry=entry, mirror=mirror, speaker=english
+    )  # fmt: skip
+    _write(out, visit_to_json(visit).encode())
+    for note in notes:
+        click.echo(note, err=True)
+    click.echo(f"{out}")
+
+
+@main.command()
+@click.argument("file", type=click.Path(path_type=Path))
+@click.option("-o", "--out", required=True, type=click.Path(path_type=Path), help="OUT.json to write.")
+@click.option("--name", "with_name", is_flag=True, help="Put the wearer's name in.")
+def prescription(file: Path, out: Path, with_name: bool) -> None:
+    """Write the prescription of a visit file as HL7 FHIR; says what the format has no place for."""
+    import datetime as dt
+
+    from advisor.counsel.fhir_writing import to_fhir
+    from advisor.counsel.visit import read_visit
+    from advisor.web.brought import said
+    from advisor.web.language import language
+
+    written = to_fhir(read_visit(file), created=dt.date.today(), with_name=with_name)
+    _write(out, written.text().encode())
+    for note in said(written.notes, language("en")):
+        click.echo(note, err=True)
+    click.echo(f"{out}")
+
+
 @main.command()
 @click.argument("which", type=click.Choice(["visit", "range", "comparison"]), default="visit")
 def schema(which: "SchemaName") -> None:
@@ -339,13 +426,50 @@ def range_export(data: Path | None, file: Path) -> None:
 def range_import(data: Path | None, file: Path) -> None:
     """Take a TOML file as the shop's range."""
     from advisor.counsel.stock import range_to_toml, read_range
-    from advisor.records.location import data_folder
     from advisor.records.store import Store
 
     stock = read_range(file)
-    with Store.open(data_folder(data)) as store:
+    with Store.open(_records(data)) as store:
         store.set_range(range_to_toml(stock))
     click.echo(f"{file}: {len(stock.material)} materials, {len(stock.coating)} coatings, {len(stock.offer)} offers.")
+
+
+@main.command()
+@click.argument("file", type=click.Path(path_type=Path))
+@click.option("--replace", is_flag=True, help="Write over a file of that name.")
+@click.pass_obj
+def backup(data: Path | None, file: Path, replace: bool) -> None:
+    """Write everything in the records into one file, also while the program runs."""
+    from advisor.records.location import database_file
+    from advisor.records.store import Store
+
+    place = _records(data)
+    if isinstance(place, Path) and not database_file(place).exists():
+        raise _Sentence(f"There are no records in {place}; nothing was written.")
+    with Store.open(place) as store:
+        done = store.backup(file, replace=replace)
+        store.record_event("backup")
+    click.echo(f"{done.file}: {_visits(done.visits)}, {done.size_bytes / 1e6:.1f} MB, read again and found whole.")
+
+
+@main.command()
+@click.argument("file", type=click.Path(path_type=Path))
+@click.pass_obj
+def restore(data: Path | None, file: Path) -> None:
+    """Put a backup in the place of the records; what was there is kept beside it. Stop the program first."""
+    from advisor.records.location import data_folder
+    from advisor.records.restore import restore as put_back
+    from advisor.records.store import Store
+
+    done = put_back(_records(data), file, folder=data_folder(data))
+    with Store.open(_records(data)) as store:
+        store.record_event("restored")
+    kept = f"What was there before is kept in {done.kept}." if done.kept else "Nothing was there before."
+    click.echo(f"{file}: {_visits(done.visits)} put into {done.place}. {kept}")
+
+
+def _visits(count: int) -> str:
+    return "1 visit" if count == 1 else f"{count} visits"
 
 
 @main.command()

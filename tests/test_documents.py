@@ -48,7 +48,7 @@ def unknown_words(words: list[str], command: click.Command) -> list[str]:
                 wrong.append(word)
         elif isinstance(command, click.Group):
             inner = command.commands.get(word)
-            takes_value = place > 0 and words[place - 1] in ("--data", "--port")
+            takes_value = place > 0 and words[place - 1] in ("--data", "--database", "--port")
             if inner is not None:
                 return wrong + unknown_words(words[place + 1 :], inner)
             if not takes_value:

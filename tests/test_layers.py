@@ -13,7 +13,7 @@ ORDER = ["__main__", "cli", "web", "records", "counsel", "optics", "resources", 
 THIRD_PARTIES = {
     "__main__": set(),
     "cli": {"click", "tqdm"},
-    "web": {"flask", "werkzeug", "jinja2", "markupsafe", "babel", "weasyprint", "cheroot", "pydantic"},
+    "web": {"flask", "werkzeug", "jinja2", "markupsafe", "babel", "weasyprint", "PIL", "cheroot", "pydantic"},
     "records": {"sqlalchemy", "alembic", "platformdirs"},
     "counsel": {"numpy", "pydantic", "pydantic_core", "tomlkit"},
     "optics": {"numpy"},
@@ -60,8 +60,9 @@ def test_a_module_imports_only_from_its_layer_and_below(module: Path) -> None:
             assert parts[0] in THIRD_PARTIES[layer], f"{layer} must not import {parts[0]}"
 
 
-def test_weasyprint_is_imported_in_one_module_only_and_when_first_used() -> None:
-    importers = [module for module in MODULES if any(name.split(".")[0] == "weasyprint" for name in imported(module))]
-    assert [module.name for module in importers] == ["pdf.py"]
+@pytest.mark.parametrize(("party", "only"), [("weasyprint", "pdf.py"), ("PIL", "logo.py")])
+def test_what_is_slow_to_load_is_imported_in_one_module_only_and_when_first_used(party: str, only: str) -> None:
+    importers = [module for module in MODULES if any(name.split(".")[0] == party for name in imported(module))]
+    assert [module.name for module in importers] == [only]
     top_level = ast.parse(importers[0].read_text(encoding="utf-8")).body
-    assert not [n for n in top_level if isinstance(n, ast.Import | ast.ImportFrom) and "weasyprint" in ast.unparse(n)]
+    assert not [n for n in top_level if isinstance(n, ast.Import | ast.ImportFrom) and party in ast.unparse(n)]

@@ -25,18 +25,18 @@ from advisor.optics.thickness import LEAST_EDGE_MM
 
 SIDES: tuple[tuple[str, float], ...] = (
     (mark("nose"), 0.0),
-    (mark("up"), 90.0),
+    (mark("at the top"), 90.0),
     (mark("temple"), 180.0),
-    (mark("down"), 270.0),
+    (mark("at the bottom"), 270.0),
 )
 PLACE_TEXTS: Mapping[str, str] = {
     "nose": mark("nose"),
     "nose up": mark("nose up"),
-    "up": mark("up"),
+    "up": mark("at the top"),
     "temple up": mark("temple up"),
     "temple": mark("temple"),
     "temple down": mark("temple down"),
-    "down": mark("down"),
+    "down": mark("at the bottom"),
     "nose down": mark("nose down"),
 }
 THICK_EDGE_MM = 3.0

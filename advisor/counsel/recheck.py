@@ -63,7 +63,7 @@ def recheck(
     for key, answer in answers.items():
         if key not in SIGNS | TESTS or answer not in ("yes", "no"):
             raise UnknownAnswer(key)
-    heard = hear(says, translator)
+    heard = hear(says, translator, languages=[visit.wearer.language if visit.wearer else None])
     signs = _signs(answers, heard.signs, translator)
     urgent = _urgency(signs)
     lens = _lens(visit, stock, number, translator, today, needed=urgent is None)

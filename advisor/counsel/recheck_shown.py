@@ -17,7 +17,7 @@ STEPS = tuple(VERDICTS.values())
 FINE_DIGITS = {"second_image_percent": 3}
 TIMES = mark("%(times)s times")
 AT_MOST = mark("at most %(figure)s")
-EYES = {"right": mark("right"), "left": mark("left"), "both": mark("both")}
+EYES = {"right": mark("right"), "left": mark("left"), "both": mark("both eyes")}
 OFF_FIGURES = {
     "sphere": "power_off_d", "meridian": "power_off_d", "cylinder": "cylinder_off_d", "axis": "axis_off_deg",
     "add": "add_off_d", "pd": "place_off_mm", "height": "place_off_mm", "centre": "thickness_off_mm",

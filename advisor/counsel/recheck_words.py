@@ -1,14 +1,16 @@
 """The wearer's words: which complaints, and which signs for an eye doctor, are heard in them.
 
-In English they are read freely; in the reader's own language as the list of complaints words them. Several complaints
-may be heard at once.
+Complaints are heard in English, in the language of the screen and in the wearer's own; signs in every language there is
+an ear for, since a sign is heard rather once too often than not at all. Several complaints may be heard at once.
 """
 
 import re
+from collections.abc import Iterable
 from dataclasses import dataclass
 
 from advisor.counsel.phrases import Translator
-from advisor.counsel.recheck_sign_words import DOUBLE, LIGHT, signs_in
+from advisor.counsel.recheck_ear import ears, folded, without_denied
+from advisor.counsel.recheck_sign_words import DOUBLE, LIGHT, SIGN_WORDS, signs_in
 from advisor.counsel.recheck_texts import COMPLAINTS
 
 MOST_LETTERS = 1000
@@ -77,18 +79,29 @@ class Heard:
     signs: tuple[str, ...]
 
 
-def hear(says: str, translator: Translator | None = None) -> Heard:
-    """Return the complaints and signs in some words; a complaint's own key or its text is taken as it stands."""
-    text = " ".join(says.lower().replace("\N{RIGHT SINGLE QUOTATION MARK}", "'").split())[:MOST_LETTERS]
+def hear(says: str, translator: Translator | None = None, *, languages: Iterable[str | None] = ()) -> Heard:
+    """Return the complaints and signs in some words; a complaint's own key or its text is taken as it stands.
+
+    ``languages`` are those that complaints are heard in beside English and the translator's.
+    """
+    text = folded(says[:MOST_LETTERS])
     if text in COMPLAINTS:
         return Heard((text,), ("soon-rings",) if text == "rings" else ())
     for key, complaint in COMPLAINTS.items():
-        if translator is not None and text == translator.gettext(complaint).lower():
+        if translator is not None and text == folded(translator.gettext(complaint)):
             return hear(key)
-    found = [key for key in COMPLAINTS if any(re.search(part, text) for part in COMPLAINT_WORDS[key])]
-    unsaid = {other for key in found for other in _RATHER.get(key, ())}
-    complaints = tuple(key for key in found if key not in unsaid)
-    signs = signs_in(text)
-    if "rings" in complaints and "today-rings" not in signs:
-        signs.append("soon-rings")
-    return Heard(complaints, tuple(signs))
+    spoken = {*languages, None if translator is None else translator.language}
+    heard = {key for key in COMPLAINTS if any(re.search(part, text) for part in COMPLAINT_WORDS[key])}
+    heard |= {key for code, ear in ears().items() if code in spoken for key in ear.complaints_in(text)}
+    unsaid = {other for key in heard for other in _RATHER.get(key, ())}
+    complaints = tuple(key for key in COMPLAINTS if key in heard - unsaid)
+    return Heard(complaints, tuple(_signs(text, complaints)))
+
+
+def _signs(text: str, complaints: Iterable[str]) -> list[str]:
+    """Return the signs in words, in the order of their list, and rings as one for soon where nothing makes it today."""
+    said = without_denied(text)
+    heard = set(signs_in(text)) & set(signs_in(said))  # a word that two languages share may be denied in the other
+    heard = heard.union(*(ear.signs_in(said) for ear in ears().values()))
+    signs = [key for key in SIGN_WORDS if key in heard]
+    return [*signs, "soon-rings"] if "rings" in complaints and "today-rings" not in signs else signs

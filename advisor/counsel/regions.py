@@ -31,3 +31,10 @@ REGIONS: dict[str, Region] = {
 def region_of(key: str | None) -> Region:
     """Return the region of a key; none or an unknown one is international."""
     return REGIONS.get(key or "", REGIONS["international"])
+
+
+def paper_of(own: str | None, *, region: str | None) -> Literal["A4", "Letter"]:
+    """Return the size of paper: the shop's own choice (A4 or letter), else what the region's printers hold."""
+    if own is None:
+        return region_of(region).paper
+    return "Letter" if own == "letter" else "A4"

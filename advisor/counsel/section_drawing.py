@@ -11,6 +11,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from advisor.counsel.answer import place as edge_place
+from advisor.counsel.bench import PLACE_TEXTS
 from advisor.counsel.compare import Computed
 from advisor.counsel.prescription import EYES, Eye
 from advisor.optics.lens_form import curvature_along, sag
@@ -129,8 +130,8 @@ def outlines(computed: Computed) -> list[Outline]:
                 thinnest=_pair(thin),
                 thickest_mm=float(shape.thickest_mm[k, e]),
                 thinnest_mm=float(shape.thinnest_mm[k, e]),
-                thickest_at=str(edge_place(shape.thickest_deg[k, e])["word"]),
-                thinnest_at=str(edge_place(shape.thinnest_deg[k, e])["word"]),
+                thickest_at=PLACE_TEXTS[str(edge_place(shape.thickest_deg[k, e])["word"])],
+                thinnest_at=PLACE_TEXTS[str(edge_place(shape.thinnest_deg[k, e])["word"])],
                 centre_mm=float(shape.centre_mm[k, e]),
                 width_mm=width,
                 height_mm=height,

@@ -1,8 +1,8 @@
 """What a wearer's sheet says: blocks of phrases with figures, every figure taken from the comparison."""
 
 import datetime as dt
-from collections.abc import Callable, Mapping
-from dataclasses import dataclass
+from collections.abc import Callable, Collection, Mapping
+from dataclasses import dataclass, replace
 from typing import Literal
 
 from advisor.counsel.care import CARE_TEXTS, care_lines
@@ -15,6 +15,7 @@ from advisor.counsel.phrases import Phrase, mark
 from advisor.counsel.reach import near_only
 from advisor.counsel.sheet_facts import MOST_FACTS, bars, facts, size_change_percent
 from advisor.counsel.sheet_lines import chosen, coating, come_back, first_days, phrases, purpose
+from advisor.counsel.sheet_switches import DRAWN, MAY_BE_OFF
 from advisor.counsel.sheet_texts import CARE_TITLE, HEADINGS, LINES, TITLE
 from advisor.errors import TwolightError
 
@@ -162,3 +163,20 @@ def care_blocks(case: Case | None) -> tuple[Block, Block]:
         answers = answers | {"child": "yes"}
     do, dont = (care_lines(answers, kind=kind) for kind in ("do", "dont"))
     return Block("do", "do", tuple(do)), Block("dont", "dont", tuple(dont))
+
+
+def without_lines(sheet: Sheet, off: Collection[str]) -> Sheet:
+    """Return a sheet without the lines a shop switched off; what it may not switch off stays, whatever is asked.
+
+    A block without lines goes, and the bars go with the line they draw.
+    """
+    gone = frozenset(off).intersection(MAY_BE_OFF)
+    kept = (
+        replace(block, lines=tuple(line for line in block.lines if line.code not in gone)) for block in sheet.blocks
+    )
+    told = {line.code for block in sheet.blocks for line in block.lines}
+    return replace(
+        sheet,
+        blocks=tuple(block for block in kept if block.lines),
+        bars=() if gone.intersection(DRAWN, told) else sheet.bars,
+    )

@@ -3,22 +3,24 @@
 from collections.abc import Iterable, Iterator, Mapping, Sequence
 from functools import cache
 from pathlib import Path
-from typing import Annotated, Any, TypeVar
+from typing import Annotated, Any, Literal, TypeVar
 
 from pydantic import Field, ValidationError
 
 from advisor.counsel.choices import CoatingRef, Faces, MaterialRef, Option, TintRef, faces_of
 from advisor.counsel.faults import Fault, Faults, fault, faults_from, unknown_key
-from advisor.counsel.fields import Key, Line, Number, Paragraph, Strict
+from advisor.counsel.fields import Choice, Key, Line, Number, Paragraph, Strict
 from advisor.counsel.files import parse_toml, read_text
 from advisor.counsel.phrases import mark
 from advisor.counsel.regions import REGIONS
+from advisor.counsel.sheet_switches import switch_faults
 from advisor.counsel.stock_items import IN_PLACE, Coating, Design, Item, Material, Offer, Scene, Tint
 from advisor.counsel.toml_writing import toml_text
 from advisor.errors import TwolightError
 from advisor.resources import data_file
 
 CURRENCY = "EUR"  # where a range names none
+MOST_OF_PARAGRAPH = 600  # letters of the shop's own paragraph, so that a sheet keeps to its pages
 BARE = Coating(key="bare", label="Bare", price=0.0, layers=())
 
 K = TypeVar("K", bound=Item | Scene)
@@ -34,7 +36,9 @@ class Shop(Strict):
     """The shop itself.
 
     ``region`` names the tolerances, paper, emergency wording and tint names that apply: one of ``regions.REGIONS``
-    (international, eu, uk, us); left out, it is the built-in range's, international.
+    (international, eu, uk, us); left out, it is the built-in range's, international. ``paper`` left out is the
+    region's. ``paragraph`` is printed on the wearer's sheet as written, in every language; ``lines_off`` names lines
+    of that sheet that the shop leaves out, which no caution can be (see ``sheet_switches``).
     """
 
     name: Line | None = None
@@ -42,6 +46,9 @@ class Shop(Strict):
     region: Key | None = None
     currency: Annotated[str, Field(pattern=r"^[A-Z]{3}$")] | None = None
     retention_months: Number[Annotated[int, Field(ge=1, le=1200)] | None] = None
+    paper: Choice[Literal["A4", "letter"] | None] = None
+    paragraph: Annotated[Paragraph, Field(max_length=MOST_OF_PARAGRAPH)] | None = None
+    lines_off: Annotated[tuple[Key, ...], Field(max_length=200)] | None = None
     cleaning: tuple[Key, ...] | None = None
     default_options: tuple[Option, ...] | None = None
 
@@ -138,6 +145,7 @@ def range_faults(stock: Range, *, file: str = "") -> Iterator[Fault]:
             yield fault("bare-has-film", file=file, field=f"coating[{place}]")
     if stock.shop.region is not None and stock.shop.region not in REGIONS:
         yield fault("not-one-of", file=file, field="shop.region", figures={"expected": ", ".join(REGIONS)})
+    yield from switch_faults(stock.shop.lines_off or (), file=file)
     for place, offer in enumerate(stock.offer):
         yield from option_faults(offer, stock=stock, place=f"offer[{place}]", file=file)
     for place, option in enumerate(stock.shop.default_options or ()):

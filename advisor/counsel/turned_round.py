@@ -15,6 +15,7 @@ from advisor.counsel.names import called, coating_name, material_name, tint_name
 from advisor.counsel.phrases import Phrase, Translator
 from advisor.counsel.reach import near_only
 from advisor.counsel.spoken import from_behind, ghost_phrase, ghosts_of, worst_ghost
+from advisor.counsel.turned_sizes import Size, listed, size_of, thick_and_heavy
 from advisor.optics.visibility import VERDICTS
 
 MOST_COLUMNS = 4
@@ -23,7 +24,6 @@ DARK_AT_NIGHT = frozenset({"not-for-driving-tint", "not-for-night-driving-tint"}
 NEEDS_TOUGH = frozenset({"child", "one-eye", "impact"})
 BEHIND = ("behind-back", "behind-front")
 FAINTER_FROM = 1.5  # a smaller ratio is not told
-MM_DIGITS = 1  # thicknesses are shown, and so compared, to a tenth
 
 
 @dataclass(frozen=True)
@@ -54,20 +54,10 @@ class TurnedRound:
         return max((one.thick_mm for one in self.columns if one.thick_mm is not None), default=None)
 
 
-@dataclass(frozen=True)
-class _Size:
-    """How thick and heavy the pair of one option is, as shown."""
-
-    number: int
-    thick_mm: float
-    at_edge: bool
-    pair_g: float
-
-
 def turned_round(computed: Computed, answer: Comparison, *, translator: Translator) -> TurnedRound:
     """Return the options that can be made, in the wearer's words."""
     made = [option for option in answer.options if option.right and option.left][:MOST_COLUMNS]
-    sizes = [size for size in map(_size, made) if size is not None]
+    sizes = [size for size in map(size_of, made) if size is not None]
     strengths = _strengths_from_behind(made)
     wearer = computed.case.visit.wearer
     return TurnedRound(
@@ -87,7 +77,7 @@ def _column(
     computed: Computed,
     option: OptionFigures,
     advice: Advice | None,
-    sizes: Sequence[_Size],
+    sizes: Sequence[Size],
     strengths: Mapping[int, float],
     translator: Translator,
 ) -> Column:
@@ -102,7 +92,7 @@ def _column(
         not_for=tuple(_not_for(codes, laid)),
         price=option.price,
         thick_mm=None if size is None else size.thick_mm,
-        thick=() if size is None else tuple(_thick(size, sizes)),
+        thick=() if size is None else tuple(thick_and_heavy(size, sizes)),
         see=(*_second_light(option, lamps=lamps), *_from_behind(option, strengths), *_seen_by_others(option.right)),
     )
 
@@ -142,37 +132,6 @@ def _not_for(codes: Iterable[str], laid: Laid) -> Iterator[Phrase]:
         yield Phrase("not-tough")
 
 
-def _size(option: OptionFigures) -> _Size | None:
-    eyes = [eye for eye in (option.right, option.left) if eye is not None]
-    edges = [eye.edge_thickest_mm for eye in eyes if eye.edge_thickest_mm is not None]
-    centres = [eye.centre_mm for eye in eyes if eye.centre_mm is not None]
-    weights = [eye.weight_g for eye in eyes if eye.weight_g is not None]
-    if not (len(edges) == len(centres) == len(weights) == len(eyes)):
-        return None
-    thick_mm = round(max(*edges, *centres), MM_DIGITS)
-    return _Size(option.index + 1, thick_mm, max(edges) >= max(centres), round(sum(weights)))
-
-
-def _thick(size: _Size, sizes: Sequence[_Size]) -> Iterator[Phrase]:
-    """Yield how thick, how that is against the others, and how heavy; compared as shown."""
-    yield Phrase("edge" if size.at_edge else "middle", {"thick_mm": size.thick_mm})
-    least_mm = min(one.thick_mm for one in sizes)
-    alike = [one.number for one in sizes if one.thick_mm == size.thick_mm and one is not size]
-    if alike:
-        yield Phrase("as-thick", {"others": _listed(alike)})
-    elif size.thick_mm > least_mm:
-        thinnest = [one.number for one in sizes if one.thick_mm == least_mm]
-        yield Phrase("thicker", {"more_mm": size.thick_mm - least_mm, "others": _listed(thinnest)})
-    elif len(sizes) > 1:
-        yield Phrase("thinnest")
-    lightest = len(sizes) > 1 and all(one.pair_g > size.pair_g for one in sizes if one is not size)
-    yield Phrase("lightest" if lightest else "weight", {"pair_g": size.pair_g})
-
-
-def _listed(numbers: Iterable[int]) -> str:
-    return ", ".join(str(number) for number in numbers)
-
-
 def _second_light(option: OptionFigures, *, lamps: bool) -> Iterator[Phrase]:
     """Yield the worst second image beside lamps at night, where the pair is meant for looking at lamps by night."""
     ghost = worst_ghost(option) if lamps else None
@@ -197,7 +156,7 @@ def _from_behind(option: OptionFigures, strengths: Mapping[int, float]) -> Itera
         return
     own, most = strengths.get(option.index + 1, 0.0), max(strengths.values(), default=0.0)
     if own > 0.0 and most / own >= FAINTER_FROM:
-        strongest = _listed(number for number, strength in strengths.items() if most / strength < FAINTER_FROM)
+        strongest = listed(number for number, strength in strengths.items() if most / strength < FAINTER_FROM)
         yield Phrase("behind-fainter", {"fainter": round(most / own), "others": strongest})
     else:
         yield behind

@@ -48,6 +48,11 @@ def find(connection: Connection, draft_id: str) -> SavedDraft:
     return SavedDraft(*row)
 
 
+def every(connection: Connection) -> list[SavedDraft]:
+    """Return every draft there is."""
+    return [SavedDraft(*row) for row in connection.execute(select(tables.draft))]
+
+
 def add(connection: Connection, fields_json: str, *, visit_id: str | None, visit_edit: int | None) -> SavedDraft:
     """Store a new draft, and drop those that were left lying."""
     erase_left_lying(connection)

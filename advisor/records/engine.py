@@ -1,4 +1,4 @@
-"""How a connection is made: a private SQLite file in the data folder, or a PostgreSQL server by URL.
+"""How a connection to a private SQLite file in the data folder is made; ``server`` makes those to a PostgreSQL server.
 
 Every write on SQLite begins with ``BEGIN IMMEDIATE``: a transaction that reads first and writes later fails at once
 when another writer came between, whatever the busy timeout. Reads begin plainly and see one state throughout.
@@ -8,8 +8,10 @@ import os
 import sqlite3
 from pathlib import Path
 
-from sqlalchemy import URL, Connection, Engine, create_engine, event, make_url
+from sqlalchemy import URL, Connection, Engine, create_engine, event, exc
 from sqlalchemy.pool import ConnectionPoolEntry
+
+from advisor.records.trouble import StoreGone
 
 BUSY_TIMEOUT_MS = 10_000
 _PRAGMAS = (
@@ -39,6 +41,15 @@ def _prepare_sqlite(connection: sqlite3.Connection, _entry: ConnectionPoolEntry)
         connection.execute(f"PRAGMA {pragma}")
 
 
+def _identity(file: Path) -> tuple[int, int]:
+    """Return what tells a file from another of the same name."""
+    try:
+        found = file.stat()
+    except OSError as error:
+        raise StoreGone(str(file)) from error
+    return found.st_dev, found.st_ino
+
+
 def _begin_sqlite(connection: Connection) -> None:
     writing = connection.get_execution_options().get("writing", False)
     connection.exec_driver_sql("BEGIN IMMEDIATE" if writing else "BEGIN")
@@ -46,15 +57,28 @@ def _begin_sqlite(connection: Connection) -> None:
 
 def sqlite_engine(file: Path) -> Engine:
     """Return an engine on this file, which must exist."""
-    engine = create_engine(URL.create("sqlite+pysqlite", database=str(file)))
+    engine = create_engine(URL.create("sqlite+pysqlite", database=str(file)), hide_parameters=True)
     event.listen(engine, "connect", _prepare_sqlite)
     event.listen(engine, "begin", _begin_sqlite)
+    _watch(engine, file)
     return engine
 
 
-def server_engine(url: str) -> Engine:
-    """Return an engine on a database server."""
-    address = make_url(url)
-    if address.drivername == "postgresql":
-        address = address.set(drivername="postgresql+psycopg")
-    return create_engine(address, pool_pre_ping=True)
+def _watch(engine: Engine, file: Path) -> None:
+    """See before every use that the file is still there: what is written into one that was removed is lost.
+
+    A file that was put in its place by a restore is opened anew; one that is gone is told, and never made again empty.
+    """
+
+    @event.listens_for(engine, "do_connect")
+    def before_opening(*_arguments: object) -> None:
+        _identity(file)
+
+    @event.listens_for(engine, "connect")
+    def opened(_connection: sqlite3.Connection, entry: ConnectionPoolEntry) -> None:
+        entry.info["file"] = _identity(file)
+
+    @event.listens_for(engine, "checkout")
+    def before_use(_connection: object, entry: ConnectionPoolEntry, _proxy: object) -> None:
+        if entry.info["file"] != _identity(file):
+            raise exc.DisconnectionError

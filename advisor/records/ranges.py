@@ -1,14 +1,16 @@
 """What the shop sold and when: each distinct range text is kept once, and one of them is the present one."""
 
+import base64
 import hashlib
 from dataclasses import dataclass
 
-from sqlalchemy import Connection, delete, insert, select
+from sqlalchemy import Connection, delete, insert, select, update
 from sqlalchemy.exc import IntegrityError
 
 from advisor.records import tables
 
 CURRENT = "current-range"
+LOGO = "logo"
 
 
 @dataclass(frozen=True)
@@ -53,5 +55,24 @@ def setting(connection: Connection, key: str) -> str | None:
 
 def set_setting(connection: Connection, key: str, value: str) -> None:
     """Store a setting over the one before."""
-    connection.execute(delete(tables.setting).where(tables.setting.c.key == key))
-    connection.execute(insert(tables.setting).values(key=key, value=value))
+    change = update(tables.setting).where(tables.setting.c.key == key).values(value=value)
+    if connection.execute(change).rowcount == 0:
+        try:
+            with connection.begin_nested():
+                connection.execute(insert(tables.setting).values(key=key, value=value))
+        except IntegrityError:  # on a server another desk may have set it first meanwhile
+            connection.execute(change)
+
+
+def logo(connection: Connection) -> bytes | None:
+    """Return the shop's logo, which is stored as text."""
+    text = setting(connection, LOGO)
+    return base64.b64decode(text, validate=True) if text else None
+
+
+def set_logo(connection: Connection, picture: bytes) -> None:
+    """Store a logo over the one before; an empty one leaves none."""
+    if picture:
+        set_setting(connection, LOGO, base64.b64encode(picture).decode())
+    else:
+        connection.execute(delete(tables.setting).where(tables.setting.c.key == LOGO))

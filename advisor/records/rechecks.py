@@ -2,11 +2,11 @@
 
 from dataclasses import astuple, dataclass, replace
 
-from sqlalchemy import Connection, insert, select
+from sqlalchemy import Connection, insert, select, update
 
 from advisor.counsel.phrases import mark
 from advisor.errors import TwolightError
-from advisor.records import tables, visits
+from advisor.records import events, tables, visits
 
 _RECHECK = tables.recheck.c
 
@@ -45,6 +45,7 @@ def add(
     who_pays: str,
     new_visit_id: str | None,
     recheck_id: str | None,
+    who: str = events.HERE,
 ) -> SavedRecheck:
     """Store an outcome; one sent twice under the same identifier is stored once, another one is refused."""
     visits.find(connection, visit_id)
@@ -59,6 +60,7 @@ def add(
             raise RecheckChanged
         return stored
     connection.execute(insert(tables.recheck).values(astuple(saved)))
+    events.add(connection, "rechecked", who=who, visit_id=visit_id)
     return saved
 
 
@@ -74,3 +76,18 @@ def of_visit(connection: Connection, visit_id: str) -> list[SavedRecheck]:
     """Return what was recorded of a visit, the last first."""
     query = select(tables.recheck).where(_RECHECK.visit_id == visit_id).order_by(_RECHECK.at.desc(), _RECHECK.id)
     return [SavedRecheck(*row) for row in connection.execute(query)]
+
+
+def leading_to(connection: Connection, visit_id: str) -> list[SavedRecheck]:
+    """Return the records whose new order is this visit, the last first."""
+    query = select(tables.recheck).where(_RECHECK.new_visit_id == visit_id)
+    return [SavedRecheck(*row) for row in connection.execute(query.order_by(_RECHECK.at.desc(), _RECHECK.id))]
+
+
+def link(connection: Connection, recheck_id: str, *, new_visit_id: str, who: str = events.HERE) -> SavedRecheck:
+    """Say which visit is the new order that came of a record, or raise RecheckMissing or VisitMissing."""
+    visits.find(connection, new_visit_id)
+    found = find(connection, recheck_id)
+    connection.execute(update(tables.recheck).where(_RECHECK.id == recheck_id).values(new_visit_id=new_visit_id))
+    events.add(connection, "linked", who=who, visit_id=found.visit_id)
+    return find(connection, recheck_id)

@@ -7,11 +7,12 @@ from pathlib import Path
 
 from sqlalchemy import Connection, Engine, column, inspect, select, table
 
+from advisor.records.server import StoreForeign, begin_upgrade
 from advisor.records.trouble import StoreNewer, StoreUnreadable
 
 MIGRATIONS = Path(__file__).resolve().parent / "migrations"
 # Every version of the tables, oldest first; the last is the present one.
-REVISIONS = ("0001", "0002", "0003")
+REVISIONS = ("0001", "0002", "0003", "0004", "0005")
 
 _VERSION = table("alembic_version", column("version_num"))
 
@@ -41,17 +42,20 @@ def bring_up_to_date(engine: Engine, *, place: str) -> None:
     ------
     StoreNewer
         If the tables have a version this program does not know.
-    StoreUnreadable
-        If the database holds tables that are not ours.
+    StoreUnreadable, StoreForeign
+        If the file, or the database on a server, holds tables that are not ours.
+    StoreEncoding
+        If a database on a server cannot keep every letter.
     """
     with engine.connect() as connection:
         found = stored_revision(connection)
     if found == REVISIONS[-1]:
         return
     with engine.execution_options(writing=True).begin() as connection:
+        begin_upgrade(connection, place=place)
         found = stored_revision(connection)  # another process may have been quicker
         if found is None and inspect(connection).get_table_names():
-            raise StoreUnreadable(place)
+            raise (StoreUnreadable if engine.dialect.name == "sqlite" else StoreForeign)(place)
         if found is not None and found not in REVISIONS:
             raise StoreNewer(place)
         if found != REVISIONS[-1]:

@@ -1,26 +1,29 @@
 """The records of a shop: the one door through which the rest of the program reads and writes them."""
 
+import binascii
+import json
 import zlib
 from collections.abc import Iterator
 from contextlib import contextmanager
 from pathlib import Path
 from types import TracebackType
 
-from sqlalchemy import Connection, Engine, exc, make_url
+from sqlalchemy import Connection, Engine, exc
 
-from advisor.records import drafts, ranges, rechecks, saved_forms, visits
+from advisor.records import drafts, events, finding, ranges, rechecks, saved_forms, server, visits
+from advisor.records.bookkeeping import Bookkeeping
 from advisor.records.drafts import SavedDraft
-from advisor.records.engine import make_private, server_engine, sqlite_engine
+from advisor.records.engine import make_private, sqlite_engine
 from advisor.records.location import database_file
 from advisor.records.ranges import RangeVersion
 from advisor.records.rechecks import SavedRecheck
 from advisor.records.saved_forms import SentForm
 from advisor.records.schema import bring_up_to_date
 from advisor.records.trouble import StoreUnreadable, explained
-from advisor.records.visits import Made, PageKey, SavedVisit, VisitLine
+from advisor.records.visits import Made, PageKey, SavedVisit, VisitLine, VisitMissing
 
 
-class Store:
+class Store(Bookkeeping):
     """Visits, drafts, ranges and settings; safe to share between threads.
 
     Errors are subclasses of :class:`advisor.records.trouble.StoreError`, one for each reason.
@@ -28,14 +31,16 @@ class Store:
 
     def __init__(self, engine: Engine, place: str) -> None:
         self._engine = engine
+        self._reader = server.reading(engine)
         self._writer = engine.execution_options(writing=True)
         self.place = place
 
     @classmethod
     def open(cls, place: Path | str) -> "Store":
         """Open the records in a data folder or at a database URL, making or upgrading the tables first."""
-        if isinstance(place, str) and "://" in place:
-            name, engine = make_url(place).render_as_string(hide_password=True), server_engine(place)
+        if isinstance(place, str) and server.is_address(place):
+            address = server.address_of(place)
+            name, engine = server.shown(address), server.server_engine(address)
         else:
             file = database_file(Path(place).absolute())
             name, engine = str(file), sqlite_engine(file)
@@ -63,16 +68,21 @@ class Store:
 
     @contextmanager
     def _reading(self) -> Iterator[Connection]:
-        with explained(self.place), self._engine.begin() as connection:
-            try:
-                yield connection
-            except zlib.error as error:
-                raise StoreUnreadable(self.place) from error
+        with explained(self.place), self._damage_told(), self._reader.begin() as connection:
+            yield connection
 
     @contextmanager
     def _writing(self) -> Iterator[Connection]:
-        with explained(self.place), self._writer.begin() as connection:
+        with explained(self.place), self._damage_told(), self._writer.begin() as connection:
             yield connection
+
+    @contextmanager
+    def _damage_told(self) -> Iterator[None]:
+        """Say of a row whose content cannot be unpacked or read that the records are damaged."""
+        try:
+            yield
+        except (zlib.error, json.JSONDecodeError, UnicodeDecodeError, binascii.Error) as error:
+            raise StoreUnreadable(self.place) from error
 
     def save_visit(
         self,
@@ -84,6 +94,7 @@ class Store:
         visit_id: str | None = None,
         edit_seen: int | None = None,
         form: SentForm | None = None,
+        who: str = events.HERE,
     ) -> SavedVisit:
         """Save a new visit, or save over the edit of ``visit_id`` that the editor saw; with ``form``, once for a form.
 
@@ -100,9 +111,9 @@ class Store:
             raise ValueError("visit_id and edit_seen go together: give both or neither")
         over = None if visit_id is None or edit_seen is None else (visit_id, edit_seen)
         try:
-            return self._save(visit_json, range_toml, version, answer_json, over, form)
+            return self._save(visit_json, range_toml, version, answer_json, over, form, who)
         except exc.IntegrityError:  # a server lets the same form in twice at once: the later of the two looks again
-            return self._save(visit_json, range_toml, version, answer_json, over, form)
+            return self._save(visit_json, range_toml, version, answer_json, over, form, who)
 
     def _save(
         self,
@@ -112,9 +123,10 @@ class Store:
         answer_json: str,
         over: tuple[str, int] | None,
         form: SentForm | None,
+        who: str,
     ) -> SavedVisit:
         with self._writing() as connection:
-            made = Made(visit_json, ranges.keep(connection, range_toml), version, answer_json)
+            made = Made(visit_json, ranges.keep(connection, range_toml), version, answer_json, who)
             if form is not None:
                 return saved_forms.save(connection, made, form=form, over=over)
             return visits.add(connection, made) if over is None else visits.change(connection, made, over=over)
@@ -136,12 +148,12 @@ class Store:
         ``key`` of the last line.
         """
         with self._reading() as connection:
-            return visits.page(connection, search, limit=limit, after=after)
+            return finding.page(connection, search, limit=limit, after=after)
 
     def erase_visit(self, visit_id: str) -> None:
         """Erase a visit and the drafts that began from it, or raise VisitMissing."""
-        with self._writing() as connection:
-            visits.erase(connection, visit_id)
+        if not self.erase([visit_id]).visits:
+            raise VisitMissing
 
     def save_recheck(
         self,
@@ -152,21 +164,30 @@ class Store:
         who_pays: str,
         new_visit_id: str | None = None,
         recheck_id: str | None = None,
+        who: str = events.HERE,
     ) -> SavedRecheck:
         """Record what came of a return visit; sent twice under one ``recheck_id`` it is recorded once.
 
         Raises VisitMissing where the visit, or the visit of the new order, is not there.
         """
-        with self._writing() as connection:
-            return rechecks.add(
-                connection,
-                content_json,
-                visit_id=visit_id,
-                outcome=outcome,
-                who_pays=who_pays,
-                new_visit_id=new_visit_id,
-                recheck_id=recheck_id,
-            )
+
+        def record() -> SavedRecheck:
+            with self._writing() as connection:
+                return rechecks.add(
+                    connection,
+                    content_json,
+                    visit_id=visit_id,
+                    outcome=outcome,
+                    who_pays=who_pays,
+                    new_visit_id=new_visit_id,
+                    recheck_id=recheck_id,
+                    who=who,
+                )
+
+        try:
+            return record()
+        except exc.IntegrityError:  # as above, or the visit was erased at this very moment
+            return record()
 
     def get_recheck(self, recheck_id: str) -> SavedRecheck:
         """Return a recorded outcome, or raise RecheckMissing."""
@@ -207,11 +228,17 @@ class Store:
         with self._writing() as connection:
             drafts.erase(connection, draft_id)
 
-    def set_range(self, toml: str) -> str:
-        """Make this text the shop's range from now on; return its hash. Visits keep the range they were made with."""
+    def set_range(self, toml: str, *, who: str = events.HERE, logo: bytes | None = None) -> str:
+        """Make this text the shop's range from now on; return its hash. Visits keep the range they were made with.
+
+        A ``logo`` is stored with it: None leaves the one there is, and an empty one takes it away.
+        """
         with self._writing() as connection:
             key = ranges.keep(connection, toml)
             ranges.set_setting(connection, ranges.CURRENT, key)
+            if logo is not None:
+                ranges.set_logo(connection, logo)
+            events.add(connection, "range-changed", who=who)
             return key
 
     def current_range(self) -> RangeVersion | None:
@@ -224,6 +251,11 @@ class Store:
         """Return the range of this hash."""
         with self._reading() as connection:
             return ranges.find(connection, key)
+
+    def get_logo(self) -> bytes | None:
+        """Return the shop's logo as PNG, or None where it has none."""
+        with self._reading() as connection:
+            return ranges.logo(connection)
 
     def get_setting(self, key: str) -> str | None:
         """Return a setting."""

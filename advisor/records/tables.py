@@ -1,7 +1,7 @@
 """The tables, written once for SQLite and PostgreSQL alike.
 
 Times are ISO-8601 text in UTC with microseconds, so they sort as text. Identifiers are random: nothing about a wearer
-can be guessed from an address. Search columns hold folded text (see ``folding``) and are never shown.
+can be guessed from an address. The words a visit is found by are folded (see ``folding``) and never shown.
 """
 
 import datetime
@@ -26,16 +26,23 @@ visit = Table(
     Column("created_at", String(32), nullable=False),
     Column("changed_at", String(32), nullable=False),
     Column("edit", Integer, nullable=False),
-    Column("name_folded", Text, nullable=False),
-    Column("reference_folded", Text, nullable=False),
     Column("date", String(10), nullable=False),
-    Column("note_folded", Text, nullable=False),
     Column("visit", Text, nullable=False),  # JSON, twolight-visit-1
     Column("range_hash", String(64), ForeignKey("range_version.hash"), nullable=False),
     Column("version", String(40), nullable=False),  # of the program that computed the answer
     Column("answer", LargeBinary, nullable=False),  # JSON, twolight-comparison-1, compressed by zlib
     Index("ix_visit_changed", "changed_at", "id"),
     Index("ix_visit_range", "range_hash"),
+)
+
+# Sorted by code point on a server too, whatever its language, so that one beginning is one stretch of the index.
+visit_word = Table(
+    "visit_word",
+    metadata,
+    Column("visit_id", String(32), ForeignKey("visit.id", ondelete="CASCADE"), primary_key=True),
+    Column("word", String(40).with_variant(String(40, collation="C"), "postgresql"), primary_key=True),
+    Index("ix_visit_word_word", "word", "visit_id"),
+    sqlite_with_rowid=False,
 )
 
 draft = Table(
@@ -75,6 +82,19 @@ recheck = Table(
     Column("content", Text, nullable=False),  # JSON, twolight-recheck-record-1
     Index("ix_recheck_visit", "visit_id", "at"),
     Index("ix_recheck_new_visit", "new_visit_id"),
+)
+
+# Who did what, without contents; a row outlives its visit and loses the link to it.
+event = Table(
+    "event",
+    metadata,
+    Column("id", String(32), primary_key=True),
+    Column("at", String(32), nullable=False),
+    Column("who", String(80), nullable=False),
+    Column("what", String(40), nullable=False),
+    Column("visit_id", String(32), ForeignKey("visit.id", ondelete="SET NULL")),
+    Index("ix_event_at", "at", "id"),
+    Index("ix_event_visit", "visit_id", "at"),
 )
 
 setting = Table(

@@ -3,6 +3,7 @@
 Each class keeps its sentence in ``text`` and the words to put in as ``figures``, so that the screen can translate it.
 """
 
+import errno
 import sqlite3
 from collections.abc import Iterator, Mapping
 from contextlib import contextmanager
@@ -52,10 +53,25 @@ class StoreReadOnly(StoreError):
     text = mark("The records in %(place)s may not be opened or written here; choose another data folder.")
 
 
-class StoreUnreachable(StoreError):
-    """The database server does not answer."""
+class StoreGone(StoreError):
+    """The file, or the folder or disk it lay on, has been taken away while the program ran."""
 
-    text = mark("The records at %(place)s do not answer; nothing was saved. Check the network and try again.")
+    text = mark("The records in %(place)s are no longer there; nothing was saved. Bring them back and save again.")
+
+
+class StoreUnreachable(StoreError):
+    """The database server does not answer, or stopped before it said whether it had saved."""
+
+    text = mark(
+        "The records at %(place)s do not answer; nothing that was saved before is lost. "
+        "Check the network and the server, and save again."
+    )
+
+
+class StoreRefused(StoreError):
+    """The database server answers and does not let us in."""
+
+    text = mark("The server of %(place)s lets nobody in so; check the name, the password and the database's own name.")
 
 
 # Primary SQLite result codes (the low byte of the extended code) and PostgreSQL SQLSTATE codes.
@@ -76,7 +92,17 @@ _POSTGRESQL: Mapping[str, type[StoreError]] = {
     "40P01": StoreLocked,
     "25006": StoreReadOnly,
     "42501": StoreReadOnly,
+    "XX001": StoreUnreadable,
+    "XX002": StoreUnreadable,
 }
+
+
+def sqlite_reason(error: sqlite3.Error) -> type[StoreError] | None:
+    """Return the class that explains an error of SQLite; text that is no UTF-8 comes without a code."""
+    code = getattr(error, "sqlite_errorcode", None)
+    if isinstance(code, int):
+        return _SQLITE.get(code & 0xFF)
+    return StoreUnreadable if "decode to UTF-8" in str(error) else None
 
 
 def reason(error: exc.SQLAlchemyError) -> type[StoreError] | None:
@@ -84,14 +110,28 @@ def reason(error: exc.SQLAlchemyError) -> type[StoreError] | None:
     if isinstance(error, exc.TimeoutError):
         return StoreLocked
     cause = error.orig if isinstance(error, exc.DBAPIError) else None
-    code = getattr(cause, "sqlite_errorcode", None)
-    if isinstance(code, int):
-        return _SQLITE.get(code & 0xFF)
+    if isinstance(cause, sqlite3.Error):
+        return sqlite_reason(cause)
     state = getattr(cause, "sqlstate", None)
     if isinstance(state, str) and state in _POSTGRESQL:
         return _POSTGRESQL[state]
-    lost = isinstance(error, exc.OperationalError) and not isinstance(cause, sqlite3.Error)
-    return StoreUnreachable if lost else None
+    if not isinstance(error, exc.OperationalError):
+        return None
+    connecting = getattr(cause, "pgconn", None)  # there only where no connection came about
+    asked = connecting is not None and (connecting.needs_password or connecting.used_password)
+    return StoreRefused if asked else StoreUnreachable
+
+
+def _leading_to(error: exc.SQLAlchemyError) -> Iterator[exc.SQLAlchemyError]:
+    """Yield an error, then those that were being handled when it arose.
+
+    A disk that fills up ends a whole transaction of SQLite's, and the savepoint that is then to be left is gone.
+    """
+    found: BaseException | None = error
+    while found is not None:
+        if isinstance(found, exc.SQLAlchemyError):
+            yield found
+        found = found.__context__
 
 
 @contextmanager
@@ -100,9 +140,9 @@ def explained(place: str) -> Iterator[None]:
     try:
         yield
     except exc.SQLAlchemyError as error:
-        kind = reason(error)
+        kind = next(filter(None, map(reason, _leading_to(error))), None)
         if kind is None:
             raise
         raise kind(place) from error
     except OSError as error:
-        raise StoreReadOnly(place) from error
+        raise (StoreFull if error.errno == errno.ENOSPC else StoreReadOnly)(place) from error

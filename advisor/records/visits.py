@@ -1,4 +1,4 @@
-"""Visits as stored rows: saved with what was computed, found by the beginnings of words."""
+"""Visits as stored rows: saved with what was computed, and with the words they are found by (see ``finding``)."""
 
 import datetime
 import json
@@ -6,12 +6,11 @@ import zlib
 from dataclasses import dataclass
 from typing import Any, NamedTuple
 
-from sqlalchemy import ColumnElement, Connection, Row, delete, insert, or_, select, tuple_, update
+from sqlalchemy import Connection, Row, insert, select, update
 
 from advisor.counsel.phrases import mark
 from advisor.errors import TwolightError
-from advisor.records import tables
-from advisor.records.folding import fold
+from advisor.records import events, tables, words
 
 _VISIT = tables.visit.c
 
@@ -73,31 +72,33 @@ class VisitMissing(TwolightError):
 
 
 class Made(NamedTuple):
-    """What a visit is saved with: its content, the range and program it was worked out with, and the answer."""
+    """What a visit is saved with: content, the range and program it was worked out with, answer, and who saves it."""
 
     visit_json: str
     range_hash: str
     version: str
     answer_json: str
+    who: str = events.HERE
 
 
-class _Named(NamedTuple):
+class Named(NamedTuple):
+    """What a visit is known by."""
+
     name: str
     reference: str
     note: str
 
 
-def _named(content: dict[str, Any]) -> _Named:
+def named(content: dict[str, Any]) -> Named:
+    """Return what the visit of this content is known by; what it lacks is empty."""
     wearer = content.get("wearer") or {}
-    return _Named(wearer.get("name") or "", content.get("reference") or "", content.get("note") or "")
+    return Named(wearer.get("name") or "", content.get("reference") or "", content.get("note") or "")
 
 
 def _columns(made: Made) -> dict[str, Any]:
     content = json.loads(made.visit_json)
-    named = _named(content)
-    row: dict[str, Any] = {f"{field}_folded": fold(text) for field, text in named._asdict().items()}
-    row |= {"visit": made.visit_json, "answer": zlib.compress(made.answer_json.encode()), "changed_at": tables.now()}
-    row |= {"range_hash": made.range_hash, "version": made.version}
+    row: dict[str, Any] = {"visit": made.visit_json, "answer": zlib.compress(made.answer_json.encode())}
+    row |= {"changed_at": tables.now(), "range_hash": made.range_hash, "version": made.version}
     if content.get("date"):
         row["date"] = content["date"]
     return row
@@ -117,9 +118,18 @@ def _saved(row: Row[Any]) -> SavedVisit:
     )
 
 
-def find(connection: Connection, visit_id: str) -> SavedVisit:
-    """Return a visit, or raise VisitMissing."""
-    row = connection.execute(select(tables.visit).where(_VISIT.id == visit_id)).first()
+def _keep_words(connection: Connection, saved: SavedVisit) -> None:
+    known = named(json.loads(saved.visit_json))
+    words.keep(connection, saved.id, words.words_of(**known._asdict(), date=saved.date))
+
+
+def find(connection: Connection, visit_id: str, *, held: bool = False) -> SavedVisit:
+    """Return a visit, or raise VisitMissing; where it is to be ``held``, nobody changes it before we are done.
+
+    SQLite has one writer at a time and needs no holding.
+    """
+    query = select(tables.visit).where(_VISIT.id == visit_id)
+    row = connection.execute(query.with_for_update() if held else query).first()
     if row is None:
         raise VisitMissing
     return _saved(row)
@@ -130,7 +140,10 @@ def add(connection: Connection, made: Made) -> SavedVisit:
     row = {"date": datetime.date.today().isoformat()} | _columns(made)
     row |= {"id": tables.new_id(), "created_at": row["changed_at"], "edit": 1}
     connection.execute(insert(tables.visit).values(row))
-    return find(connection, row["id"])
+    stored = find(connection, row["id"])
+    _keep_words(connection, stored)
+    events.add(connection, "saved", who=made.who, visit_id=stored.id)
+    return stored
 
 
 def change(connection: Connection, made: Made, *, over: tuple[str, int]) -> SavedVisit:
@@ -142,28 +155,19 @@ def change(connection: Connection, made: Made, *, over: tuple[str, int]) -> Save
     stored = find(connection, visit_id)
     if done.rowcount == 0:
         raise VisitChanged(stored)
+    _keep_words(connection, stored)
+    events.add(connection, "changed", who=made.who, visit_id=stored.id)
     return stored
 
 
-def erase(connection: Connection, visit_id: str) -> None:
-    """Remove a visit and the drafts that began from it, or raise VisitMissing."""
-    if connection.execute(delete(tables.visit).where(_VISIT.id == visit_id)).rowcount == 0:
-        raise VisitMissing
-
-
-def _begins(word: str) -> ColumnElement[bool]:
-    words = (_VISIT.name_folded, _VISIT.reference_folded, _VISIT.note_folded)
-    first = (column.startswith(word, autoescape=True) for column in (*words, _VISIT.date))
-    later = (column.contains(f" {word}", autoescape=True) for column in words)
-    return or_(*first, *later)
-
-
-def page(connection: Connection, search: str, *, limit: int, after: PageKey | None) -> list[VisitLine]:
-    """Return visits, the last changed first, in which every word of the search begins some word."""
-    columns = (_VISIT.id, _VISIT.changed_at, _VISIT.edit, _VISIT.date, _VISIT.visit)
-    query = select(*columns).order_by(_VISIT.changed_at.desc(), _VISIT.id.desc()).limit(limit)
-    query = query.where(*(_begins(word) for word in fold(search).split()))
-    if after is not None:
-        query = query.where(tuple_(_VISIT.changed_at, _VISIT.id) < tuple(after))
-    rows = connection.execute(query)
-    return [VisitLine(*row[:4], *_named(json.loads(row.visit))) for row in rows]
+def note_order(connection: Connection, visit_json: str, *, over: tuple[str, int], who: str) -> SavedVisit:
+    """Store what was ordered into the edit that was seen; the range and the answer stay those it was saved with."""
+    visit_id, edit_seen = over
+    row = {"visit": visit_json, "changed_at": tables.now(), "edit": edit_seen + 1}
+    seen = (_VISIT.id == visit_id) & (_VISIT.edit == edit_seen)
+    done = connection.execute(update(tables.visit).where(seen).values(row))
+    stored = find(connection, visit_id)
+    if done.rowcount == 0:
+        raise VisitChanged(stored)
+    events.add(connection, "ordered", who=who, visit_id=visit_id)
+    return stored

@@ -2,6 +2,7 @@
 
 import mimetypes
 import traceback
+from datetime import date
 from pathlib import Path
 from types import TracebackType
 from typing import Any
@@ -11,21 +12,30 @@ from flask.testing import FlaskClient
 from jinja2 import StrictUndefined
 
 from advisor.resources import resource_dir
-from advisor.web import error_pages, number_fields, policy, ready
+from advisor.web import copies_page, error_pages, number_fields, policy, ready
+from advisor.web.bring_in import bring_in
 from advisor.web.counter import counter
 from advisor.web.desk import EXTENSION, Desk, current_desk
+from advisor.web.events import events
+from advisor.web.exports import exports
 from advisor.web.figure_rows import unbroken
 from advisor.web.first_run import first_run, first_steps
 from advisor.web.language_switch import choices, language_switch, standing_at
+from advisor.web.names_shown import covered, names_hidden, names_shown
 from advisor.web.paper import install_filters
 from advisor.web.paper_pages import paper_pages
 from advisor.web.pasted_line import pasted_line
 from advisor.web.pictures_page import pictures_page
 from advisor.web.range_page import range_page
 from advisor.web.recheck import rechecks
+from advisor.web.retention import retention
 from advisor.web.screen import screen
+from advisor.web.shop_sheet import shop_sheet
+from advisor.web.then_now import then_now
 from advisor.web.turn_round import turn_round
+from advisor.web.visit_story import story_of, visit_story
 from advisor.web.visits import visits
+from advisor.web.wearer import wearer
 
 # Some Windows registries serve these as text/plain, which nosniff then refuses.
 MEDIA_TYPES = {
@@ -35,6 +45,10 @@ MEDIA_TYPES = {
     ".woff2": "font/woff2",
     ".ttf": "font/ttf",
 }
+
+
+# What a shop keeps about its visits: what was said and done, and how it is erased.
+KEPT = (visit_story, then_now, events, wearer, retention, names_shown, copies_page.daily_copies)
 
 
 class _App(Flask):
@@ -56,8 +70,11 @@ class _OwnPageClient(FlaskClient):
         self.environ_base["HTTP_SEC_FETCH_SITE"] = "same-origin"
 
 
-def create_app(*, data_dir: Path, testing: bool = False) -> Flask:
-    """Make the app for the records in a data folder; the folder is made when something is first read or saved."""
+def create_app(*, data_dir: Path, database: str | None = None, testing: bool = False) -> Flask:
+    """Make the app for the records in a data folder, or in the PostgreSQL database whose address is given.
+
+    The folder, or the tables, are made when something is first read or saved.
+    """
     for ending, kind in MEDIA_TYPES.items():
         mimetypes.add_type(kind, ending)
     app = _App(
@@ -71,7 +88,8 @@ def create_app(*, data_dir: Path, testing: bool = False) -> Flask:
         app.test_client_class = _OwnPageClient
     policy.apply(app)
     app.after_request(ready.add_mark)
-    app.extensions[EXTENSION] = Desk(data_dir)
+    app.after_request(copies_page.after_saving)
+    app.extensions[EXTENSION] = Desk(data_dir, database=database)
     _prepare_templates(app)
     error_pages.register(app)
     app.add_url_rule("/health", view_func=health)
@@ -90,6 +108,7 @@ def _prepare_templates(app: Flask) -> None:
     install_filters(app.jinja_env, screen)
     number_fields.install(app.jinja_env)
     app.jinja_env.filters["unbroken"] = unbroken
+    app.jinja_env.filters["day_text"] = lambda text: screen().date(date.fromisoformat(text))
     app.context_processor(_page_values)
 
 
@@ -101,13 +120,17 @@ def _page_values() -> dict[str, Any]:
         "screen_languages": choices(),
         "screen_back": standing_at(),
         "first_steps": first_steps,
+        "visit_story": story_of,
+        "copies_shown": copies_page.copies_shown,
+        "names_hidden": names_hidden,
+        "covered": covered,
     }
 
 
 def _register_blueprints(app: Flask) -> None:
     """Register the blueprints, one for each noun."""
     nouns = (counter, pasted_line, visits, paper_pages, pictures_page, turn_round, rechecks, range_page, first_run)
-    for noun in (*nouns, language_switch):
+    for noun in (*nouns, shop_sheet, bring_in, exports, *KEPT, language_switch):
         app.register_blueprint(noun)
 
 

@@ -24,6 +24,7 @@ from advisor.web.screen import screen
 from advisor.web.sentences import fault_sentence
 from advisor.web.stock_loader import Shelf
 from advisor.web.told import NOTHING, Told
+from advisor.web.traced_frame import frame_in
 from advisor.web.undo_words import turns
 from advisor.web.undoing import Past
 
@@ -93,6 +94,7 @@ def context(editing: Editing, shelf: Shelf, *, told: Told = NOTHING, saved: bool
         "demos": demo_wearers.names(screen()),
         "turns": turns(editing.fields, editing.past or Past(), screen()),
         "line_said": said_of(editing.fields),
+        "frame_in": frame_in,
         "told": told,
         "saved": saved,
     }

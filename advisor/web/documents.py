@@ -19,6 +19,7 @@ from advisor.counsel.visit import Declined, Visit
 from advisor.resources import resource_dir
 from advisor.web.labels import DECLINABLE, DECLINERS
 from advisor.web.language import Language
+from advisor.web.logo import ADDRESS
 from advisor.web.paper import page
 from advisor.web.screen import screen
 
@@ -140,8 +141,8 @@ KINDS = {".ttf": "font/ttf", ".svg": "image/svg+xml"}
 _URL = re.compile(r'url\("\.\./([^"]+)"\)')
 
 
-def standing_alone(html: str) -> str:
-    """Return a page that needs no server: style sheets, fonts and marks are put inside it."""
+def standing_alone(html: str, *, logo: bytes | None = None) -> str:
+    """Return a page that needs no server: style sheets, fonts, marks and the shop's logo are put inside it."""
 
     def style(match: re.Match[str]) -> str:
         text = (resource_dir("static") / match.group(1)).read_text(encoding="utf-8")
@@ -152,4 +153,7 @@ def standing_alone(html: str) -> str:
         content = base64.b64encode(file.read_bytes()).decode()
         return f'url("data:{KINDS[file.suffix]};base64,{content}")'
 
+    if logo is not None:
+        picture = f"data:image/png;base64,{base64.b64encode(logo).decode()}"
+        html = html.replace(f'<img class="logo" src="{ADDRESS}"', f'<img class="logo" src="{picture}"')
     return _LINK.sub(style, html)

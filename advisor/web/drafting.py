@@ -80,9 +80,9 @@ def of_form(form: MultiDict[str, str]) -> Editing:
     return Editing(
         fields_from_form(form),
         token if re.fullmatch("[0-9a-f]{32}", token) else new_token(),
-        form.get("draft") or None,
+        _key(form.get("draft", "")),
         _whole(form.get("draft_edit", "")),
-        form.get("visit") or None,
+        _key(form.get("visit", "")),
         _whole(form.get("visit_edit", "")),
     )
 
@@ -91,6 +91,11 @@ def apart(editing: Editing, *, cut_loose: bool = False) -> Editing:
     """Return the form as one of its own, in no draft yet; cut loose from its visit as well where that is gone."""
     own = Editing(editing.fields, past=Past())
     return own if cut_loose else replace(own, visit_id=editing.visit_id, visit_edit=editing.visit_edit)
+
+
+def _key(text: str) -> str | None:
+    """Return what may be an identifier of the records; a longer one would not go into a column."""
+    return text if re.fullmatch(r"[\w-]{1,32}", text, re.ASCII) else None
 
 
 def _whole(text: str) -> int | None:

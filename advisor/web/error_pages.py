@@ -3,8 +3,6 @@
 No page repeats what was sent, and the log names the place in the code but no value: a wearer's data may be in either.
 """
 
-from collections.abc import Mapping
-
 from flask import Flask, Response, make_response, render_template
 from werkzeug.exceptions import HTTPException, InternalServerError
 
@@ -12,12 +10,13 @@ from advisor.counsel.phrases import mark
 from advisor.errors import TwolightError
 from advisor.records.drafts import DraftChanged, DraftMissing
 from advisor.records.rechecks import RecheckMissing
-from advisor.records.trouble import StoreError
+from advisor.records.trouble import StoreError, StoreFull
 from advisor.records.visits import VisitChanged, VisitMissing
+from advisor.web import form_stays
 from advisor.web.screen import screen
 from advisor.web.sentences import sentence_of
 
-TEXTS: Mapping[int, tuple[str, str]] = {
+TEXTS: dict[int, tuple[str, str]] = {
     400: (mark("This request could not be read"), mark("Go back and try once more.")),
     403: (mark("This request came from another site"), mark("Nothing was changed. Open the page here and try again.")),
     404: (mark("There is no such page"), mark("It may have been erased, or the address is mistyped.")),
@@ -33,6 +32,10 @@ TEXTS: Mapping[int, tuple[str, str]] = {
     ),
     503: (mark("The records cannot be used"), mark("Nothing was saved.")),
 }
+# Of errors of our own alone: no HTTP error is raised with these.
+OWN_TEXTS: dict[int, tuple[str, str]] = {
+    507: (mark("There is no room left"), mark("Nothing was saved.")),
+}
 
 # The first class that fits counts.
 STATUSES: tuple[tuple[type[TwolightError], int], ...] = (
@@ -41,14 +44,16 @@ STATUSES: tuple[tuple[type[TwolightError], int], ...] = (
     (RecheckMissing, 404),
     (VisitChanged, 409),
     (DraftChanged, 409),
+    (StoreFull, 507),
     (StoreError, 503),
     (TwolightError, 400),
 )
 
 
 def _page(status: int, sentence: str | None = None) -> Response:
-    title, text = TEXTS.get(status, TEXTS[500 if status >= 500 else 400])
-    page = render_template("error.html", title=title, sentence=sentence or screen().gettext(text))
+    title, text = (TEXTS | OWN_TEXTS).get(status, TEXTS[500 if status >= 500 else 400])
+    told = sentence or screen().gettext(text)
+    page = render_template("error.html", title=title, sentence=told, screen_back="/")  # no address is repeated
     return make_response(page, status)
 
 
@@ -64,6 +69,8 @@ def http_error(error: HTTPException) -> Response:
 def program_error(error: TwolightError) -> Response:
     """Answer an error of the program's own with its sentence."""
     status = next(status for kind, status in STATUSES if isinstance(error, kind))
+    if isinstance(error, StoreError) and form_stays.holds_form():
+        return form_stays.shown(error, status=status)
     return _page(status, sentence_of(error, screen()))
 
 

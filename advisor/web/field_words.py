@@ -56,9 +56,12 @@ PARTS: Mapping[str, str] = {
     "date": mark("date"),
     "reference": mark("reference"),
     "note": mark("note"),
+    "dispensed_by": mark("dispensed by"),
     "scenes": mark("scenes"),
     "baseline": mark("baseline"),
     "ordered": mark("to be ordered"),
+    "option_count": mark("number of options"),
+    "kept": mark("what this form has no field for"),
     "declined": mark("declined"),
     "declined_by": mark("turned down by"),
     **QUESTIONS,
@@ -66,9 +69,13 @@ PARTS: Mapping[str, str] = {
 
 
 def place_words(name: str, translator: Translator) -> str:
-    """Write the place of a field for a reader: ``options.0.coating.front`` is "option 1 coating front"."""
+    """Write the place of a field for a reader: ``options.0.coating.front`` is "option 1, coating, front"."""
     if name in PLACES:
         return translator.gettext(PLACES[name])
-    return " ".join(
-        str(int(part) + 1) if part.isdigit() else translator.gettext(PARTS.get(part, part)) for part in name.split(".")
-    )
+    words: list[str] = []
+    for part in name.split("."):
+        if part.isdigit() and words:
+            words[-1] += f" {int(part) + 1}"
+        else:
+            words.append(translator.gettext(PARTS.get(part, part)))
+    return ", ".join(words)

@@ -48,8 +48,8 @@ NUMBERS = frozenset({"fitting.working_distance_cm"})  # several numbers in one f
 TRUTHS = frozenset(f"{start}.{eye}.balance" for start in ("prescription", "worn_now.prescription") for eye in EYES)
 
 PLAIN: tuple[str, ...] = (
-    "date", "reference", "note", "wearer.name", "wearer.birth_date", "wearer.birth_year", "wearer.eye_colour",
-    "wearer.language", "wearer.print",
+    "date", "reference", "note", "dispensed_by", "wearer.name", "wearer.birth_date", "wearer.birth_year",
+    "wearer.eye_colour", "wearer.language", "wearer.print",
     *_prescription_names("prescription"),
     "prescription.written", "prescription.vertex_mm", "prescription.for", "prescription.intermediate_add",
     *(f"fitting.{eye}.{name}" for eye in EYES for name in ("pd_mm", "near_pd_mm", "height_mm")),

@@ -13,6 +13,7 @@ from advisor.errors import TwolightError
 
 TRANSLATIONS = Path(__file__).resolve().parent.parent / "translations"
 SOURCE_LANGUAGE = "en"
+LABEL = mark("%(label)s:")
 MINUS = "\N{MINUS SIGN}"
 DIRECTION_MARKS = dict.fromkeys(map(ord, "\N{LEFT-TO-RIGHT MARK}\N{RIGHT-TO-LEFT MARK}"))  # none needed once apart
 ISOLATE, END_OF_ISOLATE = "\N{LEFT-TO-RIGHT ISOLATE}", "\N{POP DIRECTIONAL ISOLATE}"

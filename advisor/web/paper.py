@@ -8,9 +8,9 @@ from jinja2 import Environment, FileSystemLoader, StrictUndefined
 from markupsafe import Markup, escape
 
 from advisor.counsel.names import called
-from advisor.counsel.regions import region_of
+from advisor.counsel.regions import paper_of
 from advisor.resources import resource_dir
-from advisor.web.language import Language, language
+from advisor.web.language import LABEL, Language, language
 
 
 @cache
@@ -29,7 +29,7 @@ def environment(code: str) -> Environment:
     for name in ("number", "percent", "money"):
         made.filters[name] = _as_figure(made.filters[name])
     made.filters["figure"] = figure
-    made.globals["paper_of"] = lambda shop: region_of(shop.region).paper
+    made.globals["paper_of"] = lambda shop: paper_of(shop.paper, region=shop.region)
     return made
 
 
@@ -72,6 +72,7 @@ def install_filters(made: Environment, speaker: Callable[[], Language]) -> None:
     )
     made.filters["percent"] = lambda value, digits=1: "–" if value is None else speaker().percent(value, digits=digits)
     made.filters["money"] = lambda value, currency: speaker().money(value, currency=currency)
+    made.filters["colon"] = lambda label: escape(speaker().gettext(LABEL)) % {"label": label}
     made.filters["called"] = lambda item: called(item, speaker())
     made.filters["day"] = lambda value: "–" if value is None else speaker().date(value)
 

@@ -9,6 +9,7 @@ from advisor.counsel.stock import Range
 from advisor.counsel.visit import Visit, parse_visit
 from advisor.web.desk import current_desk
 from advisor.web.documents import bench_slip, order_slip
+from advisor.web.opened import note_opened
 from advisor.web.pdf import PdfFailed, PdfUnavailable, write_pdf
 from advisor.web.screen import screen
 from advisor.web.sentences import sentence_of
@@ -20,9 +21,9 @@ paper_pages = Blueprint("paper_pages", __name__)
 Make = Callable[[Visit, Range, str], str]  # the last is the kind of fonts
 PAPERS: Mapping[str, Make] = {
     "sheet": lambda visit, stock, fonts: wearer_sheet(
-        visit, stock, number=_option(visit), print_size=_print(), fonts=fonts
+        visit, stock, number=_option(visit), print_size=_print(), fonts=fonts, logo=shop_logo()
     ),
-    "care": lambda visit, stock, fonts: care_sheet(visit, stock, print_size=_print(), fonts=fonts),
+    "care": lambda visit, stock, fonts: care_sheet(visit, stock, print_size=_print(), fonts=fonts, logo=shop_logo()),
     "order": lambda visit, stock, fonts: order_slip(visit, stock, number=_option(visit), fonts=fonts),
     "bench": lambda visit, stock, fonts: bench_slip(visit, stock, number=_option(visit), fonts=fonts),
 }
@@ -36,6 +37,11 @@ def _visit(visit_id: str) -> tuple[Visit, Range]:
     store = current_desk().store
     saved = store.get_visit(visit_id)
     return parse_visit(saved.visit_json), shelf_of(store, saved.range_hash).stock
+
+
+def shop_logo() -> bytes | None:
+    """Return the logo the shop has now: a visit of before is reprinted with it."""
+    return current_desk().store.get_logo()
 
 
 def _option(visit: Visit) -> int | None:
@@ -52,7 +58,9 @@ def _print() -> Print | None:
 
 def _html(paper: str, visit_id: str, kind: str) -> str:
     visit, stock = _visit(visit_id)
-    return PAPERS[paper](visit, stock, FONTS[kind])
+    html = PAPERS[paper](visit, stock, FONTS[kind])
+    note_opened(paper, visit_id)
+    return html
 
 
 @paper_pages.get(f"/visits/<visit_id>/<any({NAMES}):paper>")
@@ -84,13 +92,13 @@ def care_pdf() -> Response:
 
 def _care(kind: str) -> str:
     stock = current_shelf(current_desk().store).stock
-    return care_sheet(None, stock, code=screen().language, print_size=_print(), fonts=FONTS[kind])
+    return care_sheet(None, stock, code=screen().language, print_size=_print(), fonts=FONTS[kind], logo=shop_logo())
 
 
 def _answer(html: str, *, name: str, preview: str) -> Response:
     """Answer with a page as PDF, or with a page that says why there is none and leads to the browser's own print."""
     try:
-        content = write_pdf(html)
+        content = write_pdf(html, logo=shop_logo())
     except (PdfUnavailable, PdfFailed) as error:
         return make_response(
             render_template("no_pdf.html", sentence=sentence_of(error, screen()), preview=preview), 503

@@ -1,8 +1,8 @@
 """The one module that knows WeasyPrint; it is imported when the first PDF is asked for.
 
-Only files below ``static/`` can be fetched, by the address ``http://twolight.invalid/static/...``; everything else is
-refused and the page is not written. Where the Pango libraries are missing there is no PDF, and the caller offers the
-browser's own print instead.
+Only files below ``static/`` can be fetched, by the address ``http://twolight.invalid/static/...``, and the shop's logo
+where its bytes were handed over; everything else is refused and the page is not written. Where the Pango libraries are
+missing there is no PDF, and the caller offers the browser's own print instead.
 """
 
 import mimetypes
@@ -12,13 +12,15 @@ from functools import cache
 from io import BytesIO, StringIO
 from threading import Lock
 from typing import Any
-from urllib.parse import unquote, urlsplit
+from urllib.parse import unquote, urljoin, urlsplit
 
 from advisor.counsel.phrases import mark
 from advisor.errors import TwolightError
 from advisor.resources import resource_dir
+from advisor.web.logo import ADDRESS
 
 BASE_URL = "http://twolight.invalid/"
+LOGO_URL = urljoin(BASE_URL, ADDRESS)
 _RENDERING = Lock()
 
 
@@ -69,13 +71,16 @@ def _fetcher_class() -> Any:
     base: Any = weasyprint_urls.URLFetcher
 
     class StaticOnly(base):  # type: ignore[misc]  # the base class has no types
-        """Answers from ``static/`` alone and remembers what it refused."""
+        """Answers from ``static/`` and with the one picture handed over, and remembers what it refused."""
 
-        def __init__(self) -> None:
+        def __init__(self, logo: bytes | None) -> None:
             super().__init__(allowed_protocols=("http",), allow_redirects=False)
             self.refused: list[str] = []
+            self._logo = logo
 
         def fetch(self, url: str, headers: object = None) -> Any:  # noqa: ARG002  # the base class's signature
+            if url == LOGO_URL and self._logo is not None:
+                return weasyprint_urls.URLFetcherResponse(url, self._logo, {"Content-Type": "image/png"})
             static = resource_dir("static").resolve()
             parts = urlsplit(url)
             path = unquote(parts.path)
@@ -91,18 +96,20 @@ def _fetcher_class() -> Any:
     return StaticOnly
 
 
-def write_pdf(html: str) -> bytes:
+def write_pdf(html: str, *, logo: bytes | None = None) -> bytes:
     """Lay out a page as a tagged PDF (PDF/UA-1 variant, not certified) and return its bytes.
+
+    ``logo`` is the picture, as PNG, that stands where the page asks for the shop's logo.
 
     Raises
     ------
     PdfUnavailable
         If Pango is not on this machine.
     PdfFailed
-        If the page asks for anything outside ``static/``, or cannot be laid out.
+        If the page asks for anything else than the logo and files of ``static/``, or cannot be laid out.
     """
     weasyprint = _weasyprint()
-    fetcher = _fetcher_class()()
+    fetcher = _fetcher_class()(logo)
     target = BytesIO()
     with _RENDERING:
         try:

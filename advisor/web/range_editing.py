@@ -20,6 +20,7 @@ from advisor.counsel.stock_items import Coating, Design, Material, Offer, Scene,
 from advisor.counsel.toml_writing import toml_text
 from advisor.errors import TwolightError
 from advisor.records.store import Store
+from advisor.web.operators import current_operator
 from advisor.web.range_words import UNITS
 from advisor.web.stock_loader import current_shelf
 
@@ -88,6 +89,7 @@ def _kind(info: FieldInfo) -> tuple[str, tuple[str, ...]]:
 
 FIRST = ("key", "label", "design", "material", "coating", "tint", "price")  # the rest in the order of the model
 PARAGRAPHS = frozenset({"care", "expect", "contact"})
+ON_SHEET = ("paper", "paragraph", "lines_off")  # of the shop; they have a page of their own, and no box here
 
 
 def boxes(section: str) -> list[Box]:
@@ -96,6 +98,8 @@ def boxes(section: str) -> list[Box]:
     found = []
     ordered = sorted(model.model_fields, key=lambda name: FIRST.index(name) if name in FIRST else len(FIRST))
     for name in ordered:
+        if model is Shop and name in ON_SHEET:
+            continue
         info = model.model_fields[name]
         kind, choices = _kind(info)
         unit = "" if name == "n_d" else max((end for end in UNITS if name.endswith(end)), key=len, default="")
@@ -212,8 +216,17 @@ def without_item(stock: Range, section: str, place: int) -> Range:
 
 
 def with_shop(stock: Range, form: Mapping[str, str]) -> Range:
-    """Return the range with the shop's own fields changed."""
-    return check_range({**_all(stock), "shop": item_content("shop", form, place="shop")}, from_form=True)
+    """Return the range with the shop's own fields changed, but for those of the wearer's sheet."""
+    content = _all(stock)
+    kept = {name: content["shop"][name] for name in ON_SHEET if name in content["shop"]}
+    return check_range({**content, "shop": kept | item_content("shop", form, place="shop")}, from_form=True)
+
+
+def with_sheet(stock: Range, changed: Mapping[str, Any]) -> Range:
+    """Return the range with some of the shop's fields changed; an empty one is left out from now on."""
+    content = _all(stock)
+    shop = {name: value for name, value in {**content["shop"], **changed}.items() if value not in ("", [])}
+    return check_range({**content, "shop": shop})
 
 
 def from_file(data: bytes, *, name: str) -> Range:
@@ -225,11 +238,11 @@ def from_file(data: bytes, *, name: str) -> Range:
     return parse_range(text, file=name)
 
 
-def keep(store: Store, stock: Range, *, seen: str) -> None:
-    """Make this the shop's range, unless it was changed since the editor saw it."""
+def keep(store: Store, stock: Range, *, seen: str, logo: bytes | None = None) -> None:
+    """Make this the shop's range, unless it was changed since the editor saw it; ``logo`` is stored with it."""
     if current_shelf(store).hash != seen:
         raise RangeChanged
-    store.set_range(range_to_toml(stock))
+    store.set_range(range_to_toml(stock), who=current_operator(), logo=logo)
 
 
 def beside(faults: Iterable[Fault], *, place: str, names: Iterable[str]) -> tuple[dict[str, list[Fault]], list[Fault]]:

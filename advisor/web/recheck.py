@@ -21,6 +21,8 @@ from advisor.records.rechecks import RecheckChanged, RecheckMissing, SavedRechec
 from advisor.records.visits import VisitLine, VisitMissing
 from advisor.web import labels, recheck_text
 from advisor.web.desk import current_desk
+from advisor.web.names_shown import covered
+from advisor.web.operators import current_operator
 from advisor.web.pdf import PdfFailed, PdfUnavailable, write_pdf
 from advisor.web.recheck_form import TOKEN, Asked, NotToday, ask, fields_of, record_of
 from advisor.web.recheck_paper import maker_slip
@@ -92,6 +94,7 @@ def _record(visit_id: str, record: RecheckRecord) -> SavedRecheck:
         who_pays=record.who_pays,
         new_visit_id=new_visit or None,
         recheck_id=token if TOKEN.fullmatch(token) else None,
+        who=current_operator(),
     )
 
 
@@ -104,7 +107,7 @@ def _page(visit_id: str, asked: Asked, *, token: str = "") -> str:
         "recheck.html",
         visit_id=visit_id,
         visit=visit,
-        name=(visit.wearer.name if visit.wearer else None) or visit.reference or "",
+        name=covered(visit.wearer.name if visit.wearer else None) or visit.reference or "",
         options=_option_words(visit, stock),
         fields=asked.fields,
         answer=asked.answer,

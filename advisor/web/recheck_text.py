@@ -36,7 +36,7 @@ OUTCOMES = {
     "clean": mark("clean"),
     "remake": mark("remake"),
     "refer": mark("refer"),
-    "none": mark("none"),
+    "none": mark("nothing came of it"),
 }
 WAYS = OUTCOMES | {"none": mark("free")}  # what a remedy takes
 PAYERS = {

@@ -12,6 +12,7 @@ from advisor.records.store import Store
 from advisor.records.visits import SavedVisit
 from advisor.web.drafting import Editing, of_draft
 from advisor.web.forms import visit_from_fields
+from advisor.web.operators import current_operator
 from advisor.web.screen import screen
 from advisor.web.stock_loader import Shelf
 from advisor.web.undoing import difference
@@ -45,6 +46,7 @@ def save_form(store: Store, editing: Editing, shelf: Shelf) -> SavedVisit:
         visit_id=editing.visit_id if over else None,
         edit_seen=editing.visit_edit if over else None,
         form=SentForm(editing.token, editing.draft_id, _edit_seen(store, editing)),
+        who=current_operator(),
     )
 
 

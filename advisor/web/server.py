@@ -103,6 +103,7 @@ def run(app: Flask, *, port: int = FIRST_PORT, open_browser: bool = True) -> int
     except StoreError as error:
         server.stop()
         return _fail(str(error))
+    desk_of(app).begin_copies()
     with_signals = _StopOnSignal(server)
     _say(SERVING % {"address": address(found)})
     _open(address(found), wanted=open_browser)

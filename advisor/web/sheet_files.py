@@ -32,7 +32,9 @@ def files_in(given: Iterable[Path]) -> list[Path]:
     return found
 
 
-def sheet_files(files: Iterable[Path], stock: Range, make: Make) -> Iterator[Written]:
+def sheet_files(
+    files: Iterable[Path], stock: Range, make: Make, *, logo: bytes | None = None
+) -> Iterator[Written]:
     """Yield the sheet of each visit file as PDF, or as a page that stands alone where no PDF can be made.
 
     Two files of one name in different folders get sheets of different names.
@@ -45,7 +47,7 @@ def sheet_files(files: Iterable[Path], stock: Range, make: Make) -> Iterator[Wri
         name = f"{file.stem}.{ending}" if count == 1 else f"{file.stem}-{count}.{ending}"
         try:
             html = make(read_visit(file), stock)
-            content = write_pdf(html) if ending == "pdf" else standing_alone(html).encode()
+            content = write_pdf(html, logo=logo) if ending == "pdf" else standing_alone(html, logo=logo).encode()
         except TwolightError as error:
             told = str(error) if isinstance(error, Faults) else f"{file}: {error}"
             yield Written(file, name, problem=told)

@@ -7,16 +7,18 @@ from advisor.counsel.case import build_case
 from advisor.counsel.compare import answer_of, compute
 from advisor.counsel.phrases import say
 from advisor.counsel.regions import region_of
-from advisor.counsel.sheet import SHEET_TEXTS, Sheet, choose
+from advisor.counsel.sheet import SHEET_TEXTS, Sheet, choose, without_lines
 from advisor.counsel.sheet import care_sheet as care_content
 from advisor.counsel.sheet import wearer_sheet as sheet_content
 from advisor.counsel.stock import Range
 from advisor.counsel.visit import Visit
 from advisor.web.language import Language, language, languages
+from advisor.web.logo import ADDRESS
 from advisor.web.paper import OnPaper, page
 from advisor.web.screen import screen
 
 Print = Literal["standard", "large"]
+WHOLE = "paper/sheet.html"
 BAR_UNITS = 100  # length of a whole bar in drawing units
 
 
@@ -37,8 +39,13 @@ def wearer_sheet(
     print_size: Print | None = None,
     today: dt.date | None = None,
     fonts: str = "print-fonts",
+    logo: bytes | None = None,
+    template: str = WHOLE,
 ) -> str:
-    """Return the wearer's sheet as HTML; ``number`` counts options from 1, and print left out is the wearer's own."""
+    """Return the wearer's sheet as HTML; ``number`` counts options from 1, and print left out is the wearer's own.
+
+    Where there is a ``logo`` the page asks for it; its bytes are handed to whoever lays the page out.
+    """
     chosen = language(sheet_language(visit, code))
     computed = compute(visit, stock, today=today)
     undecided = number is None and visit.ordered is None
@@ -53,7 +60,10 @@ def wearer_sheet(
         day=chosen.date,
     )
     size = print_size or _own_print(visit)
-    return sheet_html(content, stock, chosen, date=computed.case.date, print_size=size, fonts=fonts)
+    date = computed.case.date
+    return sheet_html(
+        content, stock, chosen, date=date, print_size=size, fonts=fonts, has_logo=bool(logo), template=template
+    )
 
 
 def care_sheet(
@@ -64,6 +74,7 @@ def care_sheet(
     print_size: Print | None = None,
     today: dt.date | None = None,
     fonts: str = "print-fonts",
+    logo: bytes | None = None,
 ) -> str:
     """Return the page about care alone as HTML: for the wearer of a visit, or for somebody who just walked in."""
     chosen = language(sheet_language(visit, code))
@@ -71,24 +82,36 @@ def care_sheet(
     case = None if visit is None else build_case(visit, stock, today=day)
     size = print_size or _own_print(visit)
     date = day if case is None else case.date
-    return sheet_html(care_content(case), stock, chosen, date=date, print_size=size, fonts=fonts)
+    content = care_content(case)
+    return sheet_html(content, stock, chosen, date=date, print_size=size, fonts=fonts, has_logo=bool(logo))
 
 
 def _own_print(visit: Visit | None) -> Print:
     return (visit.wearer.print if visit and visit.wearer else None) or "standard"
 
 
-def sheet_html(content: Sheet, stock: Range, chosen: Language, *, date: dt.date, print_size: Print, fonts: str) -> str:
-    """Return what a sheet says as a page in one language and one print."""
-    speaker = OnPaper(chosen)
+def sheet_html(
+    content: Sheet,
+    stock: Range,
+    chosen: Language,
+    *,
+    date: dt.date,
+    print_size: Print,
+    fonts: str,
+    has_logo: bool = False,
+    template: str = WHOLE,
+) -> str:
+    """Return what a sheet says, but for the lines the shop switched off, as a page in one language and one print."""
+    speaker, content = OnPaper(chosen), without_lines(content, stock.shop.lines_off or ())
     return page(
-        "paper/sheet.html",
+        template,
         {
             "sheet": content,
             "shop": stock.shop,
             "date": date,
             "fonts": fonts,
             "print_size": print_size,
+            "logo_address": ADDRESS if has_logo else "",
             "say": lambda phrase: say(phrase, SHEET_TEXTS, speaker),
             "bars": _bars(content, chosen),
             "urgent_help": region_of(stock.shop.region).urgent_help,

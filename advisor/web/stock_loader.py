@@ -2,6 +2,7 @@
 
 from dataclasses import dataclass
 from functools import cache, lru_cache
+from weakref import WeakKeyDictionary
 
 from advisor.counsel.stock import Range, builtin_range, parse_range, range_to_toml
 from advisor.records.ranges import content_hash
@@ -15,6 +16,9 @@ class Shelf:
     stock: Range
     toml: str
     hash: str
+
+
+_last: WeakKeyDictionary[Store, Shelf] = WeakKeyDictionary()
 
 
 @lru_cache(maxsize=8)
@@ -32,7 +36,14 @@ def _builtin() -> Shelf:
 def current_shelf(store: Store) -> Shelf:
     """Return what the shop sells now."""
     current = store.current_range()
-    return _builtin() if current is None else _parsed(current.toml)
+    shelf = _builtin() if current is None else _parsed(current.toml)
+    _last[store] = shelf
+    return shelf
+
+
+def last_shelf(store: Store | None) -> Shelf:
+    """Return what the shop sold when it was last looked up; the records themselves are not asked."""
+    return _builtin() if store is None else _last.get(store, _builtin())
 
 
 def shelf_of(store: Store, key: str) -> Shelf:

@@ -2,6 +2,7 @@
 
 import csv
 import io
+import re
 import unicodedata
 from collections.abc import Iterable, Iterator, Sequence
 
@@ -16,6 +17,11 @@ from advisor.web.language import Language
 WIDTH = 26
 SECOND_IMAGE = mark("second image")
 WORN_NOW = mark("Worn now")
+# OWASP, CSV Injection: how a formula begins, the signs in full width as well. Where the comma is the decimal sign, a
+# spreadsheet parts cells by semicolons, so a formula may also begin behind one.
+FORMULA_STARTS = ("=", "+", "-", "@", "\t", "\r", "\n", "\uff1d", "\uff0b", "\uff0d", "\uff20")
+BEHIND_SEMICOLON = re.compile(rf"(;\s*)(?=[{re.escape(''.join(FORMULA_STARTS))}])")
+PLAIN_NUMBER = re.compile(r"[+-]?\d+([.,]\d+)?", re.ASCII)
 CSV_HEAD = ["file", "reference", "option", "eye", "row", "value"]
 
 
@@ -139,8 +145,11 @@ def _of_advised(advice: Advice) -> list[Caution]:
 
 
 def harmless(cell: str) -> str:
-    """Return a text cell that no spreadsheet takes for a formula (OWASP, CSV injection)."""
-    return "'" + cell if cell[:1] in ("=", "+", "-", "@", "\t", "\r", "\n") else cell
+    """Return a text cell that no spreadsheet takes for a formula (OWASP, CSV Injection); a plain number is none."""
+    if PLAIN_NUMBER.fullmatch(cell):
+        return cell
+    safe = BEHIND_SEMICOLON.sub(r"\1'", cell)
+    return "'" + safe if safe.startswith(FORMULA_STARTS) else safe
 
 
 def csv_rows(comparison: Comparison, *, file: str) -> list[list[str | float]]:
@@ -149,7 +158,7 @@ def csv_rows(comparison: Comparison, *, file: str) -> list[list[str | float]]:
     Options are numbered from 1 on; the pair worn now stands last as ``worn_now`` and has no price.
     """
     found: list[list[str | float]] = []
-    start: list[str | float] = [harmless(file), harmless(comparison.reference or "")]
+    start: list[str | float] = [file, comparison.reference or ""]
     for option in comparison.options:
         if option.price is not None:
             found.append([*start, option.index + 1, "both", "price", option.price])
@@ -169,10 +178,10 @@ def _figures(pair: LensPair) -> Iterator[tuple[str, str, float]]:
 
 
 def csv_text(rows: Iterable[list[str | float]], *, head: bool = True) -> str:
-    """Return rows as CSV text (RFC 4180)."""
+    """Return rows as CSV text (RFC 4180) in which no text is a formula."""
     target = io.StringIO()
     writer = csv.writer(target)
     if head:
         writer.writerow(CSV_HEAD)
-    writer.writerows(rows)
+    writer.writerows([harmless(cell) if isinstance(cell, str) else cell for cell in row] for row in rows)
     return target.getvalue()

@@ -7,6 +7,7 @@ from flask import url_for
 from advisor.errors import TwolightError
 from advisor.records.drafts import DraftChanged, DraftMissing
 from advisor.records.store import Store
+from advisor.web.conflict import Conflict
 from advisor.web.drafting import Editing
 from advisor.web.screen import screen
 from advisor.web.sentences import sentence_of
@@ -16,14 +17,17 @@ from advisor.web.sentences import sentence_of
 class Told:
     """A sentence, and what it offers.
 
-    ``changed`` where another save of the visit came first; ``reload`` is the address of the form as another window left
-    it or saved it; ``apart`` offers to go on here in a form of its own.
+    ``changed`` where another save of the visit came first, with what is stored by now as ``conflict``; ``then`` is the
+    address of what was said on the day of the visit, where that may differ from what is shown; ``reload`` is the
+    address of the form as another window left it or saved it; ``apart`` offers to go on here in a form of its own.
     """
 
     text: str = ""
     changed: bool = False
     reload: str = ""
     apart: bool = False
+    conflict: Conflict | None = None
+    then: str = ""
 
 
 NOTHING = Told()

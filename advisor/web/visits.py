@@ -1,4 +1,4 @@
-"""Visits: save, list, find, reopen, copy."""
+"""Visits: save, list, find, reopen, copy; of two saves of one visit the later is shown both and decides."""
 
 from dataclasses import replace
 
@@ -10,13 +10,16 @@ from advisor.counsel.phrases import mark
 from advisor.counsel.visit import parse_visit
 from advisor.records.drafts import DraftChanged, DraftMissing
 from advisor.records.visits import PageKey, SavedVisit, VisitChanged, VisitMissing
-from advisor.web import counter_page, drafting
+from advisor.web import conflict, counter_page, drafting
 from advisor.web.counter import is_live
 from advisor.web.desk import current_desk
 from advisor.web.drafting import Editing
+from advisor.web.operators import current_operator
 from advisor.web.saving import as_new, save_form
-from advisor.web.stock_loader import current_shelf
-from advisor.web.told import Told, told_of
+from advisor.web.screen import screen
+from advisor.web.stock_loader import Shelf, current_shelf
+from advisor.web.then_now import is_of_today
+from advisor.web.told import NOTHING, Told, told_of
 
 visits = Blueprint("visits", __name__)
 
@@ -26,20 +29,45 @@ RANGE_CHANGED = mark(
     "The range has changed since this visit was saved: the figures here are worked out with today's. "
     "Papers of the saved visit keep the range of that day."
 )
+VERSION_CHANGED = mark(
+    "This visit was saved with version %(version)s of the program: the figures here are worked out with today's."
+)
 
 
 @visits.post("/visits")
 def save() -> AnyResponse:
     """Save the form as a visit, or show it again with what keeps it from being saved."""
+    sent = drafting.of_form(request.form)
+    return _saved(as_new(sent) if request.form.get("do") == "new" else sent)
+
+
+@visits.post("/visits/<visit_id>/over")
+def save_over(visit_id: str) -> AnyResponse:
+    """Save the form over the edit that was shown beside it, and over no other."""
+    edit = request.form.get("do", "")
+    seen = int(edit) if edit.isascii() and edit.isdigit() and len(edit) < 10 else 0
+    return _saved(conflict.over(drafting.of_form(request.form), visit_id, edit=seen))
+
+
+@visits.post("/visits/<visit_id>/take")
+def take_stored(visit_id: str) -> AnyResponse:
+    """Drop the form that could not be saved, and show the visit that is stored."""
     store = current_desk().store
-    shelf, sent = current_shelf(store), drafting.of_form(request.form)
-    sent = as_new(sent) if request.form.get("do") == "new" else sent
+    store.get_visit(visit_id)
+    store.delete_draft(request.form.get("draft", ""))
+    return redirect(url_for("visits.reopen", visit_id=visit_id), 303)
+
+
+def _saved(sent: Editing) -> AnyResponse:
+    store = current_desk().store
+    shelf = current_shelf(store)
     try:
         saved = save_form(store, sent, shelf)
     except Faults:
         return _shown_again(sent, Told(NOT_SAVED), 422)
     except VisitChanged as error:
-        return _shown_again(_beside(sent, error.stored), Told(error.text, changed=True), 409)
+        both = conflict.conflict_of(sent, error.stored, shelf)
+        return _shown_again(_beside(sent, error.stored), Told(error.text, changed=True, conflict=both), 409)
     except VisitMissing as error:
         return _shown_again(drafting.apart(sent, cut_loose=True), Told(error.text), 409)
     except DraftChanged as error:
@@ -93,8 +121,16 @@ def reopen(visit_id: str) -> str:
     store = current_desk().store
     saved, shelf = store.get_visit(visit_id), current_shelf(store)
     editing = drafting.of_visit(saved, parse_visit(saved.visit_json), shelf)
-    told = Told("" if saved.range_hash == shelf.hash else RANGE_CHANGED)
+    told = NOTHING if is_of_today(saved, shelf) else _of_that_day(saved, shelf)
     return counter_page.page(editing, shelf, told=told, saved=True)
+
+
+def _of_that_day(saved: SavedVisit, shelf: Shelf) -> Told:
+    """Say that figures may have changed since a visit was saved, and lead to both side by side."""
+    then = url_for("then_now.then", visit_id=saved.id)
+    if saved.range_hash != shelf.hash:
+        return Told(screen().gettext(RANGE_CHANGED), then=then)
+    return Told(screen().gettext(VERSION_CHANGED) % {"version": saved.version}, then=then)
 
 
 @visits.post("/visits/<visit_id>/copy")
@@ -103,4 +139,5 @@ def copy(visit_id: str) -> AnyResponse:
     store = current_desk().store
     visit = parse_visit(store.get_visit(visit_id).visit_json).model_copy(update={"date": None, "ordered": None})
     editing = drafting.keep(store, drafting.of_copy(visit, current_shelf(store)))
+    store.record_event("copied", who=current_operator(), visit_id=visit_id)
     return redirect(url_for("counter.draft", draft_id=editing.draft_id), 303)

@@ -22,6 +22,7 @@
   let pressed = ""; // the button whose answer is waited for
   let waiting = []; // buttons to press when the answer under way has come
   let isLeaving = false;
+  let isUnanswered = false; // nothing came back last time, so what was typed since is kept nowhere else
   let kept = null; // of the part that is being replaced
 
   const behind = () => {
@@ -146,11 +147,20 @@
     document.getElementById("options").scrollTop = scroll[2];
   };
 
+  // What htmx promises here is broken where nothing comes back; the events below say so on the page.
+  const ask = (wish, swap) =>
+    window.htmx.ajax("POST", "/counter", { source: form(), values: { do: wish }, ...swap }).catch(() => undefined);
+
   // Buttons: one request at a time, since each answer carries the edit that the next one must name.
   const go = () => {
     const wish = waiting.shift();
     if (wish === undefined) return;
     const button = [...form().elements].find((one) => one.name === "do" && one.value === wish);
+    if (SAVES.includes(wish) && isUnanswered) {
+      waiting.unshift(wish); // to save leaves the page, and nothing may answer there: the form is kept first
+      ask("", { target: figures(), swap: "outerHTML" });
+      return;
+    }
     if (SAVES.includes(wish)) {
       form().requestSubmit(button);
       return;
@@ -161,8 +171,7 @@
     }
     pressed = wish;
     behind();
-    const swap = { target: form(), select: "#visit-form", swap: "outerHTML" };
-    window.htmx.ajax("POST", "/counter", { source: form(), values: { do: wish }, ...swap });
+    ask(wish, { target: form(), select: "#visit-form", swap: "outerHTML" });
   };
   const press = (wish) => {
     const isBusy = pressed || waiting.length;
@@ -182,7 +191,7 @@
     (event) => {
       const wish = event.submitter?.value ?? "";
       if (event.target !== form() || event.submitter?.getAttribute("formaction")?.startsWith("/counter/")) return;
-      if (!isLeaving && !isSending && !pressed && SAVES.includes(wish)) {
+      if (!isLeaving && !isSending && !pressed && !isUnanswered && SAVES.includes(wish)) {
         isLeaving = true;
         return;
       }
@@ -200,8 +209,9 @@
     if (isTyping && (pressed || waiting.length || isLeaving || isBegun(isTyping.target))) event.preventDefault();
   });
   document.addEventListener("htmx:configRequest", (event) => {
-    // htmx adds the button that has the focus; while somebody types, nobody presses it
-    if (event.detail.elt === form() && event.detail.triggeringEvent) event.detail.formData.delete("do");
+    if (event.detail.elt !== form()) return;
+    event.detail.path = "/counter"; // htmx takes the address and the wish of the button that has the focus
+    if (event.detail.triggeringEvent) event.detail.formData.delete("do"); // while somebody types, nobody presses it
   });
   document.addEventListener("htmx:beforeRequest", (event) => {
     if (event.detail.requestConfig.path !== "/counter") return;
@@ -227,7 +237,8 @@
     if (event.detail.requestConfig.path !== "/counter") return;
     isSending = false;
     pressed = "";
-    if (!event.detail.successful) waiting = waiting.filter((wish) => SAVES.includes(wish));
+    isUnanswered = event.detail.xhr.status === 0;
+    if (!event.detail.successful) waiting = isUnanswered ? [] : waiting.filter((wish) => SAVES.includes(wish));
     go();
   });
   for (const name of ["htmx:sendError", "htmx:responseError", "htmx:timeout"]) {
@@ -245,16 +256,6 @@
     press(key === "y" || event.shiftKey ? "redo" : "undo");
   });
 
-  document.addEventListener("click", (event) => {
-    const link = event.target.closest?.('a[href^="#"]');
-    const field = link && document.getElementById(decodeURIComponent(link.hash.slice(1)));
-    if (!field) return;
-    for (let fold = field.closest("details"); fold; fold = fold.parentElement.closest("details")) fold.open = true;
-    if (!field.matches("input, select, textarea")) return;
-    event.preventDefault();
-    field.focus();
-  });
-
   // Coming back: a page out of the browser's memory is fetched again, and another window may have changed the draft.
   window.addEventListener("pageshow", (event) => {
     isLeaving = false;
@@ -265,6 +266,10 @@
   document.addEventListener("visibilitychange", () => {
     const draft = form().elements.namedItem("draft")?.value;
     if (document.visibilityState === "visible" && draft && !isLeaving) window.htmx.trigger(form(), "input");
+  });
+  // Left now, what was typed would be lost: the browser asks first.
+  window.addEventListener("beforeunload", (event) => {
+    if (isUnanswered && figures().classList.contains("behind")) event.preventDefault();
   });
   // What was typed last goes out though the page is left before its time.
   window.addEventListener("pagehide", () => {

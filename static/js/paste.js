@@ -56,7 +56,7 @@
   document.addEventListener("paste", async (event) => {
     const field = event.target;
     const text = event.clipboardData?.getData("text/plain") ?? "";
-    if (text.length > LONGEST || field.closest("textarea") || !LOOKS.test(text)) return;
+    if (!field.matches || text.length > LONGEST || field.closest("textarea") || !LOOKS.test(text)) return;
     event.preventDefault();
     if (!(await filledFrom(text))) insert(field, text);
     else if (field.id === "line") {

@@ -63,7 +63,8 @@
     begin();
   });
   document.addEventListener("submit", (event) => {
-    if (!event.defaultPrevented) begin();
+    // a button that asks for a file leaves the page standing, and has no mark that could come back
+    if (!event.defaultPrevented && !event.submitter?.hasAttribute("data-file")) begin();
   });
   // Back again: the page may come from memory just as it was left.
   window.addEventListener("pageshow", (event) => {

@@ -138,7 +138,7 @@ def test_the_first_change_of_a_saved_visit_is_taken_back_to_what_was_saved(clien
     assert window.undo_says() == ""
     before = window.fields()
     window.press("", wearer__name="Ada", scenes="low-sun-behind-dark-tint stage-lights")
-    assert window.undo_says() == "Undo: wearer name"
+    assert window.undo_says() == "Undo: wearer, name"
     window.press("undo", scenes="low-sun-behind-dark-tint stage-lights")
     assert window.fields()["wearer.name"] == before["wearer.name"] == ""
 

@@ -1,6 +1,7 @@
 """Every word of every page goes through the catalogue: shown by a language whose every letter is Hebrew."""
 
 import html
+import json
 import re
 from collections.abc import Iterator
 from io import BytesIO
@@ -18,6 +19,7 @@ from advisor.web import paper
 from advisor.web.app import create_app
 from advisor.web.forms import visit_to_fields
 from advisor.web.language import language
+from tests.frame_records import WHOLE
 from tests.pseudo_language import CODE, write_catalogue
 
 WEARERS = (
@@ -136,10 +138,48 @@ def test_a_sign_for_an_eye_doctor_and_its_slip_are_translated(client: FlaskClien
     assert latin_words(shown.replace("fringes", ""), typed_in("tinted-pair")) == set()
 
 
+def test_files_that_are_brought_in_and_handed_out_are_translated(client: FlaskClient, saved: dict[str, str]) -> None:
+    assert latin_words(client.get(f"{saved['tinted-pair']}/files", headers=HEBREW).text) == set()
+    lenses = [{"eye": eye, "sphere": -2, "prism": 1, "base": "in", "brand": "-"} for eye in ("right", "left")]
+    one = {"resourceType": "VisionPrescription", "status": "draft", "dispense": lenses}
+    for content in (json.dumps(one), WHOLE, "{}"):
+        file = (BytesIO(content.encode()), "brought.txt")
+        page = client.post("/bring-in", data={"file": file}, headers=HEBREW).text
+        assert latin_words(page) == set()
+
+
+@pytest.mark.parametrize("end", ["then", "wearer"])
+@pytest.mark.parametrize("wearer", WEARERS[:3])
+def test_what_is_kept_about_a_visit_is_translated(
+    client: FlaskClient, saved: dict[str, str], wearer: str, end: str
+) -> None:
+    page = client.get(f"{saved[wearer]}/{end}", headers=HEBREW).text
+    assert latin_words(page, typed_in(wearer)) == set()
+
+
+def test_two_counters_and_erasing_are_translated(client: FlaskClient, saved: dict[str, str]) -> None:
+    path = saved["weak-minus-night-driver"]
+    mine = fields_of("weak-minus-night-driver") | {"token": "9" * 32, "visit": path.rpartition("/")[2]}
+    late = client.post("/visits", data=mine | {"visit_edit": "7", "frame.rim": "drilled"}, headers=HEBREW)
+    assert late.status_code == 409
+    told = re.search(r'id="told">(.*?)</div>', late.text, re.DOTALL)
+    assert told is not None
+    assert latin_words(told[1], ALL_TYPED) == set()
+    asked = client.post(f"{path}/wearer/erase", data={"visit": path.rpartition("/")[2]}, headers=HEBREW)
+    assert asked.status_code == 200
+    assert latin_words(asked.text) == set()
+
+
 FORMS = ("material/0", "coating/3", "tint/0", "design/0", "scene/0", "offer/new", "shop")
 
 
-@pytest.mark.parametrize("address", ["/", "/range", "/visits", "/care", "/nothing-here", "/visits/nobody"])
+PAGES = (
+    "/", "/range", "/visits", "/visits/old", "/visits/erased", "/records", "/bring-in", "/care", "/nothing-here",
+    "/visits/nobody",
+)  # fmt: skip
+
+
+@pytest.mark.parametrize("address", PAGES)
 def test_other_pages_are_translated(client: FlaskClient, saved: dict[str, str], address: str) -> None:
     assert saved
     assert latin_words(client.get(address, headers=HEBREW).text, ALL_TYPED) == set()
@@ -148,6 +188,12 @@ def test_other_pages_are_translated(client: FlaskClient, saved: dict[str, str], 
 @pytest.mark.parametrize("form", FORMS)
 def test_forms_of_the_range_are_translated(client: FlaskClient, form: str) -> None:
     assert latin_words(client.get(f"/range/{form}", headers=HEBREW).text) <= {"LED"}
+
+
+def test_the_shops_own_on_the_sheet_is_translated(client: FlaskClient) -> None:
+    page = client.get("/range/sheet", headers=HEBREW).text
+    assert 'class="on-paper"' in page
+    assert latin_words(page, ALL_TYPED) == set()
 
 
 def test_what_is_wrong_is_said_in_the_language(client: FlaskClient) -> None:

@@ -59,7 +59,7 @@ def test_an_order_that_is_not_ready_says_every_reason(client: FlaskClient, store
 def test_where_no_pdf_can_be_made_the_page_is_offered_instead(
     client: FlaskClient, store: Store, monkeypatch: pytest.MonkeyPatch
 ) -> None:
-    def refuse(_html: str) -> bytes:
+    def refuse(_html: str, **_given: object) -> bytes:
         raise PdfUnavailable("No PDF can be made here.")
 
     monkeypatch.setattr(paper_pages, "write_pdf", refuse)
@@ -73,7 +73,7 @@ def test_where_no_pdf_can_be_made_the_page_is_offered_instead(
 def test_a_page_that_cannot_be_laid_out_leaves_the_visit_saved_and_says_what_to_do(
     client: FlaskClient, store: Store, monkeypatch: pytest.MonkeyPatch
 ) -> None:
-    def fail(_html: str) -> bytes:
+    def fail(_html: str, **_given: object) -> bytes:
         raise PdfFailed
 
     monkeypatch.setattr(paper_pages, "write_pdf", fail)

@@ -165,7 +165,7 @@ def test_a_picture_changes_while_its_button_is_held(page: Page, address: str, st
     trouble: list[str] = []
     page.on("console", lambda message: trouble.append(message.text))
     page.goto(f"{address}/visits/{saved(store, 'weak-minus-night-driver')}/pictures")
-    still, button = page.locator("#still-road-1"), page.get_by_role("button").first
+    still, button = page.locator("#still-road-1"), page.get_by_role("button", name="Hold").first
     filmed, bare = still.locator("img").nth(0), still.locator("img").nth(1)
     expect(filmed).to_be_visible()
     expect(bare).to_be_hidden()

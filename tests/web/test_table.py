@@ -87,8 +87,9 @@ def test_no_sign_that_steers_a_terminal_is_printed(sign: str) -> None:
 # OWASP, CSV injection
 @pytest.mark.parametrize(
     ("cell", "written"),
-    [("=1+1", "'=1+1"), ("+1", "'+1"), ("-1", "'-1"), ("@A1", "'@A1"), ("\tx", "'\tx"), ("\nx", "'\nx"),
-     ("A-117", "A-117"), ("", ""), ("a=1", "a=1")],
+    [("=1+1", "'=1+1"), ("+1+1", "'+1+1"), ("-1-x", "'-1-x"), ("@A1", "'@A1"), ("\tx", "'\tx"), ("\nx", "'\nx"),
+     ("\uff1d1", "'\uff1d1"), ("a;=1+1", "a;'=1+1"), ("a; @x;-x", "a; '@x;'-x"), ("+1", "+1"), ("-4.25", "-4.25"),
+     ("-1\n", "'-1\n"), ("A-117", "A-117"), ("", ""), ("a=1", "a=1"), ("'=1", "'=1")],
 )  # fmt: skip
 def test_a_text_cell_is_never_a_formula(cell: str, written: str) -> None:
     assert harmless(cell) == written

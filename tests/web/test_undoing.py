@@ -147,7 +147,7 @@ def test_undo_says_what_it_takes_back_where_a_few_words_say_it(
     base = {COUNT: "2"}
     found = turns({**base, **now}, recorded(Past(), {**base, **before}, {**base, **now}), language("en"))
     assert (found.can_undo, found.can_redo) == (True, False)
-    assert found.undo == undo if undo is not None else re.fullmatch(r"[a-z ]*sun[a-z ]*", found.undo)
+    assert found.undo == undo if undo is not None else re.fullmatch(r"[a-z ,]*sun[a-z ,]*", found.undo)
     fields, past = undone({**base, **now}, recorded(Past(), {**base, **before}, {**base, **now}))
     then = turns(fields, past, language("en"))
     assert (then.can_undo, then.can_redo, then.redo) == (False, True, found.undo)
