@@ -7,6 +7,8 @@ from pathlib import Path
 
 import pytest
 
+from advisor.web.language import SOURCE_LANGUAGE, languages
+
 ROOT = Path(__file__).resolve().parent.parent
 
 
@@ -32,6 +34,12 @@ def test_every_file_of_a_folder_is_in_the_wheel(folder: str, names: set[str]) ->
     assert files
     inside = {name if folder == "advisor" else f"advisor/{name}" for name in files}
     assert inside <= names
+
+
+@pytest.mark.parametrize("code", [code for code in languages() if code != SOURCE_LANGUAGE])
+def test_every_language_is_in_the_wheel(code: str, names: set[str]) -> None:
+    catalogues = {f"advisor/translations/{code}/LC_MESSAGES/messages.{kind}" for kind in ("po", "mo")}
+    assert catalogues | {f"advisor/counsel/data/heard/{code}.toml"} <= names
 
 
 def test_the_wheel_holds_no_tests(names: set[str]) -> None:

@@ -8,7 +8,9 @@ from advisor.counsel.visit import parse_visit
 from advisor.records.visits import SavedVisit
 from advisor.web.drafting import Editing
 from advisor.web.field_words import place_words
-from advisor.web.forms import COUNT, KEPT, LINE, names_of, visit_from_fields, visit_to_fields
+from advisor.web.filled_form import visit_to_fields
+from advisor.web.form_fields import COUNT, KEPT, LINE, names_of
+from advisor.web.forms import visit_from_fields
 from advisor.web.names_shown import covered
 from advisor.web.saving import dated
 from advisor.web.screen import screen

@@ -18,7 +18,8 @@ from advisor.web.asked import first_questions, further_questions, opened_by
 from advisor.web.drafting import Editing
 from advisor.web.field_words import place_words
 from advisor.web.figure_rows import FigureTable, figure_table
-from advisor.web.forms import EYES, MOST_OPTIONS, by_field, names_of, option_count, visit_from_fields
+from advisor.web.form_fields import EYES, MOST_OPTIONS, by_field, names_of, option_count
+from advisor.web.forms import visit_from_fields
 from advisor.web.pasted_line import said_of
 from advisor.web.screen import screen
 from advisor.web.sentences import fault_sentence

@@ -12,7 +12,8 @@ from advisor.counsel.visit import Visit, parse_visit
 from advisor.records.drafts import SavedDraft
 from advisor.records.store import Store
 from advisor.records.visits import SavedVisit, VisitMissing
-from advisor.web.forms import COUNT, EYES, MOST_OPTIONS, Fields, fields_from_form, is_untouched, visit_to_fields
+from advisor.web.filled_form import visit_to_fields
+from advisor.web.form_fields import COUNT, EYES, MOST_OPTIONS, Fields, fields_from_form, is_untouched
 from advisor.web.stock_loader import Shelf, current_shelf
 from advisor.web.undoing import Past, difference, is_typed, recorded, redone, undone
 from advisor.web.wishes import REDO, UNDO, wished

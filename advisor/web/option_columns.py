@@ -2,7 +2,7 @@
 
 from collections.abc import Mapping, Sequence
 
-from advisor.web.forms import COUNT, MOST_OPTIONS, OPTION, Fields, option_count
+from advisor.web.form_fields import COUNT, MOST_OPTIONS, OPTION, Fields, option_count
 
 POINTERS = ("baseline", "ordered")
 AS_FIRST = ("design", "material")  # left empty, an option takes these from the first

@@ -6,7 +6,7 @@ from flask import Blueprint, Response, jsonify, request
 
 from advisor.counsel.phrases import mark, say
 from advisor.counsel.written_line import LINE_TEXTS, WrittenLine, read_line
-from advisor.web.forms import LINE, PLAIN, Fields
+from advisor.web.form_fields import LINE, PLAIN, Fields
 from advisor.web.screen import screen
 
 pasted_line = Blueprint("pasted_line", __name__)

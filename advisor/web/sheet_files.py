@@ -32,9 +32,7 @@ def files_in(given: Iterable[Path]) -> list[Path]:
     return found
 
 
-def sheet_files(
-    files: Iterable[Path], stock: Range, make: Make, *, logo: bytes | None = None
-) -> Iterator[Written]:
+def sheet_files(files: Iterable[Path], stock: Range, make: Make, *, logo: bytes | None = None) -> Iterator[Written]:
     """Yield the sheet of each visit file as PDF, or as a page that stands alone where no PDF can be made.
 
     Two files of one name in different folders get sheets of different names.

@@ -82,7 +82,7 @@ def groups(typed: Typed, translator: Translator) -> list[dict[str, Any]]:
         {
             "key": heading,
             "heading": HEADINGS[heading],
-            "count": len(typed.lines.intersection(keys)),
+            "has_off": not typed.lines.issuperset(keys),
             "lines": [(key, translator.gettext(SWITCH_TEXTS[key]) % _LeftOut(), key in typed.lines) for key in keys],
         }
         for heading, keys in SWITCHES.items()

@@ -7,7 +7,8 @@ from typing import Any
 from advisor.counsel.faults import Faults
 from advisor.counsel.files import parse_json
 from advisor.counsel.visit import Frame, check_visit
-from advisor.web.forms import EYES, KEPT, Fields, number_text
+from advisor.web.filled_form import number_text
+from advisor.web.form_fields import EYES, KEPT, Fields
 
 SIZES = ("a_mm", "b_mm", "dbl_mm")
 LONGEST = "frame.ed_mm"

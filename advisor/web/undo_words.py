@@ -5,7 +5,7 @@ from dataclasses import dataclass
 
 from advisor.counsel.phrases import Translator, mark
 from advisor.web.field_words import PARTS, place_words
-from advisor.web.forms import COUNT, EYES
+from advisor.web.form_fields import COUNT, EYES
 from advisor.web.undoing import Past, Step
 
 ADDING = mark("adding an option")

@@ -7,7 +7,7 @@ counts as empty.
 from collections.abc import Mapping
 from dataclasses import dataclass
 
-from advisor.web.forms import COUNT, KEPT, WORDS, Fields, names_of
+from advisor.web.form_fields import COUNT, KEPT, WORDS, Fields, names_of
 
 Step = dict[str, str]
 

@@ -5,7 +5,7 @@ from collections.abc import Iterable, Mapping
 from advisor.counsel.phrases import Translator, mark
 from advisor.counsel.stock import Range
 from advisor.web import labels
-from advisor.web.forms import COUNT, KEPT, WORDS
+from advisor.web.form_fields import COUNT, KEPT, WORDS
 
 EMPTY = mark("(empty)")
 AS_GIVEN = mark("as given in the visit")

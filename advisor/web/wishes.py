@@ -3,7 +3,7 @@
 from collections.abc import Callable, Mapping
 
 from advisor.web.advice_view import LAY, laid_out_fields
-from advisor.web.forms import Fields
+from advisor.web.form_fields import Fields
 from advisor.web.option_columns import (
     with_option_added,
     with_option_copied,

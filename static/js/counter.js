@@ -190,7 +190,7 @@
     "submit",
     (event) => {
       const wish = event.submitter?.value ?? "";
-      if (event.target !== form() || event.submitter?.getAttribute("formaction")?.startsWith("/counter/")) return;
+      if (event.target !== form() || (event.submitter?.hasAttribute("formaction") && !SAVES.includes(wish))) return;
       if (!isLeaving && !isSending && !pressed && !isUnanswered && SAVES.includes(wish)) {
         isLeaving = true;
         return;

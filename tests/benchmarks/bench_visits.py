@@ -2,8 +2,8 @@
 
 Prints, for each, the time of the first page of the list, of a page deep in it, of searches by a beginning that every
 visit has, that one has, and that only visits of long ago have, and of saving. Exits with 1 where a hundred thousand
-take more than three times as long as a thousand. A search for what very many visits have, and all of them of long ago,
-looks at each of these; it has a ceiling in milliseconds instead.
+take more than three times as long as a thousand. A search for days of long ago finds a hundred times as many visits
+among a hundred times as many, and looks at each; it has a ceiling in milliseconds instead.
 
 Run as ``python -m tests.benchmarks.bench_visits`` in the project's folder; takes some minutes and four gigabytes.
 """
@@ -32,7 +32,7 @@ from tests.databases import PROGRAMS, Place, engine_at, started_postgres
 
 FEW, MANY = 1_000, 100_000
 MOST_RATIO = 3.0
-LONG_AGO, MOST_LONG_AGO_MS = "year of ten years ago", 100.0
+LONG_AGO, MOST_LONG_AGO_MS = "of ten years ago", 150.0
 RUNS, BATCH, PAGE = 31, 2_000, 51
 SEED = 20261201
 RANGE = "key = 1"
@@ -78,14 +78,16 @@ def fill(place: Place, count: int) -> None:
     engine.dispose()
 
 
-def median_ms(work: Callable[[], object]) -> float:
-    work()
-    taken = []
-    for _ in range(RUNS):
-        begun = time.perf_counter()
-        work()
-        taken.append(time.perf_counter() - begun)
-    return 1000 * statistics.median(taken)
+def medians_ms(*works: Callable[[], object]) -> list[float]:
+    """Return the median of each work's milliseconds; they take turns, so that a busy computer is busy for all."""
+    taken: list[list[float]] = [[] for _ in works]
+    for run in range(RUNS + 1):  # the first, which fills caches, does not count
+        for work, times in zip(works, taken, strict=True):
+            begun = time.perf_counter()
+            work()
+            if run:
+                times.append(time.perf_counter() - begun)
+    return [1000 * statistics.median(times) for times in taken]
 
 
 def save(store: Store) -> None:
@@ -94,44 +96,46 @@ def save(store: Store) -> None:
     store.save_visit(json.dumps(content), range_toml=RANGE, version="0", answer_json=answer)
 
 
-def timed(place: Place, count: int) -> dict[str, float]:
-    """Return the milliseconds of each thing done."""
+def works(store: Store, count: int) -> dict[str, Callable[[], object]]:
+    """Return what is timed, by its name."""
     row, _ = next(islice(visits(count), count // 10, None))
     deep = PageKey(row["changed_at"], row["id"])  # nine tenths of the list stand before it
-    with Store.open(place) as store:
 
-        def find(search: str, expected: int) -> Callable[[], None]:
-            def look() -> None:
-                found = store.list_visits(search, limit=PAGE)
-                assert len(found) >= expected, (search, len(found))
+    def find(search: str, expected: int) -> Callable[[], object]:
+        def look() -> None:
+            found = store.list_visits(search, limit=PAGE)
+            assert len(found) >= expected, (search, len(found))
 
-            return look
+        return look
 
-        return {
-            "first page": median_ms(lambda: store.list_visits(limit=PAGE)),
-            "deep page": median_ms(lambda: store.list_visits(limit=PAGE, after=deep)),
-            "beginning that every visit has": median_ms(find("a", PAGE)),
-            "beginning that one visit has": median_ms(find("unmis", 1)),
-            "two words that many have": median_ms(find("music b", PAGE)),
-            "day of ten years ago": median_ms(find("2016-03-0", 1)),
-            LONG_AGO: median_ms(find("2016", PAGE)),
-            "save one": median_ms(lambda: save(store)),
-        }
+    return {
+        "first page": lambda: store.list_visits(limit=PAGE),
+        "deep page": lambda: store.list_visits(limit=PAGE, after=deep),
+        "beginning that every visit has": find("a", PAGE),
+        "beginning that one visit has": find("unmis", 1),
+        "two words that many have": find("music b", PAGE),
+        "nine days of ten years ago": find("2016-03-0", 1),
+        "year of ten years ago": find("2016", PAGE),
+        "save one": lambda: save(store),
+    }
 
 
 def compared(kind: str, few: Place, many: Place) -> bool:
-    """Print the figures of one kind of database; tell whether all is within the limit."""
+    """Print the figures of one kind of database; tell whether all is within the limits."""
     fill(few, FEW)
     begun = time.perf_counter()
     fill(many, MANY)
     print(f"{kind}: {MANY} visits stored in {time.perf_counter() - begun:.0f} s")
-    small, large = timed(few, FEW), timed(many, MANY)
-    quick = {what: large[what] <= MOST_RATIO * small[what] for what in small}
-    quick[LONG_AGO] = large[LONG_AGO] <= MOST_LONG_AGO_MS
-    for what, is_quick in quick.items():
-        figures = f"{small[what]:8.2f} ms{large[what]:8.2f} ms{large[what] / small[what]:7.2f}"
-        print(f"  {what:32}{figures}{'' if is_quick else '  too slow'}")
-    return all(quick.values())
+    all_quick = True
+    with Store.open(few) as small_store, Store.open(many) as large_store:
+        large_works = works(large_store, MANY)
+        for what, work in works(small_store, FEW).items():
+            small, large = medians_ms(work, large_works[what])
+            is_quick = large <= (MOST_LONG_AGO_MS if what.endswith(LONG_AGO) else MOST_RATIO * small)
+            all_quick &= is_quick
+            note = "" if is_quick else "  too slow"
+            print(f"  {what:32}{small:8.2f} ms{large:8.2f} ms{large / small:7.2f}{note}", flush=True)
+    return all_quick
 
 
 def main() -> int:

@@ -288,7 +288,7 @@ def test_two_tabs_of_one_visit_the_later_save_is_told(watched: "Watched") -> Non
     expect(other.get_by_text("Saved.", exact=True)).to_be_visible()
     expect(page.get_by_text("nothing was overwritten")).to_be_visible()
     expect(watched.named("wearer.name")).to_have_value("mine")
-    button(page, "new").click()
+    page.get_by_role("button", name="Save mine as a new visit").click()
     expect(page.get_by_text("Saved.", exact=True)).to_be_visible()
     expect(watched.named("wearer.name")).to_have_value("mine")
     other.reload()

@@ -3,7 +3,7 @@
 import re
 from typing import TYPE_CHECKING
 
-from playwright.sync_api import Dialog, Page, expect
+from playwright.sync_api import Dialog, Page, Route, expect
 
 if TYPE_CHECKING:
     from tests.browser.conftest import Watched
@@ -36,9 +36,11 @@ def test_a_save_that_nothing_answers_keeps_the_form_and_saves_later(watched: "Wa
 
 def test_a_save_pressed_while_an_answer_fails_to_come_stays_as_well(watched: "Watched") -> None:
     page = watched.open_demo("strong-cylinder")
-    page.route("**/counter", lambda route: (page.wait_for_timeout(200), route.abort()))
+    held: list[Route] = []
+    page.route("**/counter", lambda route: held.append(route))
     watched.named("reference").fill("caught in between")
     page.get_by_role("button", name="Save the visit").click()
+    held[0].abort()
     expect(page.get_by_text(NOT_ANSWERED)).to_be_visible()
     page.wait_for_timeout(300)
     expect(page).to_have_url(re.compile("/counter/"))

@@ -21,7 +21,8 @@ from advisor.resources import resource_dir
 from advisor.web import labels
 from advisor.web.advice_view import FIGURES
 from advisor.web.asked import further_questions
-from advisor.web.forms import DECLINABLE, PLAIN, visit_to_fields
+from advisor.web.filled_form import visit_to_fields
+from advisor.web.form_fields import DECLINABLE, PLAIN
 
 LIVE = {"HX-Request": "true"}
 TWO_SPHERES = {

@@ -13,7 +13,7 @@ from advisor.records.store import Store
 from advisor.web.app import create_app
 from advisor.web.desk import desk_of
 from advisor.web.drafting import MOST_TEXT
-from advisor.web.forms import PLAIN
+from advisor.web.form_fields import PLAIN
 from advisor.web.undoing import is_typed
 
 LIVE = {"HX-Request": "true"}

@@ -17,7 +17,7 @@ from advisor.resources import resource_dir
 from advisor.web import language as module
 from advisor.web import paper
 from advisor.web.app import create_app
-from advisor.web.forms import visit_to_fields
+from advisor.web.filled_form import visit_to_fields
 from advisor.web.language import language
 from tests.frame_records import WHOLE
 from tests.pseudo_language import CODE, write_catalogue

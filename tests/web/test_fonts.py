@@ -6,6 +6,7 @@ import pytest
 from fontTools.ttLib import TTFont
 
 from advisor.resources import resource_dir
+from advisor.web.language import SOURCE_LANGUAGE, TRANSLATIONS, languages
 
 FONTS = resource_dir("static") / "fonts"
 SHEETS = sorted((resource_dir("static") / "css").glob("*.css"))
@@ -77,6 +78,14 @@ def test_the_font_has_a_shape_for_everything_we_print(path: Path) -> None:
     }
     spaces = {shapes[ord(letter)] for letter in SHOWN if letter.isspace()}
     assert blank == spaces
+
+
+@pytest.mark.parametrize("code", [code for code in languages() if code != SOURCE_LANGUAGE])
+def test_the_font_has_a_shape_for_every_letter_of_a_catalogue(code: str) -> None:
+    """Languages of another script bring a face of their own, see DEVELOPERS.md."""
+    shapes = set(opened(FONTS / "twolight-text-400.ttf").getBestCmap())
+    written = (TRANSLATIONS / code / "LC_MESSAGES" / "messages.po").read_text("utf-8")
+    assert {letter for letter in written if letter != "\n" and ord(letter) not in shapes} == set()
 
 
 def test_letters_that_differ_have_shapes_that_differ() -> None:

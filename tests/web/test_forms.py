@@ -11,7 +11,7 @@ from werkzeug.datastructures import MultiDict
 from advisor.counsel.faults import Faults
 from advisor.counsel.visit import Visit, check_visit, read_visit, visit_to_json
 from advisor.resources import resource_dir
-from advisor.web import forms
+from advisor.web import filled_form, form_fields, forms
 
 DEMOS = sorted(resource_dir("demo_patients").glob("*.json"))
 
@@ -34,7 +34,7 @@ def content(visit: Visit) -> dict[str, Any]:
 @pytest.mark.parametrize("file", DEMOS, ids=lambda file: file.stem)
 def test_a_visit_comes_back_from_its_form(file: Path) -> None:
     visit = read_visit(file)
-    assert content(forms.visit_from_fields(forms.visit_to_fields(visit))) == content(visit)
+    assert content(forms.visit_from_fields(filled_form.visit_to_fields(visit))) == content(visit)
 
 
 def everything() -> dict[str, Any]:
@@ -68,7 +68,7 @@ def _circle(points: int) -> list[tuple[float, float]]:
 
 def test_what_the_form_has_no_field_for_travels_along() -> None:
     visit = check_visit(everything())
-    back = content(forms.visit_from_fields(forms.visit_to_fields(visit)))
+    back = content(forms.visit_from_fields(filled_form.visit_to_fields(visit)))
     wanted = content(visit)
     # Three prisms of 1 base in are one of 3: prisms along one direction add up.
     wanted["prescription"]["right"]["prism"] = [{"amount": 3.0, "base": "in"}]
@@ -76,7 +76,7 @@ def test_what_the_form_has_no_field_for_travels_along() -> None:
 
 
 def test_numbers_are_shown_so_that_they_read_back_the_same() -> None:
-    fields = forms.visit_to_fields(check_visit(everything()))
+    fields = filled_form.visit_to_fields(check_visit(everything()))
     assert fields["prescription.right.sphere"] == "-4.125"
     assert fields["prescription.right.cylinder"] == "-1.00"
     assert fields["prescription.right.axis"] == "175"
@@ -104,7 +104,7 @@ def test_a_form_takes_commas_the_minus_sign_and_spaces() -> None:
     ],
 )
 def test_a_fault_finds_its_field(path: str, field: str) -> None:
-    assert forms.field_of(path, forms.names_of({"option_count": "2"})) == field
+    assert form_fields.field_of(path, form_fields.names_of({"option_count": "2"})) == field
 
 
 def test_every_fault_of_a_form_is_told_at_once() -> None:
@@ -117,14 +117,14 @@ def test_every_fault_of_a_form_is_told_at_once() -> None:
     }
     with pytest.raises(Faults) as caught:
         forms.visit_from_fields(fields)
-    found = forms.by_field(caught.value.faults, forms.names_of(fields))
+    found = form_fields.by_field(caught.value.faults, form_fields.names_of(fields))
     assert set(found) == {"prescription.right.sphere", "prescription.left.axis", "frame.a_mm"}
 
 
 def test_names_that_the_form_does_not_have_are_left_out() -> None:
     typed = [("wearer.name", "Ada"), ("wearer.shoe", "39"), ("option_count", "9999"), ("scenes", "a"), ("scenes", "b")]
     sent = MultiDict(typed)
-    fields = forms.fields_from_form(sent)
+    fields = form_fields.fields_from_form(sent)
     assert fields["wearer.name"] == "Ada"
     assert fields["scenes"] == "a b"
     assert "wearer.shoe" not in fields

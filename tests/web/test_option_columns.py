@@ -8,8 +8,8 @@ from hypothesis import strategies as st
 
 from advisor.counsel.visit import parse_visit
 from advisor.resources import resource_dir
-from advisor.web import forms
-from advisor.web.forms import COUNT, MOST_OPTIONS, OPTION, option_count
+from advisor.web import filled_form
+from advisor.web.form_fields import COUNT, MOST_OPTIONS, OPTION, option_count
 from advisor.web.option_columns import (
     with_option_added,
     with_option_copied,
@@ -129,7 +129,7 @@ def test_what_an_option_takes_from_the_first_it_keeps_when_another_is_first() ->
 
 def test_options_are_added_as_copies_and_removed_with_what_points_at_them() -> None:
     visit = parse_visit((resource_dir("demo_patients") / "strong-cylinder.json").read_text("utf-8"))
-    fields = {**forms.visit_to_fields(visit), "baseline": "2", "ordered": "1"}
+    fields = {**filled_form.visit_to_fields(visit), "baseline": "2", "ordered": "1"}
     more = with_option_added(fields)
     assert option_count(more) == 4
     assert more["options.3.material"] == fields["options.2.material"]

@@ -174,3 +174,17 @@ def test_without_the_libraries_the_way_out_is_named(monkeypatch: pytest.MonkeyPa
     assert not pdf.is_available()
     with pytest.raises(PdfUnavailable):
         pdf.write_pdf("<p>x</p>")
+
+
+# French sets a no-break space before a colon, the others none; what was typed is escaped (common practice, no source).
+@pytest.mark.parametrize(
+    ("code", "text"),
+    [
+        ("en", "Rim: &lt;b&gt;:"),
+        ("es", "Aro: &lt;b&gt;:"),
+        ("fr", "Type de monture\N{NO-BREAK SPACE}: &lt;b&gt;\N{NO-BREAK SPACE}:"),
+        ("de", "Rand: &lt;b&gt;:"),
+    ],
+)
+def test_a_label_takes_its_colon_as_the_language_sets_it(code: str, text: str) -> None:
+    assert environment(code).from_string('{{ _("Rim")|colon }} {{ "<b>"|colon }}').render() == text

@@ -139,6 +139,13 @@ def test_one_tick_does_not_answer_a_sign_that_was_heard(client: FlaskClient, sto
     assert "Heard in the words, answered no" in page
 
 
+def test_one_tick_does_not_answer_a_sign_that_was_heard_in_another_language(client: FlaskClient, store: Store) -> None:
+    visit_id = saved(store, "weak-minus-night-driver", ordered=0)
+    for says in ("desde ayer veo doble", "je vois des éclairs", "ein dunkler Schatten im Auge"):
+        page = client.post(f"/visits/{visit_id}/recheck", data=NONE_OF_THESE | {"says": says}).text
+        assert "To an eye doctor today." in page, says
+
+
 @pytest.mark.parametrize(("outcome", "status"), [("remake", 422), ("adjust", 422), ("refer", 303), ("none", 303)])
 def test_a_return_for_today_ends_with_a_referral_or_nothing(
     client: FlaskClient, store: Store, tmp_path: Path, outcome: str, status: int

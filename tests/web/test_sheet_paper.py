@@ -14,10 +14,11 @@ from pypdf import PdfReader
 from pypdf.generic import ArrayObject, DictionaryObject
 
 from advisor.counsel.sheet import NoSuchOption
-from advisor.counsel.sheet_texts import HEADINGS
+from advisor.counsel.sheet_texts import BAR_BARE, BAR_HARD_COAT, BAR_MIRRORED, BAR_WITH, HEADINGS
 from advisor.counsel.stock import Range, Shop, builtin_range
 from advisor.counsel.visit import Visit, check_visit, read_visit
 from advisor.resources import resource_dir
+from advisor.web.language import language, languages
 from advisor.web.pdf import write_pdf
 from advisor.web.sheet_page import Print, care_sheet, wearer_sheet
 from tests.wearers import visits
@@ -35,8 +36,8 @@ def shop(region: str) -> Range:
 
 
 @cache
-def pdf_of(path: Path, size: Print, region: str = "eu") -> PdfReader:
-    html = wearer_sheet(read_visit(path), shop(region), code="en", print_size=size, today=TODAY)
+def pdf_of(path: Path, size: Print, region: str = "eu", code: str = "en") -> PdfReader:
+    html = wearer_sheet(read_visit(path), shop(region), code=code, print_size=size, today=TODAY)
     return PdfReader(BytesIO(write_pdf(html)))
 
 
@@ -81,8 +82,9 @@ def nodes(pdf: PdfReader) -> list[DictionaryObject]:
 
 @pytest.mark.parametrize("path", DEMO, ids=lambda path: path.stem)
 @pytest.mark.parametrize("size", MOST_PAGES)
-def test_a_sheet_fits_its_pages_and_no_letter_is_smaller_than_promised(path: Path, size: Print) -> None:
-    pdf = pdf_of(path, size)
+@pytest.mark.parametrize("code", languages())
+def test_a_sheet_fits_its_pages_and_no_letter_is_smaller_than_promised(path: Path, size: Print, code: str) -> None:
+    pdf = pdf_of(path, size, code=code)
     assert len(pdf.pages) <= MOST_PAGES[size]
     assert min(sizes(pdf)) >= LEAST_PT[size]
 
@@ -100,9 +102,10 @@ def test_large_print_is_set_anew_and_not_made_bigger(size: Print) -> None:
     ("region", "mm"), [("us", (215.9, 279.4)), ("eu", (210, 297)), ("uk", (210, 297)), ("international", (210, 297))]
 )
 @pytest.mark.parametrize("size", MOST_PAGES)
-def test_the_paper_is_the_regions(region: str, mm: tuple[float, float], size: Print) -> None:
+@pytest.mark.parametrize("code", languages())
+def test_the_paper_is_the_regions(region: str, mm: tuple[float, float], size: Print, code: str) -> None:
     for path in DEMO[1::5]:
-        pdf = pdf_of(path, size, region)
+        pdf = pdf_of(path, size, region, code)
         box = pdf.pages[0].mediabox
         assert (float(box.width), float(box.height)) == pytest.approx([POINTS_A_MM * side for side in mm], abs=0.5)
         assert len(pdf.pages) <= MOST_PAGES[size]
@@ -138,12 +141,13 @@ def invented() -> Iterator[Visit]:
     yield from visits(280)[::23]
 
 
-def test_the_sheets_of_invented_wearers_fit_their_pages_too() -> None:
+@pytest.mark.parametrize("code", languages())
+def test_the_sheets_of_invented_wearers_fit_their_pages_too(code: str) -> None:
     made = 0
     for visit in invented():
         for size, most in MOST_PAGES.items():
             try:
-                html = wearer_sheet(visit, shop("us"), code="en", print_size=size, today=TODAY)
+                html = wearer_sheet(visit, shop("us"), code=code, print_size=size, today=TODAY)
             except NoSuchOption:
                 continue
             pdf = PdfReader(BytesIO(write_pdf(html)))
@@ -164,9 +168,12 @@ def test_the_page_about_care_is_one_page(answered: bool) -> None:
         assert ("tap water" in text) is answered  # for those who meet the sea
 
 
-def test_the_page_about_care_in_large_print_is_two_pages_at_most() -> None:
+@pytest.mark.parametrize("code", languages())
+def test_the_page_about_care_is_one_page_and_in_large_print_two_at_most_in_every_language(code: str) -> None:
     visit = read_visit(resource_dir("demo_patients") / "tinted-pair.json")
-    pdf = PdfReader(BytesIO(write_pdf(care_sheet(visit, shop("us"), code="en", print_size="large", today=TODAY))))
+    one = PdfReader(BytesIO(write_pdf(care_sheet(visit, shop("us"), code=code, today=TODAY))))
+    assert len(one.pages) == 1
+    pdf = PdfReader(BytesIO(write_pdf(care_sheet(visit, shop("us"), code=code, print_size="large", today=TODAY))))
     assert len(pdf.pages) <= 2
     assert min(sizes(pdf)) >= LEAST_PT["large"]
 
@@ -174,15 +181,19 @@ def test_the_page_about_care_in_large_print_is_two_pages_at_most() -> None:
 # --- tagged -----------------------------------------------------------------------------------------------------------
 
 
+TITLES = {"en": "Your new glasses", "es": "Sus gafas nuevas", "fr": "Vos nouvelles lunettes", "de": "Ihre neue Brille"}
+
+
 @pytest.mark.parametrize("size", MOST_PAGES)
-def test_a_sheet_is_tagged_with_language_title_headings_and_words_for_its_drawing(size: Print) -> None:
-    pdf = pdf_of(DEMO[3], size)
+@pytest.mark.parametrize("code", languages())
+def test_a_sheet_is_tagged_with_language_title_headings_and_words_for_its_drawing(size: Print, code: str) -> None:
+    pdf = pdf_of(DEMO[3], size, code=code)
     root: Any = pdf.trailer["/Root"]
-    assert root["/Lang"] == "en"
+    assert root["/Lang"] == code
     assert root["/MarkInfo"]["/Marked"]
     assert root["/ViewerPreferences"]["/DisplayDocTitle"]
     assert pdf.metadata is not None
-    assert pdf.metadata.title == "Your new glasses"
+    assert pdf.metadata.title == TITLES[code]
     roles = [str(node["/S"]) for node in nodes(pdf)]
     headings = [role for role in roles if role in ("/H1", "/H2", "/H3")]
     assert headings[0] == "/H1"
@@ -190,7 +201,8 @@ def test_a_sheet_is_tagged_with_language_title_headings_and_words_for_its_drawin
     assert set(headings) == {"/H1", "/H2"}
     figures = [node for node in nodes(pdf) if str(node["/S"]) == "/Figure"]
     assert len(figures) == 2  # the two bars of the one drawing; marks are no figures
-    assert all("Mirrored away" in str(node["/Alt"]) for node in figures)
+    starts = tuple(language(code).gettext(bar) for bar in (BAR_BARE, BAR_HARD_COAT, BAR_WITH, BAR_MIRRORED))
+    assert all(str(node["/Alt"]).startswith(starts) for node in figures)
     assert roles.count("/TH") == 2
     headers = [node for node in nodes(pdf) if str(node["/S"]) == "/TD"]
     assert all("/Headers" in str(node["/A"]) for node in headers)
@@ -208,9 +220,10 @@ def test_every_font_of_a_large_sheet_is_inside_the_file() -> None:
     assert len(seen) == 2  # the two weights of one face
 
 
-def test_the_headings_are_read_in_the_order_of_the_page() -> None:
-    text = text_of(pdf_of(DEMO[3], "large"))
-    found = [text.find(heading) for heading in HEADINGS.values() if heading in text]
+@pytest.mark.parametrize("code", languages())
+def test_the_headings_are_read_in_the_order_of_the_page(code: str) -> None:
+    text = text_of(pdf_of(DEMO[3], "large", code=code))
+    found = [text.find(words) for one in HEADINGS.values() if (words := language(code).gettext(one)) in text]
     assert len(found) >= 10
     assert found == sorted(found)
 

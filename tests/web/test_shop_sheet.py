@@ -24,7 +24,7 @@ from advisor.counsel.visit import read_visit
 from advisor.records.store import Store
 from advisor.records.trouble import StoreUnreadable
 from advisor.resources import resource_dir
-from advisor.web.forms import visit_to_fields
+from advisor.web.filled_form import visit_to_fields
 from advisor.web.logo import logo_from
 from advisor.web.pdf import FileOutside, write_pdf
 from advisor.web.sheet_page import Print, care_sheet, wearer_sheet
@@ -294,9 +294,9 @@ def with_own(region: str = "eu", paper: str | None = None) -> Range:
 
 
 @cache
-def printed(path: Path, size: Print, region: str = "eu") -> bytes:
+def printed(path: Path, size: Print, region: str = "eu", code: str = "en") -> bytes:
     logo = logo_from(picture())
-    html = wearer_sheet(read_visit(path), with_own(region), code="en", print_size=size, today=TODAY, logo=logo)
+    html = wearer_sheet(read_visit(path), with_own(region), code=code, print_size=size, today=TODAY, logo=logo)
     return write_pdf(html, logo=logo)
 
 
@@ -306,6 +306,14 @@ def test_with_a_logo_and_600_letters_a_sheet_still_fits_its_pages(size: Print) -
         pdf = PdfReader(io.BytesIO(printed(path, size, "us")))  # the shorter paper
         assert len(pdf.pages) <= MOST_PAGES[size], path.stem
         assert "Come in when a screw is loose" in " ".join(" ".join(p.extract_text() for p in pdf.pages).split())
+
+
+@pytest.mark.parametrize("code", [code for code in languages() if code != "en"])
+@pytest.mark.parametrize("size", MOST_PAGES)
+def test_the_longest_sheets_fit_in_every_other_language_too(size: Print, code: str) -> None:
+    for name in ("high-plus-child", "tinted-pair"):
+        pdf = PdfReader(io.BytesIO(printed(resource_dir("demo_patients") / f"{name}.json", size, "eu", code)))
+        assert len(pdf.pages) <= MOST_PAGES[size], name
 
 
 def test_the_page_about_care_keeps_to_its_pages_too() -> None:

@@ -172,3 +172,13 @@ def test_hidden_names_stand_in_no_list_and_no_heading(client: FlaskClient) -> No
     assert 'value="Łucja Ábel"' in client.get(f"/visits/{visit_id}").text  # the field stays, for whoever types there
     client.post("/names", data={"names": "shown", "back": "//elsewhere.example"})
     assert "Łucja" in client.get("/visits").text
+
+
+def test_the_switch_leads_back_to_the_form_it_was_pressed_on(client: FlaskClient) -> None:
+    draft = client.post("/counter", data=FORM, headers={"HX-Request": "true"}).headers["HX-Replace-Url"]
+    page = client.get(draft).text
+    switch = re.search(r'<form class="names-switch".*?</form>', page, re.DOTALL)
+    assert switch
+    assert f'name="back" value="{draft}"' in switch[0]
+    assert client.post("/names", data={"names": "hidden", "back": draft}).headers["Location"] == draft
+    assert 'class="names-hidden"' in client.get(draft).text

@@ -20,7 +20,7 @@ from flask.testing import FlaskClient
 from playwright.sync_api import Browser, Locator, Page, expect, sync_playwright
 
 from advisor.counsel.faults import Faults
-from advisor.web import forms
+from advisor.web import form_fields, forms
 from advisor.web.app import create_app
 from advisor.web.number_fields import number_field, stepping
 
@@ -41,7 +41,7 @@ FIELD_OF = {
 SPHERES = {"prescription.right.sphere": "0", "prescription.left.sphere": "0", "option_count": "1"}
 NUMBER_NAMES = [
     name
-    for name in (*forms.PLAIN, *(f"options.0.{part}" for part in forms.OPTION))
+    for name in (*form_fields.PLAIN, *(f"options.0.{part}" for part in form_fields.OPTION))
     if number_field(name) is not None and stepping(name, "")
 ]
 
@@ -54,7 +54,7 @@ def around(name: str) -> dict[str, str]:
     eye = name.partition(".right.")[0] + ".right." if ".right." in name else name.partition(".left.")[0] + ".left."
     fields = dict(SPHERES)
     if name.startswith("worn_now.prescription."):
-        fields |= {f"worn_now.prescription.{side}.sphere": "0" for side in forms.EYES}
+        fields |= {f"worn_now.prescription.{side}.sphere": "0" for side in form_fields.EYES}
     if name.endswith(".amount"):
         fields[name.replace("amount", "base")] = "in"
     if name.endswith((".cylinder", ".axis")):
@@ -84,9 +84,9 @@ def test_a_field_says_the_least_and_the_most_that_a_visit_takes(name: str) -> No
 def test_every_number_of_the_prescription_the_fitting_and_the_frame_steps() -> None:
     numbers = {name for name in NUMBER_NAMES if not name.startswith(("worn_now.", "options."))}
     assert numbers == {
-        *(f"prescription.{eye}.{part}" for eye in forms.EYES for part in ("sphere", "cylinder", "axis", "add")),
-        *(f"prescription.{eye}.prism.{k}.amount" for eye in forms.EYES for k in (0, 1)),
-        *(f"fitting.{eye}.{part}" for eye in forms.EYES for part in ("pd_mm", "near_pd_mm", "height_mm")),
+        *(f"prescription.{eye}.{part}" for eye in form_fields.EYES for part in ("sphere", "cylinder", "axis", "add")),
+        *(f"prescription.{eye}.prism.{k}.amount" for eye in form_fields.EYES for k in (0, 1)),
+        *(f"fitting.{eye}.{part}" for eye in form_fields.EYES for part in ("pd_mm", "near_pd_mm", "height_mm")),
         "prescription.vertex_mm", "prescription.intermediate_add", "fitting.vertex_mm", "fitting.tilt_deg",
         "fitting.wrap_deg", "frame.a_mm", "frame.b_mm", "frame.dbl_mm", "frame.ed_mm",
     }  # fmt: skip

@@ -8,7 +8,7 @@ from flask.testing import FlaskClient
 from hypothesis import given
 from hypothesis import strategies as st
 
-from advisor.web.forms import COUNT, DECLINED, KEPT, OPTION, PLAIN
+from advisor.web.form_fields import COUNT, DECLINED, KEPT, OPTION, PLAIN
 from advisor.web.language import language
 from advisor.web.undo_words import turns
 from advisor.web.undoing import MOST_CHARACTERS, MOST_STEPS, Past, difference, is_typed, recorded, redone, undone

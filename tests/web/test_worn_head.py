@@ -8,7 +8,7 @@ from flask.testing import FlaskClient
 
 from advisor.counsel.visit import read_visit
 from advisor.resources import resource_dir
-from advisor.web.forms import visit_to_fields
+from advisor.web.filled_form import visit_to_fields
 
 LIVE = {"HX-Request": "true"}
 
