@@ -69,7 +69,13 @@ def _records(data: Path | None) -> Path | str:
     """Return where the records lie: at the address of a database, else in the data folder."""
     from advisor.records.location import data_folder
 
-    return _database() or data_folder(data)
+    given = _database()
+    if given is None:
+        return data_folder(data)
+    from advisor.records.server import address_of
+
+    address_of(given)  # anything else would be taken for a folder
+    return given
 
 
 def _serve(data: Path | None, *, port: int, open_browser: bool) -> None:

@@ -19,10 +19,10 @@ def run(tmp_path: Path, *given: object) -> Result:
 
 def test_large_print_and_care_are_asked_for(tmp_path: Path) -> None:
     out = tmp_path / "sheet.html"
-    assert run(tmp_path, DEMO[0], "-o", out, "--print", "large").exit_code == 0
+    assert run(tmp_path, DEMO[0], "-o", out, "--language", "en", "--print", "large").exit_code == 0
     large = out.read_text("utf-8")
     assert "--text: 18pt" in large
-    assert run(tmp_path, DEMO[0], "-o", out, "--care-only", "--print", "standard").exit_code == 0
+    assert run(tmp_path, DEMO[0], "-o", out, "--language", "en", "--care-only", "--print", "standard").exit_code == 0
     care = out.read_text("utf-8")
     assert "How to care for your glasses" in care
     assert "What you chose" not in care

@@ -96,6 +96,8 @@ def first_days(case: Case, laid: Laid, *, size_percent: float | None, cautions: 
     """Tell what to expect at first, what has changed, and not to drive before it is steady and clear."""
     yield Phrase("first-wear")
     changes = list(changes_from_worn(case, size_percent=size_percent)) or [Phrase("first-size")]
+    if laid.design.kind in _SPECIAL and changes[0].code == "first-same":  # what the worn pair was for is not kept
+        changes = [Phrase("first-size")]
     if "large-change" in cautions:  # which says the same, and more strongly
         changes = [change for change in changes if change.code != "first-power"]
     yield from changes

@@ -74,6 +74,12 @@ class StoreRefused(StoreError):
     text = mark("The server of %(place)s lets nobody in so; check the name, the password and the database's own name.")
 
 
+class StoreSetting(StoreError):
+    """The database's address asks for a setting that the driver does not know or cannot read; it may be a secret."""
+
+    text = mark("The address of %(place)s has a setting behind its “?” that nobody knows; mend it or leave it out.")
+
+
 # Primary SQLite result codes (the low byte of the extended code) and PostgreSQL SQLSTATE codes.
 _SQLITE: Mapping[int, type[StoreError]] = {
     sqlite3.SQLITE_FULL: StoreFull,
@@ -115,6 +121,8 @@ def reason(error: exc.SQLAlchemyError) -> type[StoreError] | None:
     state = getattr(cause, "sqlstate", None)
     if isinstance(state, str) and state in _POSTGRESQL:
         return _POSTGRESQL[state]
+    if isinstance(error, exc.ProgrammingError) and error.statement is None and state is None:
+        return StoreSetting  # nothing was asked of a server yet
     if not isinstance(error, exc.OperationalError):
         return None
     connecting = getattr(cause, "pgconn", None)  # there only where no connection came about

@@ -20,12 +20,14 @@ from advisor.records.visits import SavedVisit
 from advisor.web.brought import said
 from advisor.web.desk import current_desk
 from advisor.web.operators import current_operator
+from advisor.web.policy import refuse_foreign_readers
 from advisor.web.screen import screen
 from advisor.web.stock_loader import shelf_of
 from advisor.web.table import csv_rows, csv_text
 from advisor.web.visits_csv import HEAD, visit_row
 
 exports = Blueprint("exports", __name__)
+exports.before_request(refuse_foreign_readers)
 
 JSON, FHIR, CSV = "application/json", "application/fhir+json", "text/csv; charset=utf-8; header=present"
 NOT_NOTED = "twolight: a file was handed out, but that could not be written down: %s"

@@ -93,7 +93,9 @@ class Language:
         """Return a date with the month as a word, which no reader can take for the day."""
         from babel.dates import format_date
 
-        return format_date(day, format="long", locale=self.locale)
+        written = format_date(day, format="long", locale=self.locale)
+        # French says "the first" and counts from two on; the locale data leave a plain 1
+        return f"1er{written[1:]}" if self.language == "fr" and day.day == 1 else written
 
 
 @cache

@@ -136,8 +136,9 @@ def _jpeg_extent(data: bytes) -> tuple[int, int, int]:
 
 def _opened(data: bytes) -> "Image":
     """Return the decoded picture, upright and on white."""
-    from PIL import Image, ImageOps
+    from PIL import Image, ImageFile, ImageOps
 
+    ImageFile.LOAD_TRUNCATED_IMAGES = False  # WeasyPrint turns it on for the whole program, and never needs it here
     try:
         with Image.open(BytesIO(data), formats=["PNG", "JPEG"]) as found:
             if found.width * found.height > MOST_PIXELS:

@@ -1,8 +1,10 @@
 """Sheets and slips as HTML: a plain Jinja environment for each language, usable without the web application."""
 
+import re
 from collections.abc import Callable, Mapping
 from functools import cache
 from typing import Any
+from unicodedata import bidirectional
 
 from jinja2 import Environment, FileSystemLoader, StrictUndefined
 from markupsafe import Markup, escape
@@ -11,6 +13,8 @@ from advisor.counsel.names import called
 from advisor.counsel.regions import paper_of
 from advisor.resources import resource_dir
 from advisor.web.language import LABEL, Language, language
+
+_UNIT = re.compile(r"(\d(?:</bdi>)?) (mm|g|D|%)(?![\w%])")
 
 
 @cache
@@ -29,6 +33,8 @@ def environment(code: str) -> Environment:
     for name in ("number", "percent", "money"):
         made.filters[name] = _as_figure(made.filters[name])
     made.filters["figure"] = figure
+    made.filters["apart"] = apart
+    made.filters["direction"] = direction
     made.globals["paper_of"] = lambda shop: paper_of(shop.paper, region=shop.region)
     return made
 
@@ -36,6 +42,17 @@ def environment(code: str) -> Environment:
 def figure(text: str) -> Markup:
     """Return a figure kept apart from the words about it: it runs left to right, its sign before it, in any script."""
     return Markup('<bdi dir="ltr">{}</bdi>').format(text)
+
+
+def direction(text: str) -> str:
+    """Return which way a text runs, by its first letter; the layout engine of the PDF does not find out by itself."""
+    found = (bidirectional(letter) for letter in text)
+    return "rtl" if next((kind for kind in found if kind in ("L", "R", "AL")), "L") != "L" else "ltr"
+
+
+def apart(text: str) -> Markup:
+    """Return what somebody typed, or a date, kept apart from the words about it and running its own way."""
+    return Markup('<bdi dir="{}">{}</bdi>').format(direction(text), text)
 
 
 def _as_figure(written: Callable[..., str]) -> Callable[..., Markup]:
@@ -84,4 +101,9 @@ def number_text(chosen: Language, value: float | None, *, digits: int, signed: b
 
 def page(template: str, values: Mapping[str, Any], *, code: str) -> str:
     """Render one template in one language."""
-    return environment(code).get_template(template).render(**values)
+    return together(environment(code).get_template(template).render(**values))
+
+
+def together(html: str) -> str:
+    """Return a page in which no line ends between a figure and its unit."""
+    return _UNIT.sub("\\1\N{NO-BREAK SPACE}\\2", html)

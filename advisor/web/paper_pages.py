@@ -11,12 +11,14 @@ from advisor.web.desk import current_desk
 from advisor.web.documents import bench_slip, order_slip
 from advisor.web.opened import note_opened
 from advisor.web.pdf import PdfFailed, PdfUnavailable, write_pdf
+from advisor.web.policy import refuse_foreign_readers
 from advisor.web.screen import screen
 from advisor.web.sentences import sentence_of
 from advisor.web.sheet_page import Print, care_sheet, wearer_sheet
 from advisor.web.stock_loader import current_shelf, shelf_of
 
 paper_pages = Blueprint("paper_pages", __name__)
+paper_pages.before_request(refuse_foreign_readers)
 
 Make = Callable[[Visit, Range, str], str]  # the last is the kind of fonts
 PAPERS: Mapping[str, Make] = {

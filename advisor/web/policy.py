@@ -5,6 +5,7 @@ Sources:
 - Host: the list of trusted hosts stops DNS rebinding, where a foreign name is made to point at this computer.
 - Cross-site requests: W3C Fetch Metadata Request Headers (``Sec-Fetch-Site``), and the OWASP Cross-Site Request Forgery
   Prevention Cheat Sheet ("Fetch Metadata", and "Using Standard Headers to Verify Origin" where that header is absent).
+- Reading what is written down: the same header, on every method; a server's record is otherwise anybody's to fill.
 - Response headers: OWASP HTTP Security Response Headers Cheat Sheet; W3C Content Security Policy Level 3.
 """
 
@@ -64,6 +65,16 @@ def refuse_foreign_requests() -> None:
     if isinstance(request.routing_exception, SecurityError):
         raise request.routing_exception
     if request.method not in SAFE_METHODS and not comes_from_own_page(request):
+        abort(403)
+
+
+def refuse_foreign_readers() -> None:
+    """Answer 403 to another site that makes the browser fetch what is written down when it is handed out.
+
+    A picture or a link there would fill the record of who did what with things that nobody did. What is typed, kept as
+    a bookmark or opened by a browser that sends no ``Sec-Fetch-Site`` is answered.
+    """
+    if request.headers.get("Sec-Fetch-Site", "none") not in ("same-origin", "none"):
         abort(403)
 
 

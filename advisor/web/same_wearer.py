@@ -1,6 +1,7 @@
 """Which saved visits, and which forms in progress, seem to be one person's: the same name, and no other birth date."""
 
 import json
+import re
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from typing import Any
@@ -95,9 +96,19 @@ def drafts_like(store: Store, saved: SavedVisit) -> list[SavedDraft]:
 
 
 def _persons(kept: Mapping[str, Any]) -> Iterator[Person]:
+    """Yield whom a form names: as it stands, and after each step back and each step on again."""
     fields = kept.get("fields", {})
-    for step in (fields, *kept.get("before", ()), *kept.get("after", ())):
-        merged = {**fields, **step}
-        date = merged.get("wearer.birth_date", "").strip()
-        year = date[:4] or merged.get("wearer.birth_year", "").strip()
-        yield Person(fold(merged.get("wearer.name", "")), date, year)
+    yield _typed_person(fields)
+    for steps in (kept.get("before", ()), kept.get("after", ())):
+        state = fields
+        for step in reversed(steps):
+            state = {**state, **step}
+            yield _typed_person(state)
+
+
+def _typed_person(fields: Mapping[str, str]) -> Person:
+    """Return the person whom typed fields name; a birth date or year that cannot be read is not known."""
+    date, year = (fields.get(f"wearer.{name}", "").strip() for name in ("birth_date", "birth_year"))
+    date = date if re.fullmatch(r"\d{4}-\d\d-\d\d", date, re.ASCII) else ""
+    year = year if re.fullmatch(r"\d{4}", year, re.ASCII) else ""
+    return Person(fold(fields.get("wearer.name", "")), date, date[:4] or year)

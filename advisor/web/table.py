@@ -17,10 +17,13 @@ from advisor.web.language import Language
 WIDTH = 26
 SECOND_IMAGE = mark("second image")
 WORN_NOW = mark("Worn now")
-# OWASP, CSV Injection: how a formula begins, the signs in full width as well. Where the comma is the decimal sign, a
-# spreadsheet parts cells by semicolons, so a formula may also begin behind one.
-FORMULA_STARTS = ("=", "+", "-", "@", "\t", "\r", "\n", "\uff1d", "\uff0b", "\uff0d", "\uff20")
-BEHIND_SEMICOLON = re.compile(rf"(;\s*)(?=[{re.escape(''.join(FORMULA_STARTS))}])")
+# OWASP, CSV Injection: how a formula begins, the signs in full width as well, behind spaces, quotation marks and signs
+# of no width that a spreadsheet may drop. Where the comma is the decimal sign, a spreadsheet parts cells by semicolons
+# and our quotation marks do not hold a cell together, so a formula may also begin behind a semicolon, tab or line end.
+_SIGNS = "=+@\uff1d\uff0b\uff0d\uff20-"
+_DROPPED = r"[\s\"\x00-\x1f\u200b-\u200f\u2060\ufeff]*"
+FORMULA_START = re.compile(rf"[\t\r\n]|{_DROPPED}[{_SIGNS}]")
+FORMULA_BEHIND = re.compile(rf"([;\t\r\n]{_DROPPED})(?=[{_SIGNS}])")
 PLAIN_NUMBER = re.compile(r"[+-]?\d+([.,]\d+)?", re.ASCII)
 CSV_HEAD = ["file", "reference", "option", "eye", "row", "value"]
 
@@ -148,8 +151,8 @@ def harmless(cell: str) -> str:
     """Return a text cell that no spreadsheet takes for a formula (OWASP, CSV Injection); a plain number is none."""
     if PLAIN_NUMBER.fullmatch(cell):
         return cell
-    safe = BEHIND_SEMICOLON.sub(r"\1'", cell)
-    return "'" + safe if safe.startswith(FORMULA_STARTS) else safe
+    safe = FORMULA_BEHIND.sub(r"\1'", cell)
+    return "'" + safe if FORMULA_START.match(safe) else safe
 
 
 def csv_rows(comparison: Comparison, *, file: str) -> list[list[str | float]]:

@@ -182,7 +182,7 @@ def test_every_figure_is_the_comparisons(path: Path, index: int) -> None:
 @pytest.mark.parametrize(("path", "index"), SHEETS)
 def test_a_bar_is_as_long_as_its_figure(path: Path, index: int) -> None:
     html = wearer_sheet(visit_of(path), STOCK, number=index + 1, code="en", today=TODAY)
-    bars = re.findall(r'<title>[^<]*: ([\d.]+) %</title><rect [^>]*width="([\d.]+)"', html)
+    bars = re.findall(r'<title>[^<]*: ([\d.]+)\s%</title><rect [^>]*width="([\d.]+)"', html)
     eye = plain(path, index)["right"]
     mirrors = eye["luminous_reflectance"]
     if mirrors["as_made"]["whole_lens"] is None:  # no film to compare with: where the light goes

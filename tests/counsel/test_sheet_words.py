@@ -188,7 +188,7 @@ def test_every_figure_on_every_sheet_is_a_figure_of_the_answer() -> None:
             for value in numbers_in(made.option[eye].get(name))
             for text in as_printed(value, name=name)
         }
-        for part in page(made.content, "en").split("<section")[1:]:
+        for part in page(made.content, "en").replace("\N{NO-BREAK SPACE}", " ").split("<section")[1:]:
             printed = [text for text in FIGURE.findall(part) if not part.startswith(' class="block block-chosen"')]
             assert set(printed) <= known, (made.visit.reference, set(printed) - known)
             seen += len(printed)
@@ -242,6 +242,15 @@ def test_nobody_drives_before_it_is_steady_and_clear() -> None:
         lines = {line.code for block in made.content.blocks for line in block.lines}
         assert lines & {"first-drive", "not-for-driving-design", "not-for-driving-tint"}
         assert len(lines & {"first-drive", "not-for-driving-tint"}) < 2
+
+
+def test_a_lens_with_several_zones_is_never_called_much_like_the_old_pair() -> None:
+    """What the worn pair was made for is not kept, so only a single-vision lens can be likened to it."""
+    told = [{line.code for block in made.content.blocks for line in block.lines} for made in sheets()]
+    zones = [lines for lines in told if lines & {"for-desk", "for-far-and-near-line", "for-far-to-near"}]
+    assert len(zones) > 20
+    assert not any("first-same" in lines for lines in zones)
+    assert any("first-same" in lines for lines in told)
 
 
 def test_everybody_is_given_a_day_to_come_back() -> None:

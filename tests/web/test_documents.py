@@ -193,7 +193,9 @@ COMPLETE: dict[str, Any] = {
 
 
 def slip(stock: Range | None = None, **more: Any) -> str:
-    return order_slip(check_visit(COMPLETE | more), stock or STOCK, today=TODAY)
+    """The order slip, whatever kind of space stands before a unit."""
+    html = order_slip(check_visit(COMPLETE | more), stock or STOCK, today=TODAY)
+    return html.replace("\N{NO-BREAK SPACE}", " ")
 
 
 def rows(html: str) -> dict[str, list[list[str]]]:

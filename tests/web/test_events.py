@@ -91,6 +91,32 @@ def test_the_list_goes_on_page_by_page(client: FlaskClient, store: Store) -> Non
     assert "copied a visit" in second
 
 
+# W3C Fetch Metadata Request Headers, Sec-Fetch-Site; another port of this computer is another origin of the same site
+@pytest.mark.parametrize("site", ["cross-site", "same-site"])
+@pytest.mark.parametrize(
+    "end", ["sheet", "sheet.pdf", "care", "visit.json", "prescription.fhir.json", "comparison.csv"]
+)
+def test_another_site_can_neither_open_a_paper_nor_fill_the_list(
+    client: FlaskClient, store: Store, site: str, end: str
+) -> None:
+    visit_id = saved_id(client, ordered="0")
+    picture = {"Sec-Fetch-Site": site, "Sec-Fetch-Mode": "no-cors", "Sec-Fetch-Dest": "image"}
+    ahead = {"Sec-Fetch-Site": site, "Sec-Purpose": "prefetch"}
+    for headers in (picture, ahead):
+        answers = [ask(f"/visits/{visit_id}/{end}", headers=headers) for ask in (client.get, client.head)]
+        assert [answer.status_code for answer in answers] == [403, 403]
+    assert done(store, visit_id) == ["saved"]
+
+
+def test_a_paper_that_is_typed_or_kept_as_a_bookmark_is_opened_and_written_down(app: Flask, store: Store) -> None:
+    visit_id = saved_id(app.test_client(), ordered="0")
+    typed = app.test_client()
+    assert typed.get(f"/visits/{visit_id}/sheet", headers={"Sec-Fetch-Site": "none"}).status_code == 200
+    del typed.environ_base["HTTP_SEC_FETCH_SITE"]  # a browser that does not send it
+    assert typed.get(f"/visits/{visit_id}/care").status_code == 200
+    assert done(store, visit_id) == ["saved", "sheet", "care"]
+
+
 def test_who_is_signed_in_is_written_down(app: Flask, store: Store, monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.setattr(operators, "session", {operators.OPERATOR: "Front desk"})
     saved_id(app.test_client())

@@ -35,13 +35,14 @@ def test_a_number_has_a_fixed_count_of_decimals_and_a_real_minus(
     assert ENGLISH.number(value, digits=digits, signed=signed) == text
 
 
-# Separators of the Unicode CLDR; the minus is ours in every language.
+# Separators of the Unicode CLDR; the minus is ours in every language, and so is the French first of a month, which the
+# CLDR writes as a plain 1 (French usage: premier for the first, plain numbers from 2 on; common practice, no source).
 @pytest.mark.parametrize(
     ("code", "number", "money", "day"),
     [
         ("en", "−1,234.50", "€80.00", "1 December 2026"),
         ("de", "−1.234,50", f"80,00{NO_BREAK}€", "1. Dezember 2026"),
-        ("fr", f"−1{NARROW}234,50", f"80,00{NO_BREAK}€", "1 décembre 2026"),
+        ("fr", f"−1{NARROW}234,50", f"80,00{NO_BREAK}€", "1er décembre 2026"),
         ("es", "−1234,50", f"80,00{NO_BREAK}€", "1 de diciembre de 2026"),
     ],
 )
@@ -51,6 +52,11 @@ def test_numbers_money_and_dates_are_written_as_the_language_does(code: str, num
     assert written in (number, number.replace("1234", "1.234"))  # CLDR groups four digits in Spanish from five on
     assert chosen.money(80, currency="EUR") == money
     assert chosen.date(DAY) == day
+
+
+def test_in_french_the_first_of_a_month_alone_is_an_ordinal() -> None:
+    days = [Language("fr").date(datetime.date(2026, 7, day)) for day in (1, 2, 11, 31)]
+    assert days == ["1er juillet 2026", "2 juillet 2026", "11 juillet 2026", "31 juillet 2026"]
 
 
 def test_a_date_is_never_a_row_of_figures() -> None:

@@ -11,7 +11,7 @@ import struct
 import zlib
 
 import pytest
-from PIL import Image, ImageDraw
+from PIL import Image, ImageDraw, ImageFile
 from PIL.PngImagePlugin import PngInfo
 
 from advisor.web import logo as module
@@ -208,7 +208,10 @@ REFUSED: dict[str, tuple[bytes, type[LogoRefused]]] = {
 
 
 @pytest.mark.parametrize(("data", "reason"), REFUSED.values(), ids=REFUSED)
-def test_what_is_no_plain_picture_is_refused_with_its_reason(data: bytes, reason: type[LogoRefused]) -> None:
+def test_what_is_no_plain_picture_is_refused_with_its_reason(
+    data: bytes, reason: type[LogoRefused], monkeypatch: pytest.MonkeyPatch
+) -> None:
+    monkeypatch.setattr(ImageFile, "LOAD_TRUNCATED_IMAGES", True)  # as the layout of PDF files leaves it
     with pytest.raises(LogoRefused) as caught:
         logo_from(data)
     assert type(caught.value) is reason
@@ -227,7 +230,8 @@ def test_what_the_head_tells_is_refused_before_anything_is_decoded(name: str, mo
 
 
 @pytest.mark.parametrize("kind", ["PNG", "JPEG"])
-def test_a_picture_cut_off_anywhere_is_refused(kind: str) -> None:
+def test_a_picture_cut_off_anywhere_is_refused(kind: str, monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr(ImageFile, "LOAD_TRUNCATED_IMAGES", True)  # as the layout of PDF files leaves it
     data = file_of(plain(30, 20), kind)
     for end in range(3 if kind == "JPEG" else 8, len(data) - 1, 3):
         with pytest.raises(LogoBroken):

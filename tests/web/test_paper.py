@@ -15,7 +15,7 @@ from advisor.resources import resource_dir
 from advisor.web import pdf
 from advisor.web.documents import standing_alone
 from advisor.web.language import language
-from advisor.web.paper import OnPaper, environment
+from advisor.web.paper import OnPaper, environment, together
 from advisor.web.pdf import PdfFailed, PdfUnavailable, is_available, write_pdf
 from advisor.web.sheet_page import wearer_sheet
 
@@ -58,6 +58,30 @@ def without_bdi(html: str) -> str:
 def test_a_figure_runs_left_to_right_with_its_sign_before_it_in_any_script() -> None:
     assert rendered("{{ v|number(2, true) }}", v=-4.25) == '<bdi dir="ltr">−4.25</bdi>'
     assert rendered("{{ _('Add %(add)s', add=v|number(2, true)) }}", v=2) == 'Add <bdi dir="ltr">+2.00</bdi>'
+
+
+@pytest.mark.parametrize(
+    ("text", "way"),
+    [
+        ("Ann Bo", "ltr"),
+        ("2 \u05d3\u05e6\u05de\u05d1\u05e8 2026", "rtl"),
+        ("1 \u0644\u064a", "rtl"),
+        ("1 High Street", "ltr"),
+        ("A-1", "ltr"),
+        ("42", "ltr"),
+        ("", "ltr"),
+    ],
+)  # the first strong letter decides: Unicode Standard Annex 9, rules P2 and P3
+def test_what_was_typed_and_a_date_run_their_own_way(text: str, way: str) -> None:
+    assert rendered("{{ text|apart }}", text=text) == f'<bdi dir="{way}">{text}</bdi>'
+    assert rendered("{{ text|direction }}", text=text) == way
+
+
+def test_no_line_ends_between_a_figure_and_its_unit() -> None:
+    spaced = "{{ v|number(1) }} mm, {{ v|number(1) }} % of, {{ v|number(1) }} months"
+    assert (
+        without_bdi(together(rendered(spaced, v=2))) == "2.0\N{NO-BREAK SPACE}mm, 2.0\N{NO-BREAK SPACE}% of, 2.0 months"
+    )
 
 
 def test_a_sentence_of_the_domain_keeps_its_figures_apart_and_what_was_typed_as_text() -> None:

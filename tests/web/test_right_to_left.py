@@ -80,7 +80,7 @@ def test_the_page_runs_to_the_left_and_fields_by_what_is_in_them(counter: str) -
     assert [field for field in typed if ' dir="auto"' not in field and ' dir="ltr"' not in field] == []
 
 
-@pytest.mark.parametrize("name", ["app.css", "paper.css", "pictures.css", "turn.css"])
+@pytest.mark.parametrize("name", ["app.css", "paper.css", "pictures.css", "sheet-preview.css", "turn.css"])
 def test_style_sheets_name_no_side(name: str) -> None:
     """Start and end turn round with the language; left and right do not, unless a rule turns them round beside it."""
     text = re.sub(r"/\*.*?\*/|@bottom-(?:left|right)", "", (STATIC / "css" / name).read_text("utf-8"), flags=re.DOTALL)

@@ -283,7 +283,14 @@ def test_a_sheet_stands_up_to_what_is_typed(more: dict[str, Any], size: Print) -
 
 def test_a_name_is_set_apart_so_that_it_may_run_the_other_way() -> None:
     html = wearer_sheet(check_visit(PLAIN | {"wearer": {"name": HEBREW}}), shop("eu"), code="en", today=TODAY)
-    assert f"<bdi>{HEBREW}</bdi>" in html
+    assert f'<bdi dir="rtl">{HEBREW}</bdi>' in html
+
+
+def test_the_shops_paragraph_runs_its_own_way_whatever_the_language_of_the_sheet() -> None:
+    for words, way in ((HEBREW, "rtl"), ("See you soon.", "ltr")):
+        own = Shop(name="Lamplight Opticians", paragraph=words, region="eu", currency="EUR")
+        stock = builtin_range().model_copy(update={"shop": own})
+        assert f'<p dir="{way}">{words}</p>' in wearer_sheet(check_visit(PLAIN), stock, code="en", today=TODAY)
 
 
 def test_who_supplied_the_glasses_and_the_warranty_are_named() -> None:

@@ -25,6 +25,7 @@ from advisor.records.store import Store
 from advisor.records.trouble import StoreUnreadable
 from advisor.resources import resource_dir
 from advisor.web.filled_form import visit_to_fields
+from advisor.web.language import languages
 from advisor.web.logo import logo_from
 from advisor.web.pdf import FileOutside, write_pdf
 from advisor.web.sheet_page import Print, care_sheet, wearer_sheet
@@ -312,8 +313,14 @@ def test_with_a_logo_and_600_letters_a_sheet_still_fits_its_pages(size: Print) -
 @pytest.mark.parametrize("size", MOST_PAGES)
 def test_the_longest_sheets_fit_in_every_other_language_too(size: Print, code: str) -> None:
     for name in ("high-plus-child", "tinted-pair"):
-        pdf = PdfReader(io.BytesIO(printed(resource_dir("demo_patients") / f"{name}.json", size, "eu", code)))
+        path = resource_dir("demo_patients") / f"{name}.json"
+        pdf = PdfReader(io.BytesIO(printed(path, size, "eu", code)))
         assert len(pdf.pages) <= MOST_PAGES[size], name
+
+
+def test_the_shops_words_come_after_the_signs_for_an_eye_doctor() -> None:
+    html = wearer_sheet(read_visit(DEMO[0]), with_own(), code="en", today=TODAY)
+    assert html.index("See an eye doctor today") < html.index("Come in when a screw is loose")
 
 
 def test_the_page_about_care_keeps_to_its_pages_too() -> None:

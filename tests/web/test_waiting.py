@@ -148,17 +148,13 @@ def test_a_form_that_is_slow_to_be_saved_is_announced(page: Page, address: str, 
 def test_what_comes_at_once_is_not_announced(page: Page, address: str) -> None:
     page.goto(f"{address}/range")  # fetched once, so that nothing is made for the first time
     page.goto(f"{address}/visits")
-    took: list[float] = []
     for name in ("Range", "Visits"):
-        began = time.monotonic()
         page.get_by_role("link", name=name, exact=True).click()
         expect(page.get_by_role("heading", name=name, exact=True, level=1)).to_be_visible()
-        took.append(time.monotonic() - began)
     page.get_by_role("link", name="Range", exact=True).click()
     with page.expect_download():
         page.get_by_role("link", name="Export as one file").click()
     page.wait_for_timeout(600)
-    assert took
     assert said(page) == ""
 
 

@@ -158,6 +158,32 @@ def test_a_name_that_can_only_be_brought_back_by_undo_is_found(client: FlaskClie
         store.get_draft(draft)
 
 
+def test_a_form_typed_over_for_the_next_wearer_is_found_by_each_step_back(client: FlaskClient, store: Store) -> None:
+    born = {"wearer.birth_date": "1950-03-01"}
+    visit_id = person(client, "a", **born)
+    draft = draft_of(client, **born)
+    sent = {**FORM, **born, "token": "9" * 32, "draft": draft}
+    steps = ({"wearer.birth_date": "1990-12-24"}, {"note": "next"}, {"wearer.name": "Teo Brandt"}, {"note": "again"})
+    for edit, step in enumerate(steps, 1):
+        sent |= {"draft_edit": str(edit), **step}
+        client.post("/counter", data=sent, headers={"HX-Request": "true"})
+    assert json.loads(store.get_draft(draft).fields_json)["fields"]["wearer.name"] == "Teo Brandt"
+    assert erased(client, visit_id, forms="1") == 303
+    with pytest.raises(DraftMissing):
+        store.get_draft(draft)
+
+
+@pytest.mark.parametrize("typed", ["1.3.1950", "1950", "March"])
+def test_a_form_whose_birth_date_cannot_be_read_is_found_by_its_name(
+    client: FlaskClient, store: Store, typed: str
+) -> None:
+    visit_id = person(client, "a", **{"wearer.birth_date": "1950-03-01"})
+    draft = draft_of(client, **{"wearer.birth_date": typed})
+    assert erased(client, visit_id, forms="1") == 303
+    with pytest.raises(DraftMissing):
+        store.get_draft(draft)
+
+
 def test_erasing_twice_is_told_and_harms_nobody(client: FlaskClient) -> None:
     visit_id = person(client, "a")
     assert [erased(client, visit_id), erased(client, visit_id)] == [303, 404]
