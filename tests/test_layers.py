@@ -9,10 +9,11 @@ import pytest
 import advisor
 
 PACKAGE = Path(advisor.__file__).parent
-ORDER = ["__main__", "cli", "web", "records", "counsel", "optics", "resources", "errors"]
+ORDER = ["__main__", "cli", "commands", "web", "records", "counsel", "optics", "resources", "errors"]
 THIRD_PARTIES = {
     "__main__": set(),
-    "cli": {"click", "tqdm"},
+    "cli": {"click"},
+    "commands": {"click", "tqdm"},
     "web": {"flask", "werkzeug", "jinja2", "markupsafe", "babel", "weasyprint", "PIL", "cheroot", "pydantic"},
     "records": {"sqlalchemy", "alembic", "platformdirs"},
     "counsel": {"numpy", "pydantic", "pydantic_core", "tomlkit"},

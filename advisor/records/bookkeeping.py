@@ -77,7 +77,7 @@ class Bookkeeping:
         """Erase visits with their return visits and forms, and further forms; what is gone already is no error."""
         with self._writing() as connection:
             gone = erasing.erase(connection, visit_ids, draft_ids=draft_ids, who=who)
-        erasing.settle(self._engine)
+        erasing.settle(self._engine, place=self.place)
         return gone
 
     def old_visits(self, *, before_day: str, limit: int = 50) -> OldVisits:
@@ -90,7 +90,7 @@ class Bookkeeping:
         with self._writing() as connection:
             still_old = erasing.old_among(connection, visit_ids, before_day=before_day)
             gone = erasing.erase(connection, still_old, who=who)
-        erasing.settle(self._engine)
+        erasing.settle(self._engine, place=self.place)
         return gone
 
     def backup(self, file: Path, *, replace: bool = False) -> Backup:

@@ -87,7 +87,8 @@ def make_copy(store: Store, folder: Path, *, day: datetime.date) -> None:
         return
     place = folder / FOLDER
     with explained(str(place)):
-        place.mkdir(mode=0o700, parents=True, exist_ok=True)
+        folder.mkdir(mode=0o700, parents=True, exist_ok=True)  # there is none yet where a server holds the records
+        place.mkdir(mode=0o700, exist_ok=True)
         for left in (path for path in place.iterdir() if _PART.fullmatch(path.name)):  # by a program that was killed
             parts.clear(left)
         file = place / f"twolight-{day.isoformat()}.sqlite3"

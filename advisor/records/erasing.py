@@ -1,15 +1,27 @@
 """Erasing for good: visits with all that hangs on them, and forms in progress; and which visits are old."""
 
+import sqlite3
 from collections.abc import Sequence
 from dataclasses import dataclass
 
 from sqlalchemy import ColumnElement, Connection, Engine, delete, exists, func, select
 
+from advisor.counsel.phrases import mark
 from advisor.records import events, finding, tables
+from advisor.records.trouble import StoreError
 from advisor.records.visits import VisitLine
 
 _VISIT = tables.visit.c
 _RECHECK = tables.recheck.c
+
+
+class TracesLeft(StoreError):
+    """What was to go is gone from the records, but the file still holds the pages it stood on."""
+
+    text = mark(
+        "What was to go is erased, but there was no room to overwrite it: traces may stay in %(place)s. "
+        "Make room on the disk, then stop Twolight and start it again."
+    )
 
 
 @dataclass(frozen=True)
@@ -72,12 +84,20 @@ def old_among(connection: Connection, visit_ids: Sequence[str], *, before_day: s
     return list(connection.execute(query).scalars())
 
 
-def settle(engine: Engine) -> None:
-    """Bring what was erased out of SQLite's side file as well, where old pages would stay for a while."""
+def settle(engine: Engine, *, place: str) -> None:
+    """Bring what was erased out of SQLite's side file as well, where old pages would stay for a while.
+
+    Raises
+    ------
+    TracesLeft
+        If the disk does not let it: what was erased stays erased.
+    """
     if engine.dialect.name != "sqlite":
         return
     raw = engine.raw_connection()
     try:
         raw.cursor().execute("PRAGMA wal_checkpoint(TRUNCATE)")  # a reader in between puts it off to the next
+    except sqlite3.Error as error:
+        raise TracesLeft(place) from error
     finally:
         raw.close()

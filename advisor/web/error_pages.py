@@ -9,6 +9,7 @@ from werkzeug.exceptions import HTTPException, InternalServerError
 from advisor.counsel.phrases import mark
 from advisor.errors import TwolightError
 from advisor.records.drafts import DraftChanged, DraftMissing
+from advisor.records.erasing import TracesLeft
 from advisor.records.rechecks import RecheckMissing
 from advisor.records.trouble import StoreError, StoreFull
 from advisor.records.visits import VisitChanged, VisitMissing
@@ -45,6 +46,7 @@ STATUSES: tuple[tuple[type[TwolightError], int], ...] = (
     (VisitChanged, 409),
     (DraftChanged, 409),
     (StoreFull, 507),
+    (TracesLeft, 507),
     (StoreError, 503),
     (TwolightError, 400),
 )

@@ -68,18 +68,18 @@ def visits_file() -> Response:
     store, with_notes = current_desk().store, request.form.get("notes") == "1"
     found = _found(store, request.form.get("search", "")[:200])
     rows = [visit_row(parse_visit(saved.visit_json), with_note=with_notes) for saved in found]
-    _note()
+    note_handed_out()
     head: list[str | float] = [*HEAD, "note"] if with_notes else [*HEAD]
     return _file(csv_text([head, *rows], head=False), kind=CSV, name="twolight-visits.csv")
 
 
 def _handed_out(visit_id: str) -> SavedVisit:
     saved = current_desk().store.get_visit(visit_id)
-    _note(visit_id)
+    note_handed_out(visit_id)
     return saved
 
 
-def _note(visit_id: str | None = None) -> None:
+def note_handed_out(visit_id: str | None = None) -> None:
     """Write down that a file was handed out, as a server writes its log; where there is no room, hand it out still."""
     try:
         current_desk().store.record_event("exported", who=current_operator(), visit_id=visit_id)

@@ -6,6 +6,7 @@ from werkzeug.wrappers import Response as AnyResponse
 from advisor.records.drafts import SavedDraft
 from advisor.records.visits import SavedVisit
 from advisor.web.desk import current_desk
+from advisor.web.exports import note_handed_out
 from advisor.web.operators import current_operator
 from advisor.web.same_wearer import Candidate, drafts_like, visits_like
 from advisor.web.wearer_files import wearer_zip
@@ -61,7 +62,7 @@ def export(visit_id: str) -> AnyResponse:
     store = current_desk().store
     content = wearer_zip(store, [store.get_visit(one) for one in ids], forms)
     for one in ids:
-        store.record_event("exported", who=current_operator(), visit_id=one)
+        note_handed_out(one)
     return _zip(content)
 
 

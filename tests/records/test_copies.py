@@ -47,6 +47,7 @@ def test_a_copy_of_either_database_holds_every_row_and_is_private(store: Store, 
     if os.name == "posix":
         assert stat.S_IMODE(copy.stat().st_mode) == 0o600
         assert stat.S_IMODE(copy.parent.stat().st_mode) == 0o700
+        assert stat.S_IMODE(folder.stat().st_mode) == 0o700  # made here where a server holds the records
 
 
 def test_the_first_copy_of_a_day_stays(store: Store, folder: Path) -> None:

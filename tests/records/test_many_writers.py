@@ -45,7 +45,7 @@ class Writer(threading.Thread):
     """A counter that saves one form after another, each until it is told where the visit is."""
 
     def __init__(self, app: Flask, number: int, goes_on: Callable[[], bool]) -> None:
-        super().__init__(name=f"writer {number}")
+        super().__init__(name=f"writer {number}", daemon=True)
         self._client, self._number, self._goes_on = app.test_client(), number, goes_on
         self.saved: dict[str, str] = {}  # the visit of each form's reference
         self.statuses: list[int] = []
@@ -114,14 +114,16 @@ def test_a_server_that_dies_under_the_writers_loses_nothing_and_is_found_again(
         writers = [Writer(app, number, lambda: not done.is_set()) for number in range(counters)]
         for writer in writers:
             writer.start()
-        for death in range(deaths):
+        try:
+            for death in range(deaths):
+                everyone_saves_again(writers)
+                time.sleep(moments.uniform(0.0, 0.3))
+                own_postgres.kill() if death % 2 == 0 else own_postgres.stop(signal.SIGQUIT)
+                time.sleep(0.3)  # while it is away, every counter is told so
+                own_postgres.start()
             everyone_saves_again(writers)
-            time.sleep(moments.uniform(0.0, 0.3))
-            own_postgres.kill() if death % 2 == 0 else own_postgres.stop(signal.SIGQUIT)
-            time.sleep(0.3)  # while it is away, every counter is told so
-            own_postgres.start()
-        everyone_saves_again(writers)
-        done.set()
+        finally:
+            done.set()
         for writer in writers:
             writer.join()
     assert {status for writer in writers for status in writer.statuses} == {303, 503}

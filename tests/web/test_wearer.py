@@ -2,15 +2,21 @@
 
 import io
 import json
+import sqlite3
 import zipfile
 from pathlib import Path
+from types import SimpleNamespace
+from typing import Any
 
 import pytest
 from flask.testing import FlaskClient
 
+from advisor.records import erasing
 from advisor.records.drafts import DraftMissing
 from advisor.records.store import Store
+from advisor.records.trouble import StoreFull
 from advisor.records.visits import VisitMissing
+from advisor.web import exports
 from tests.web.test_visits import FORM, saved_id
 
 NAME = "Łucja Ábel"
@@ -83,6 +89,19 @@ def test_the_export_holds_everything_under_names_that_tell_nobody(client: FlaskC
     assert store.list_events(visit_id=visit_id)[0].what == "exported"
 
 
+def test_a_wearer_is_exported_where_nothing_can_be_written_down(
+    client: FlaskClient, store: Store, monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str]
+) -> None:
+    def full(*_given: object, **_named: object) -> None:
+        raise StoreFull("/somewhere")
+
+    visit_id = person(client, "a")
+    monkeypatch.setattr(type(store), "record_event", full)
+    answer = client.post(f"/visits/{visit_id}/wearer/export", data={"visit": visit_id})
+    assert "visit-1/visit.json" in unpacked(answer.data)
+    assert capsys.readouterr().err == exports.NOT_NOTED % "StoreFull" + "\n"
+
+
 def test_what_was_not_ticked_is_neither_exported_nor_erased(client: FlaskClient, store: Store) -> None:
     own, same = person(client, "a"), person(client, "b")
     stranger = person(client, "c", **{"wearer.name": "Teo Brandt"})
@@ -138,6 +157,29 @@ def test_an_erased_wearer_is_gone_whole_and_from_the_files(client: FlaskClient, 
     assert b"Teo Brandt" in left
     assert b"Unmistakable" not in left
     assert b"unmistakable" not in left
+
+
+def test_an_erasing_that_cannot_overwrite_the_file_is_done_and_says_what_stays(
+    client: FlaskClient, store: Store, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    class FullDisk:
+        def cursor(self) -> "FullDisk":
+            return self
+
+        def execute(self, _statement: str) -> None:
+            raise sqlite3.OperationalError("database or disk is full")
+
+        def close(self) -> None:
+            pass
+
+    visit_id = person(client, "a")
+    broken: Any = SimpleNamespace(dialect=store._engine.dialect, raw_connection=FullDisk)
+    settle = erasing.settle
+    monkeypatch.setattr(erasing, "settle", lambda _engine, *, place: settle(broken, place=place))
+    answer = client.post(f"/visits/{visit_id}/wearer/erase", data={"visit": visit_id, "confirmed": "yes"})
+    assert answer.status_code == 507
+    assert "is erased, but there was no room to overwrite it" in answer.text
+    assert store.list_visits() == []
 
 
 def test_the_record_of_what_was_done_keeps_no_link_to_what_was_erased(client: FlaskClient, store: Store) -> None:
