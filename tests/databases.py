@@ -22,6 +22,7 @@ Place: TypeAlias = Path | str
 
 PASSWORD = "open-sesame-in-tests"  # noqa: S105 - of a server that lives as long as the tests and answers this computer
 USER = "desk"
+AS_POSTGRES = ("setpriv", "--reuid=postgres", "--regid=postgres", "--clear-groups", "--")
 # The newest installed; Debian and Ubuntu keep each version in a folder of its own.
 PROGRAMS = max(Path("/usr/lib/postgresql").glob("*/bin"), key=lambda path: int(path.parent.name), default=None)
 
@@ -67,20 +68,32 @@ class Postgres:
     def __init__(self, programs: Path) -> None:
         self._programs = programs
         self._folder = Path(tempfile.mkdtemp(prefix="twolight-", dir=tempfile.gettempdir()))
-        self._as: dict[str, Any] = {"cwd": self._folder, "stdin": subprocess.DEVNULL}
+        # By a program of its own rather than by Popen: that would fork, and a fork while other threads multiply
+        # matrices can leave these waiting for ever.
+        self._as = [*AS_POSTGRES] if os.geteuid() == 0 else []
+        self._quietly: dict[str, Any] = {"cwd": self._folder, "stdin": subprocess.DEVNULL}
         self._databases = 0
         self._shared: str | None = None
         self.port = free_port()
         secret = self._folder / "secret"
         secret.write_text(PASSWORD)
-        if os.geteuid() == 0:
-            self._as |= {"user": "postgres", "group": "postgres", "extra_groups": []}
+        if self._as:
             shutil.chown(self._folder, "postgres")
             shutil.chown(secret, "postgres")
+        options = (
+            "-U",
+            USER,
+            "-A",
+            "scram-sha-256",
+            f"--pwfile={secret}",
+            "-E",
+            "UTF8",
+            "--locale=C.UTF-8",
+            "--no-sync",
+        )
         made = subprocess.run(
-            [str(programs / "initdb"), "-D", str(self._data), "-U", USER, "-A", "scram-sha-256", f"--pwfile={secret}",
-             "-E", "UTF8", "--locale=C.UTF-8", "--no-sync"],
-            **self._as, stdout=subprocess.PIPE, stderr=subprocess.STDOUT, text=True, check=False,
+            [*self._as, str(programs / "initdb"), "-D", str(self._data), *options],
+            **self._quietly, stdout=subprocess.PIPE, stderr=subprocess.STDOUT, text=True, check=False,
         )  # fmt: skip
         assert made.returncode == 0, made.stdout
         self._server = self._started()
@@ -95,7 +108,10 @@ class Postgres:
         options = [part for setting in settings for part in ("-c", setting)]
         with (self._folder / "log").open("ab") as log:
             server = subprocess.Popen(
-                [str(self._programs / "postgres"), "-D", str(self._data), *options], **self._as, stdout=log, stderr=log
+                [*self._as, str(self._programs / "postgres"), "-D", str(self._data), *options],
+                **self._quietly,
+                stdout=log,
+                stderr=log,
             )
         ready = [str(self._programs / "pg_isready"), "-q", "-h", "127.0.0.1", "-p", str(self.port)]
         for _ in range(1200):

@@ -59,7 +59,10 @@ class Bookkeeping:
             return rechecks.leading_to(connection, visit_id)
 
     def link_recheck(self, recheck_id: str, *, new_visit_id: str, who: str = events.HERE) -> SavedRecheck:
-        """Say which visit is the new order that came of a return visit; raises RecheckMissing or VisitMissing."""
+        """Say which visit is the new order that came of a return visit.
+
+        Raises RecheckMissing or VisitMissing, or OwnOrder where it is the visit that was rechecked.
+        """
         with self._writing() as connection:
             return rechecks.link(connection, recheck_id, new_visit_id=new_visit_id, who=who)
 

@@ -36,6 +36,12 @@ class RecheckChanged(TwolightError):
     text = mark("An outcome was recorded from this form before, and it was another one; nothing was overwritten.")
 
 
+class OwnOrder(TwolightError):
+    """The visit that was rechecked is named as the new order that came of it."""
+
+    text = mark("A visit is never its own new order; choose the visit of the new order.")
+
+
 def add(
     connection: Connection,
     content_json: str,
@@ -50,7 +56,7 @@ def add(
     """Store an outcome; one sent twice under the same identifier is stored once, another one is refused."""
     visits.find(connection, visit_id)
     if new_visit_id is not None:
-        visits.find(connection, new_visit_id)
+        _find_other(connection, new_visit_id, visit_id)
     key = recheck_id or tables.new_id()
     saved = SavedRecheck(key, visit_id, tables.now(), outcome, who_pays, new_visit_id, content_json)
     there = connection.execute(select(tables.recheck).where(_RECHECK.id == key)).first()
@@ -85,9 +91,15 @@ def leading_to(connection: Connection, visit_id: str) -> list[SavedRecheck]:
 
 
 def link(connection: Connection, recheck_id: str, *, new_visit_id: str, who: str = events.HERE) -> SavedRecheck:
-    """Say which visit is the new order that came of a record, or raise RecheckMissing or VisitMissing."""
-    visits.find(connection, new_visit_id)
+    """Say which visit is the new order that came of a record, or raise RecheckMissing, VisitMissing or OwnOrder."""
     found = find(connection, recheck_id)
+    _find_other(connection, new_visit_id, found.visit_id)
     connection.execute(update(tables.recheck).where(_RECHECK.id == recheck_id).values(new_visit_id=new_visit_id))
     events.add(connection, "linked", who=who, visit_id=found.visit_id)
     return find(connection, recheck_id)
+
+
+def _find_other(connection: Connection, new_visit_id: str, visit_id: str) -> None:
+    if new_visit_id == visit_id:
+        raise OwnOrder
+    visits.find(connection, new_visit_id)

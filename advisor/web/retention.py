@@ -32,13 +32,19 @@ def listing() -> str:
     return _page()
 
 
-def _page(*, none: bool = False) -> str:
+def _page(*, none: bool = False, stayed: int = 0) -> str:
     months = _months()
     before = None if months is None else months_before(dt.date.today(), months)
     found = None if before is None else current_desk().store.old_visits(before_day=before.isoformat(), limit=AT_ONCE)
     oldest = None if found is None or found.oldest is None else dt.date.fromisoformat(found.oldest)
     return render_template(
-        "old_visits.html", months=months, before=before, found=found, oldest=oldest, nothing_ticked=none
+        "old_visits.html",
+        months=months,
+        before=before,
+        found=found,
+        oldest=oldest,
+        nothing_ticked=none,
+        stayed=stayed,
     )
 
 
@@ -53,4 +59,7 @@ def erase() -> AnyResponse:
         return make_response(render_template("old_visits_erase.html", ids=ids, goes=store.count_of(ids)))
     before = months_before(dt.date.today(), months).isoformat()
     store.erase_old(ids, before_day=before, who=current_operator())
+    stayed = store.count_of(ids).visits
+    if stayed:
+        return make_response(_page(stayed=stayed), 409)
     return redirect(url_for("wearer.erased"), 303)

@@ -4,7 +4,7 @@ from typing import Any
 import pytest
 from sqlalchemy import Row
 
-from advisor.records.rechecks import RecheckChanged, RecheckMissing
+from advisor.records.rechecks import OwnOrder, RecheckChanged, RecheckMissing
 from advisor.records.store import Store
 from advisor.records.visits import VisitMissing
 from tests.databases import Place, rows
@@ -66,6 +66,17 @@ def test_it_goes_with_its_visit_and_only_forgets_an_erased_new_order(store: Stor
     assert recorded(place) == [(old, "remake", "shop", None, CONTENT)]
     store.erase_visit(old)
     assert recorded(place) == []
+
+
+def test_a_visit_is_never_its_own_new_order(store: Store, place: Place) -> None:
+    old, new = visit(store), visit(store)
+    with pytest.raises(OwnOrder):
+        store.save_recheck(CONTENT, visit_id=old, outcome="remake", who_pays="shop", new_visit_id=old)
+    saved = store.save_recheck(CONTENT, visit_id=old, outcome="remake", who_pays="shop")
+    store.link_recheck(saved.id, new_visit_id=new)
+    with pytest.raises(OwnOrder):
+        store.link_recheck(saved.id, new_visit_id=old)
+    assert recorded(place) == [(old, "remake", "shop", new, CONTENT)]
 
 
 def test_nothing_is_recorded_of_a_visit_that_is_not_there(store: Store, place: Place) -> None:

@@ -1,7 +1,9 @@
 """A database server: its address never tells the password, and whatever is wrong with it is told in one sentence."""
 
 import logging
+import os
 import re
+import subprocess
 import sys
 from pathlib import Path
 
@@ -12,6 +14,7 @@ from advisor.cli import main
 from advisor.counsel.stock import builtin_range, range_to_toml
 from advisor.errors import TwolightError
 from advisor.records import server
+from advisor.records.location import FILE_NAME
 from advisor.records.server import AddressUnreadable, DriverMissing, StoreEncoding, StoreForeign, address_of, shown
 from advisor.records.store import Store
 from advisor.records.trouble import StoreRefused, StoreSetting, StoreUnreachable
@@ -214,3 +217,31 @@ def test_an_address_with_a_nul_is_a_page_that_is_not_there(server_place: str, tm
     form = {"prescription.right.sphere": "-1", "prescription.left.sphere": "-1", "note": "a\0b", "draft": "d\0" * 99}
     assert client.post("/visits", data=form).status_code in (303, 409, 422)
     desk_of(app).close()
+
+
+def test_a_second_start_on_the_same_database_opens_the_first_and_neither_shows_the_password(
+    server_place: str, tmp_path: Path
+) -> None:
+    port = free_port()
+
+    def start(name: str, url: str) -> subprocess.Popen[str]:
+        options = ("--data", str(tmp_path / name), "--port", str(port), "--no-browser")
+        environment = {**os.environ, "TWOLIGHT_DATABASE": url}
+        command = [sys.executable, "-m", "advisor", *options]
+        return subprocess.Popen(command, env=environment, stdout=subprocess.PIPE, stderr=subprocess.STDOUT, text=True)
+
+    with start("one", server_place) as first:
+        try:
+            assert first.stdout is not None
+            said = first.stdout.readline()
+            assert said.startswith(f"Twolight is at http://127.0.0.1:{port}/")
+            with start("two", server_place.replace("postgresql://", "postgres://")) as second:
+                told, _ = second.communicate(timeout=30)
+            assert (second.returncode, told) == (0, f"Twolight is already running; opening http://127.0.0.1:{port}/.\n")
+            titles = "SELECT query, application_name, usename FROM pg_stat_activity WHERE datname = current_database()"
+            assert PASSWORD not in str(rows(server_place, titles))
+        finally:
+            first.terminate()
+            rest, _ = first.communicate(timeout=30)
+    assert PASSWORD not in said + rest
+    assert (tmp_path / "one" / FILE_NAME).exists() is False

@@ -89,8 +89,10 @@ def test_a_visit_that_was_touched_meanwhile_stays(client: FlaskClient, store: St
     saved = store.get_visit(changed)
     store.note_order(saved.visit_json, visit_id=changed, edit_seen=1)
     store.save_recheck("{}", visit_id=rechecked, outcome="clean", who_pays="nobody")
-    sent = {"visit": [changed, rechecked, young], "confirmed": "yes"}
-    assert client.post("/visits/old/erase", data=sent).status_code == 303
+    sent = {"visit": [old(store), changed, rechecked, young], "confirmed": "yes"}
+    told = client.post("/visits/old/erase", data=sent)
+    assert told.status_code == 409
+    assert "3 visits were touched meanwhile or are not old: they were not erased." in told.text
     assert {line.id for line in store.list_visits()} == {changed, rechecked, young}
 
 
