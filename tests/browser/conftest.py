@@ -1,9 +1,7 @@
 """What the tests in a real browser share: one server for all, a browser a module, and a page that is watched."""
 
 import json
-import os
 import re
-import shutil
 import threading
 from collections.abc import Iterator
 from contextlib import contextmanager
@@ -14,18 +12,13 @@ import pytest
 from cheroot import wsgi
 from flask import Flask
 from flask.testing import FlaskClient
-from playwright.sync_api import Browser, BrowserContext, ConsoleMessage, Locator, Page, Route, expect, sync_playwright
+from playwright.sync_api import Browser, BrowserContext, ConsoleMessage, Locator, Page, Route, expect
 
 from advisor.web.app import create_app
 from advisor.web.desk import desk_of
 from advisor.web.stock_loader import current_shelf
 from advisor.web.visits import LINES
-
-CHROMIUM = "/usr/bin/chromium"
-FLAGS = [
-    "--no-sandbox", "--disable-gpu", "--disable-quic", "--no-first-run", "--disable-background-networking",
-    "--disable-component-update", "--disable-sync",
-]  # fmt: skip
+from tests.chromium import chromium
 
 
 class Served:
@@ -102,14 +95,8 @@ def untouched(tmp_path_factory: pytest.TempPathFactory) -> Iterator[Served]:
 @pytest.fixture(scope="module")
 def browser() -> Iterator[Browser]:
     """Start the system's browser; where there is none, skip, unless everything is required."""
-    if not shutil.which(CHROMIUM):
-        if os.environ.get("TWOLIGHT_REQUIRE_ALL"):
-            raise RuntimeError(f"{CHROMIUM} is missing and TWOLIGHT_REQUIRE_ALL is set")
-        pytest.skip(f"{CHROMIUM} is missing")
-    with sync_playwright() as driver:
-        browser = driver.chromium.launch(executable_path=CHROMIUM, args=FLAGS)
-        yield browser
-        browser.close()
+    with chromium() as started:
+        yield started
 
 
 class Watched:

@@ -2,27 +2,21 @@
 
 import io
 import json
-import os
 import re
-import shutil
-import threading
 from collections.abc import Iterator
 from html import unescape
 
 import pytest
 from axe_playwright_python.sync_playwright import Axe
-from cheroot import wsgi
 from flask import Flask
 from flask.testing import FlaskClient
 from PIL import Image
-from playwright.sync_api import Page, expect, sync_playwright
+from playwright.sync_api import Page, expect
 
 from advisor.counsel.stock import builtin_range, range_to_toml
 from advisor.records.store import Store
 from advisor.resources import resource_dir
-
-CHROMIUM = "/usr/bin/chromium"
-FLAGS = ["--no-sandbox", "--disable-gpu", "--disable-quic", "--no-first-run", "--disable-background-networking"]
+from tests.chromium import chromium, served
 
 
 def saved(store: Store, name: str, **changes: object) -> str:
@@ -142,23 +136,14 @@ def test_a_visit_that_is_not_there_has_no_pictures(client: FlaskClient, address:
 
 @pytest.fixture
 def address(app: Flask) -> Iterator[str]:
-    server = wsgi.Server(("127.0.0.1", 0), app, numthreads=4)
-    server.prepare()
-    thread = threading.Thread(target=server.serve, daemon=True)
-    thread.start()
-    yield f"http://127.0.0.1:{server.bind_addr[1]}"
-    server.stop()
-    thread.join()
+    with served(app) as place:
+        yield place
 
 
 @pytest.fixture
 def page() -> Iterator[Page]:
-    if not shutil.which(CHROMIUM) and not os.environ.get("TWOLIGHT_REQUIRE_ALL"):
-        pytest.skip(f"{CHROMIUM} is missing")
-    with sync_playwright() as driver:
-        browser = driver.chromium.launch(executable_path=CHROMIUM, args=FLAGS)
+    with chromium() as browser:
         yield browser.new_page(viewport={"width": 1366, "height": 768})
-        browser.close()
 
 
 def test_a_picture_changes_while_its_button_is_held(page: Page, address: str, store: Store) -> None:

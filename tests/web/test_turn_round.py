@@ -1,10 +1,7 @@
 """Turn round: the page for the wearer's eyes, its language, its prices, its keys, and how large it is written."""
 
 import json
-import os
 import re
-import shutil
-import threading
 from collections.abc import Iterator
 from html import unescape
 from pathlib import Path
@@ -13,10 +10,9 @@ import pytest
 from axe_playwright_python.sync_playwright import Axe
 from babel.messages.catalog import Catalog
 from babel.messages.mofile import write_mo
-from cheroot import wsgi
 from flask import Flask
 from flask.testing import FlaskClient
-from playwright.sync_api import Browser, Page, expect, sync_playwright
+from playwright.sync_api import Browser, Page, expect
 
 from advisor.counsel.stock import builtin_range, range_to_toml
 from advisor.records.store import Store
@@ -24,9 +20,8 @@ from advisor.resources import resource_dir
 from advisor.web import language as module
 from advisor.web.language import language
 from advisor.web.paper import environment
+from tests.chromium import chromium, served
 
-CHROMIUM = "/usr/bin/chromium"
-FLAGS = ["--no-sandbox", "--disable-gpu", "--disable-quic", "--no-first-run", "--disable-background-networking"]
 LEAST_PX = 24.0
 WEARER = "hairdresser-price-limit"
 
@@ -200,28 +195,17 @@ def test_the_page_speaks_the_wearers_language_and_the_screen_its_own(client: Fla
 
 # In a browser: keys, and how large the page is written.
 
-if not shutil.which(CHROMIUM) and os.environ.get("TWOLIGHT_REQUIRE_ALL"):
-    raise RuntimeError(f"{CHROMIUM} is missing and TWOLIGHT_REQUIRE_ALL is set")
-in_browser = pytest.mark.skipif(not shutil.which(CHROMIUM), reason=f"{CHROMIUM} is missing")
-
 
 @pytest.fixture
 def address(app: Flask) -> Iterator[str]:
-    server = wsgi.Server(("127.0.0.1", 0), app, numthreads=4)
-    server.prepare()
-    thread = threading.Thread(target=server.serve, daemon=True)
-    thread.start()
-    yield f"http://127.0.0.1:{server.bind_addr[1]}"
-    server.stop()
-    thread.join()
+    with served(app) as place:
+        yield place
 
 
 @pytest.fixture(scope="module")
 def browser() -> Iterator[Browser]:
-    with sync_playwright() as driver:
-        browser = driver.chromium.launch(executable_path=CHROMIUM, args=FLAGS)
-        yield browser
-        browser.close()
+    with chromium() as started:
+        yield started
 
 
 @pytest.fixture
@@ -244,7 +228,6 @@ SIZES = """() => [...document.body.querySelectorAll("*")]
   .map((one) => [one.textContent.trim().slice(0, 40), parseFloat(getComputedStyle(one).fontSize)])"""
 
 
-@in_browser
 @pytest.mark.parametrize("wearer", ["tinted-pair", "presbyope-previous-pair"])
 def test_every_text_is_24_px_or_more_at_every_width_and_nothing_scrolls_sideways(
     page: Page, address: str, store: Store, wearer: str
@@ -263,7 +246,6 @@ def test_every_text_is_24_px_or_more_at_every_width_and_nothing_scrolls_sideways
             assert min(narrow) > 250, width
 
 
-@in_browser
 def test_rows_stand_level_across_the_options(page: Page, address: str, store: Store) -> None:
     page.goto(f"{address}/visits/{saved(store, 'tinted-pair')}/turn")
     tops = page.evaluate(
@@ -275,7 +257,6 @@ def test_rows_stand_level_across_the_options(page: Page, address: str, store: St
     assert len(set(tops[0])) == 3
 
 
-@in_browser
 @pytest.mark.parametrize("back", ["F9", "Escape"])
 def test_a_key_turns_round_and_back_with_what_was_typed_last(page: Page, address: str, back: str) -> None:
     open_demo(page, address, WEARER)
@@ -289,7 +270,6 @@ def test_a_key_turns_round_and_back_with_what_was_typed_last(page: Page, address
     expect(page.locator("[name='prescription.right.sphere']")).to_have_value("-7.5")
 
 
-@in_browser
 def test_a_letter_typed_is_a_letter_and_the_button_turns_round_after_an_option_was_added(
     page: Page, address: str
 ) -> None:
@@ -307,7 +287,6 @@ def test_a_letter_typed_is_a_letter_and_the_button_turns_round_after_an_option_w
     expect(page.locator("#why-price")).to_be_visible()
 
 
-@in_browser
 @pytest.mark.parametrize("scheme", ["light", "dark"])
 def test_axe_finds_nothing_to_mend(page: Page, address: str, store: Store, scheme: str) -> None:
     page.emulate_media(color_scheme=scheme)  # type: ignore[arg-type]  # one of the two words

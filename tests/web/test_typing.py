@@ -4,10 +4,7 @@ The cases of reading are common practice, no source; ``advisor.counsel.written_p
 """
 
 import json
-import os
 import re
-import shutil
-import threading
 from collections.abc import Iterator
 from contextlib import contextmanager
 from html import unescape
@@ -15,14 +12,14 @@ from pathlib import Path
 from typing import Any
 
 import pytest
-from cheroot import wsgi
 from flask.testing import FlaskClient
-from playwright.sync_api import Browser, Locator, Page, expect, sync_playwright
+from playwright.sync_api import Browser, Locator, Page, expect
 
 from advisor.counsel.faults import Faults
 from advisor.web import form_fields, forms
 from advisor.web.app import create_app
 from advisor.web.number_fields import number_field, stepping
+from tests.chromium import chromium, served
 
 LIVE = {"HX-Request": "true"}
 CASES: list[dict[str, Any]] = json.loads(
@@ -218,35 +215,18 @@ def test_a_typed_line_without_a_prescription_changes_nothing_and_says_so(client:
 
 # In a browser.
 
-CHROMIUM = "/usr/bin/chromium"
-FLAGS = [
-    "--no-sandbox", "--disable-gpu", "--disable-quic", "--no-first-run", "--disable-background-networking",
-    "--disable-component-update", "--disable-sync",
-]  # fmt: skip
-
 
 @pytest.fixture(scope="module")
 def address(tmp_path_factory: pytest.TempPathFactory) -> Iterator[str]:
     app = create_app(data_dir=tmp_path_factory.mktemp("records"))
-    server = wsgi.Server(("127.0.0.1", 0), app, numthreads=4)
-    server.prepare()
-    thread = threading.Thread(target=server.serve, daemon=True)
-    thread.start()
-    yield f"http://127.0.0.1:{server.bind_addr[1]}"
-    server.stop()
-    thread.join()
+    with served(app) as place:
+        yield place
 
 
 @pytest.fixture(scope="module")
 def browser() -> Iterator[Browser]:
-    if not shutil.which(CHROMIUM):
-        if os.environ.get("TWOLIGHT_REQUIRE_ALL"):
-            raise RuntimeError(f"{CHROMIUM} is missing and TWOLIGHT_REQUIRE_ALL is set")
-        pytest.skip(f"{CHROMIUM} is missing")
-    with sync_playwright() as driver:
-        browser = driver.chromium.launch(executable_path=CHROMIUM, args=FLAGS)
-        yield browser
-        browser.close()
+    with chromium() as started:
+        yield started
 
 
 @contextmanager

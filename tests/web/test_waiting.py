@@ -1,25 +1,20 @@
 """Whatever takes longer than 300 ms says so, says when it fails, and is silent where the answer comes at once."""
 
 import json
-import os
 import re
-import shutil
-import threading
 import time
 from collections.abc import Iterator
 
 import pytest
-from cheroot import wsgi
 from flask import Flask, request
 from flask.testing import FlaskClient
-from playwright.sync_api import Browser, Locator, Page, expect, sync_playwright
+from playwright.sync_api import Browser, Locator, Page, expect
 
 from advisor.counsel.stock import builtin_range, range_to_toml
 from advisor.records.store import Store
 from advisor.resources import resource_dir
+from tests.chromium import chromium, served
 
-CHROMIUM = "/usr/bin/chromium"
-FLAGS = ["--no-sandbox", "--disable-gpu", "--disable-quic", "--no-first-run", "--disable-background-networking"]
 SLOW_S = 1.5
 PNG = re.compile(r"\.png(\?|$)")
 
@@ -58,10 +53,6 @@ def test_no_mark_asked_for_no_cookie_set(client: FlaskClient) -> None:
 
 # In a browser.
 
-if not shutil.which(CHROMIUM) and os.environ.get("TWOLIGHT_REQUIRE_ALL"):
-    raise RuntimeError(f"{CHROMIUM} is missing and TWOLIGHT_REQUIRE_ALL is set")
-in_browser = pytest.mark.skipif(not shutil.which(CHROMIUM), reason=f"{CHROMIUM} is missing")
-
 
 @pytest.fixture
 def slow(app: Flask) -> list[str]:
@@ -79,21 +70,14 @@ def slow(app: Flask) -> list[str]:
 @pytest.fixture
 def address(app: Flask, slow: list[str]) -> Iterator[str]:
     del slow  # it must be in place before the first request
-    server = wsgi.Server(("127.0.0.1", 0), app, numthreads=6)
-    server.prepare()
-    thread = threading.Thread(target=server.serve, daemon=True)
-    thread.start()
-    yield f"http://127.0.0.1:{server.bind_addr[1]}"
-    server.stop()
-    thread.join()
+    with served(app, threads=6) as place:
+        yield place
 
 
 @pytest.fixture(scope="module")
 def browser() -> Iterator[Browser]:
-    with sync_playwright() as driver:
-        browser = driver.chromium.launch(executable_path=CHROMIUM, args=FLAGS)
-        yield browser
-        browser.close()
+    with chromium() as started:
+        yield started
 
 
 @pytest.fixture
@@ -121,7 +105,6 @@ def said(page: Page) -> str:
     return str(page.evaluate("() => sessionStorage.getItem('said') ?? ''"))
 
 
-@in_browser
 def test_a_page_that_is_slow_to_come_is_announced_and_the_next_page_is_calm(
     page: Page, address: str, slow: list[str]
 ) -> None:
@@ -134,7 +117,6 @@ def test_a_page_that_is_slow_to_come_is_announced_and_the_next_page_is_calm(
     expect(bar(page)).to_have_attribute("role", "status")
 
 
-@in_browser
 def test_a_form_that_is_slow_to_be_saved_is_announced(page: Page, address: str, visit: str, slow: list[str]) -> None:
     page.goto(f"{address}/visits/{visit}")
     slow.append("/visits")
@@ -144,7 +126,6 @@ def test_a_form_that_is_slow_to_be_saved_is_announced(page: Page, address: str, 
     expect(bar(page)).to_be_hidden()
 
 
-@in_browser
 def test_what_comes_at_once_is_not_announced(page: Page, address: str) -> None:
     page.goto(f"{address}/range")  # fetched once, so that nothing is made for the first time
     page.goto(f"{address}/visits")
@@ -158,7 +139,6 @@ def test_what_comes_at_once_is_not_announced(page: Page, address: str) -> None:
     assert said(page) == ""
 
 
-@in_browser
 def test_a_file_that_leaves_the_page_standing_is_announced_until_it_has_come(
     page: Page, address: str, slow: list[str]
 ) -> None:
@@ -175,7 +155,6 @@ def test_a_file_that_leaves_the_page_standing_is_announced_until_it_has_come(
     assert "ready=" not in page.evaluate("() => document.cookie")
 
 
-@in_browser
 def test_a_pdf_is_announced_while_it_is_made_and_coming_back_is_calm(
     page: Page, address: str, visit: str, slow: list[str]
 ) -> None:
@@ -189,7 +168,6 @@ def test_a_pdf_is_announced_while_it_is_made_and_coming_back_is_calm(
     expect(bar(page)).to_be_hidden()
 
 
-@in_browser
 def test_pictures_that_are_still_being_drawn_are_announced(
     page: Page, address: str, visit: str, slow: list[str]
 ) -> None:
@@ -200,7 +178,6 @@ def test_pictures_that_are_still_being_drawn_are_announced(
     assert page.evaluate("() => [...document.images].every((image) => image.complete && image.naturalWidth)")
 
 
-@in_browser
 def test_a_picture_that_cannot_be_fetched_is_told(page: Page, address: str, visit: str) -> None:
     page.route(PNG, lambda route: route.abort())
     page.goto(f"{address}/visits/{visit}/pictures")
@@ -208,7 +185,6 @@ def test_a_picture_that_cannot_be_fetched_is_told(page: Page, address: str, visi
     expect(bar(page)).to_be_visible()
 
 
-@in_browser
 def test_a_search_that_is_slow_or_fails_is_told(page: Page, address: str, visit: str, slow: list[str]) -> None:
     del visit
     page.goto(f"{address}/visits")
@@ -222,7 +198,6 @@ def test_a_search_that_is_slow_or_fails_is_told(page: Page, address: str, visit:
     expect(bar(page)).to_contain_text("The program does not answer")
 
 
-@in_browser
 def test_figures_turn_grey_at_once_and_say_so_only_when_it_takes_longer(
     page: Page, address: str, visit: str, slow: list[str]
 ) -> None:
@@ -246,7 +221,6 @@ def test_figures_turn_grey_at_once_and_say_so_only_when_it_takes_longer(
     assert said(page) == ""  # the figures say it where they stand
 
 
-@in_browser
 @pytest.mark.parametrize(("motion", "name"), [("reduce", "none"), ("no-preference", "breathe")])
 def test_nothing_moves_for_those_who_ask_for_it(page: Page, address: str, motion: str, name: str) -> None:
     page.emulate_media(reduced_motion=motion)  # type: ignore[arg-type]  # one of the two words
@@ -261,7 +235,6 @@ def test_nothing_moves_for_those_who_ask_for_it(page: Page, address: str, motion
     assert found == name
 
 
-@in_browser
 def test_a_link_opened_in_a_window_of_its_own_is_not_waited_for(page: Page, address: str, slow: list[str]) -> None:
     page.goto(f"{address}/")
     slow.append("/visits")
