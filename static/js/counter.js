@@ -278,6 +278,17 @@
     navigator.sendBeacon("/counter", new URLSearchParams(new FormData(form())));
   });
 
+  // Changed before this script was there to see it: the figures still stand for what the page came with.
+  const isAsItCame = (field) => {
+    if (isTicked(field)) return field.checked === field.defaultChecked;
+    if (!field.matches("select")) return field.value === field.defaultValue;
+    const came = [...field.options].find((one) => one.defaultSelected) ?? field.options[0];
+    return field.selectedIndex === (came?.index ?? -1);
+  };
+  document.addEventListener("DOMContentLoaded", () => {
+    if (!fields().every(isAsItCame)) window.htmx.trigger(form(), "input");
+  });
+
   openFaults();
   // A form shown again after it could not be saved stands at the address of its draft: back and reload find it there.
   const draft = form().elements.namedItem("draft")?.value;

@@ -111,3 +111,22 @@ def test_a_sign_alone_is_waited_for_while_it_is_typed_and_faulty_when_it_is_left
     expect(page.locator("#why-edge_thickest_mm")).to_be_visible()
     assert watched.figures("edge_thickest_mm") != before
     watched.is_clean()
+
+
+# Runs when the page is parsed, before the page's own scripts, which wait for that.
+EARLY = """document.addEventListener("readystatechange", () => {
+  const field = document.getElementById("options.0.material");
+  if (document.readyState === "interactive" && field && location.pathname.startsWith("/counter/")) {
+    field.value = "thiourethane-167";
+  }
+});"""
+
+
+def test_what_is_changed_before_the_scripts_have_come_is_worked_out_too(watched: "Watched") -> None:
+    page = watched.open_demo("hairdresser-price-limit")
+    before = watched.figures("edge_thickest_mm")
+    page.add_init_script(EARLY)
+    page.reload()
+    expect(page.locator("[id='options.0.material']")).to_have_value("thiourethane-167")
+    expect(page.locator("#why-edge_thickest_mm .big").first).not_to_have_text(before[0])
+    watched.is_clean()

@@ -11,6 +11,7 @@ if TYPE_CHECKING:
 
 SIZES = pytest.mark.parametrize(("width", "height"), [(1366, 768), (820, 1180)])
 MOST_STOPS = 400
+SETTLED_MS = 500
 # Everything an order asks for, in the order of the page; the words of a choice are its values here.
 WRITTEN = {
     "prescription.right.sphere": "-4.25",
@@ -63,6 +64,9 @@ class Keys:
         for _ in range(MOST_STOPS):
             self.page.keyboard.press(key)
             stop = self.page.evaluate(STOP, selector)
+            if not stop["isVisible"] and not stop["isBody"]:
+                self.page.wait_for_timeout(SETTLED_MS)  # an answer that comes just now moves what stands below it
+                stop = self.page.evaluate(STOP, selector)
             if not stop["isVisible"] and not stop["isBody"]:
                 self.unseen.append(stop["name"])
             if stop["isThere"]:
