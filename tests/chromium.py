@@ -38,6 +38,8 @@ def served(app: Flask, *, threads: int = 4) -> Iterator[str]:
     server.prepare()
     thread = threading.Thread(target=server.serve, daemon=True)
     thread.start()
-    yield f"http://127.0.0.1:{server.bind_addr[1]}"
-    server.stop()
-    thread.join()
+    try:
+        yield f"http://127.0.0.1:{server.bind_addr[1]}"
+    finally:
+        server.stop()
+        thread.join()

@@ -13,6 +13,7 @@ from advisor.errors import TwolightError
 
 if TYPE_CHECKING:
     from advisor.counsel.stock import Range
+    from advisor.records.store import Store
 
 
 MANY_FILES = 5  # from here on a progress bar is shown
@@ -57,34 +58,38 @@ def records(data: Path | None) -> Path | str:
     return given
 
 
+def _opened(data: Path | None) -> "Store | None":
+    """Open the records meant; None where nothing was ever kept in the data folder."""
+    from advisor.records.location import database_file
+
+    place = records(data)
+    if isinstance(place, Path) and not database_file(place).exists():
+        return None
+    from advisor.records.store import Store
+
+    return Store.open(place)
+
+
 def stock_of(data: Path | None, file: Path | None = None) -> "Range":
     """Return the range of a file, else the shop's own, else the built-in one."""
     from advisor.counsel.stock import builtin_range, parse_range, read_range
 
     if file is not None:
         return read_range(file)
-    from advisor.records.location import database_file
-
-    place = records(data)
-    if isinstance(place, Path) and not database_file(place).exists():
+    store = _opened(data)
+    if store is None:
         return builtin_range()
-    from advisor.records.store import Store
-
-    with Store.open(place) as store:
+    with store:
         current = store.current_range()
     return builtin_range() if current is None else parse_range(current.toml)
 
 
 def logo_of(data: Path | None, file: Path | None) -> bytes | None:
     """Return the shop's logo from the records; a range file given alone is of no shop here."""
-    from advisor.records.location import database_file
-
-    place = records(data)
-    if (file is not None and data is None) or (isinstance(place, Path) and not database_file(place).exists()):
+    store = None if file is not None and data is None else _opened(data)
+    if store is None:
         return None
-    from advisor.records.store import Store
-
-    with Store.open(place) as store:
+    with store:
         return store.get_logo()
 
 

@@ -2,14 +2,12 @@
 
 import json
 import re
-import threading
 from collections.abc import Iterator
 from contextlib import contextmanager
 from pathlib import Path
 from urllib.parse import urlsplit
 
 import pytest
-from cheroot import wsgi
 from flask import Flask
 from flask.testing import FlaskClient
 from playwright.sync_api import Browser, BrowserContext, ConsoleMessage, Locator, Page, Route, expect
@@ -19,6 +17,7 @@ from advisor.web.desk import desk_of
 from advisor.web.stock_loader import current_shelf
 from advisor.web.visits import LINES
 from tests.chromium import chromium
+from tests.chromium import served as served_at
 
 
 class Served:
@@ -67,15 +66,8 @@ def _dotted(changed: dict[str, str]) -> dict[str, str]:
 def serving(folder: Path) -> Iterator[Served]:
     """Serve the program on a data folder for as long as the block runs."""
     app = create_app(data_dir=folder)
-    server = wsgi.Server(("127.0.0.1", 0), app, numthreads=4)
-    server.prepare()
-    thread = threading.Thread(target=server.serve, daemon=True)
-    thread.start()
-    try:
-        yield Served(app, f"http://127.0.0.1:{server.bind_addr[1]}")
-    finally:
-        server.stop()
-        thread.join()
+    with served_at(app) as address:
+        yield Served(app, address)
 
 
 @pytest.fixture(scope="session")
