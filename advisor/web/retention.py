@@ -56,7 +56,9 @@ def erase() -> AnyResponse:
         return make_response(_page(none=True), 422)
     store = current_desk().store
     if request.form.get("confirmed") != "yes":
-        return make_response(render_template("old_visits_erase.html", ids=ids, goes=store.count_of(ids)))
+        return make_response(
+            render_template("erase.html", back="/visits/old", ids=ids, forms=False, goes=store.count_of(ids))
+        )
     before = months_before(dt.date.today(), months).isoformat()
     store.erase_old(ids, before_day=before, who=current_operator())
     stayed = store.count_of(ids).visits

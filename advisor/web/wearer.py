@@ -84,7 +84,7 @@ def erase(visit_id: str) -> AnyResponse:
     if request.form.get("confirmed") != "yes":
         goes = store.count_of(ids, forms)
         return make_response(
-            render_template("wearer_erase.html", visit_id=visit_id, ids=ids, forms=bool(forms), goes=goes)
+            render_template("erase.html", back=f"/visits/{visit_id}/wearer", ids=ids, forms=bool(forms), goes=goes)
         )
     store.erase(ids, draft_ids=forms, who=current_operator())
     return redirect(url_for("wearer.erased"), 303)
